@@ -1,0 +1,211 @@
+"""Declarations of what a person may enter: label, unit, range and help stand here once.
+
+A field of a design part is written ``bar_width: Annotated[float, Quantity(...)] = 40e-6``. From
+the annotation come the validation (this module), the profile keys, the control on the screen,
+its help and the wording of the report. A new part therefore declares fields and nothing else.
+"""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, field
+from functools import lru_cache
+from typing import Any
+
+from pydantic import BaseModel, ConfigDict, GetCoreSchemaHandler, ValidationInfo
+from pydantic_core import CoreSchema, PydanticCustomError, core_schema
+
+from model.quantity import (
+    QuantityError,
+    canonical,
+    format_quantity,
+    parse_quantity,
+    plain_text,
+    pretty_unit,
+)
+
+#: Validation context of values that a person gave: a bare number is in the shown unit, not SI.
+FROM_PERSON = {"from_person": True}
+
+
+class Part(BaseModel):
+    """A frozen piece of a design; compares and hashes by value, knows no unknown keys."""
+
+    model_config = ConfigDict(frozen=True, extra="forbid", allow_inf_nan=False)
+
+
+@dataclass(frozen=True)
+class Declared:
+    """What every declaration tells: how a field is named and explained to a person."""
+
+    label: str
+    help: str
+    source: str = field(default="", kw_only=True)
+    #: Folded away on the screen unless asked for.
+    detail: bool = field(default=False, kw_only=True)
+    #: None is a value: "take the usual one", explained by the help.
+    optional: bool = field(default=False, kw_only=True)
+
+    def read(self, value: Any, from_person: bool) -> Any:
+        """Turn what was given into the field's value or raise :class:`QuantityError`."""
+        raise NotImplementedError
+
+    def text(self, value: Any) -> Any:
+        """Write a value as it stands in a profile."""
+        return value
+
+    def allowed(self) -> str:
+        """Say what may be entered."""
+        return ""
+
+    def __get_pydantic_core_schema__(
+        self, source: Any, handler: GetCoreSchemaHandler
+    ) -> CoreSchema:
+        """Let pydantic validate through :meth:`read`."""
+
+        def validate(value: Any, info: ValidationInfo) -> Any:
+            if self.optional and (value is None or value == ""):
+                return None
+            try:
+                return self.read(value, bool(info.context and info.context.get("from_person")))
+            except QuantityError as problem:
+                raise PydanticCustomError(
+                    "declared", "{problem}", {"problem": str(problem)}
+                ) from None
+
+        return core_schema.with_info_plain_validator_function(validate)
+
+
+@dataclass(frozen=True)
+class Quantity(Declared):
+    """A number with a unit, held in SI.
+
+    `low` and `high` are inclusive and written with units. In Python code a bare number is SI;
+    from a person (profile, control, link) it is in `unit`.
+    """
+
+    unit: str = field(kw_only=True)
+    low: str = field(kw_only=True)
+    high: str = field(kw_only=True)
+
+    def read(self, value: Any, from_person: bool) -> float:
+        """Parse, round as typed, and check the range."""
+        if isinstance(value, str) or (from_person and isinstance(value, int | float)):
+            number = parse_quantity(value, self.unit)
+        elif isinstance(value, int | float) and not isinstance(value, bool):
+            number = canonical(value, self.unit)
+        else:
+            raise QuantityError(f"needs a number, {self.allowed()}")
+        low, high = self.range()
+        if not low <= number <= high:
+            raise QuantityError(f"must be {self.allowed()}")
+        return number
+
+    def range(self) -> tuple[float, float]:
+        """Least and most, SI."""
+        return _range(self.low, self.high, self.unit)
+
+    def text(self, value: Any) -> Any:
+        """Write as number and unit, e.g. ``"40 um"``; a pure number stays one."""
+        if value is None:
+            return None
+        return plain_text(value, self.unit) if self.unit else value
+
+    def allowed(self) -> str:
+        """Range in the shown unit."""
+        low, high = (format_quantity(bound, self.unit) for bound in self.range())
+        if self.unit and low.endswith(pretty_unit(self.unit)):
+            low = low.removesuffix(pretty_unit(self.unit)).strip()
+        return f"from {low} to {high}"
+
+
+@lru_cache(maxsize=512)  # declarations are few and never change
+def _range(low: str, high: str, unit: str) -> tuple[float, float]:
+    return parse_quantity(low, unit), parse_quantity(high, unit)
+
+
+@dataclass(frozen=True)
+class Count(Declared):
+    """A whole number within `low` to `high`, inclusive."""
+
+    low: int = field(kw_only=True)
+    high: int = field(kw_only=True)
+
+    def read(self, value: Any, from_person: bool) -> int:
+        """Take whole numbers, also as text."""
+        if isinstance(value, str) and value.strip().isdecimal() and len(value) < 10:
+            value = int(value)
+        if isinstance(value, float) and value.is_integer():
+            value = int(value)
+        if not isinstance(value, int) or isinstance(value, bool):
+            raise QuantityError(f"needs a whole number, {self.allowed()}")
+        if not self.low <= value <= self.high:
+            raise QuantityError(f"must be {self.allowed()}")
+        return value
+
+    def allowed(self) -> str:
+        """Range in words."""
+        return f"from {self.low} to {self.high}"
+
+
+@dataclass(frozen=True)
+class Choice(Declared):
+    """One of a few words; `options` maps each word of the profile to its label on the screen."""
+
+    options: Mapping[str, str] = field(kw_only=True, hash=False)
+
+    def read(self, value: Any, from_person: bool) -> str:
+        """Take one of the words."""
+        if not isinstance(value, str) or value not in self.options:
+            raise QuantityError(f"must be {self.allowed()}")
+        return value
+
+    def allowed(self) -> str:
+        """List the words."""
+        return "one of " + ", ".join(self.options)
+
+
+@dataclass(frozen=True)
+class Flag(Declared):
+    """Yes or no."""
+
+    def read(self, value: Any, from_person: bool) -> bool:
+        """Take true and false alone."""
+        if not isinstance(value, bool):
+            raise QuantityError("must be true or false")
+        return value
+
+    def allowed(self) -> str:
+        """List both."""
+        return "true or false"
+
+
+@dataclass(frozen=True)
+class Text(Declared):
+    """A line of text."""
+
+    longest: int = field(default=80, kw_only=True)
+    needed: bool = field(default=False, kw_only=True)
+
+    def read(self, value: Any, from_person: bool) -> str:
+        """Take printable text, outer blanks removed."""
+        if not isinstance(value, str):
+            raise QuantityError("must be text")
+        line = value.strip()
+        if self.needed and not line:
+            raise QuantityError("must not be empty")
+        if len(line) > self.longest:
+            raise QuantityError(f"must not be longer than {self.longest} characters")
+        if not all(letter.isprintable() for letter in line):
+            raise QuantityError("must be one line of printable characters")
+        return line
+
+    def allowed(self) -> str:
+        """State the length."""
+        return f"text of at most {self.longest} characters"
+
+
+def declarations(part: type[BaseModel]) -> Iterator[tuple[str, Declared]]:
+    """Profile key and declaration of each declared field of `part`, in order."""
+    for name, info in part.model_fields.items():
+        for extra in info.metadata:
+            if isinstance(extra, Declared):
+                yield info.alias or name, extra

@@ -1,0 +1,171 @@
+"""The design: the only state there is. Frozen, compared and hashed by value, SI throughout."""
+
+from collections import Counter
+from collections.abc import Iterable
+from typing import TYPE_CHECKING, Annotated, Any
+
+from pydantic import ConfigDict, Field, create_model, model_validator
+from pydantic_core import PydanticCustomError
+
+from model.declare import Part, Quantity, Text
+from model.layout import Layout
+from model.layouts import LAYOUTS
+from model.limits import LIMITS
+from model.liquid.liquid import Liquid
+from model.particle import Particle
+from model.particles import PARTICLES
+from model.quantity import format_quantity
+from model.registry import OneOf
+from model.task import Task
+from model.tasks import TASKS
+
+#: Most populations in one design.
+MOST_PARTICLES = 12
+
+
+class Drive(Part):
+    """The generator and how it is set."""
+
+    voltage: Annotated[
+        float,
+        Quantity(
+            "Voltage",
+            "Peak to peak between neighbouring electrodes.",
+            unit="V",
+            low="0.001 V",
+            high="1000 V",
+        ),
+    ]
+    frequency: Annotated[
+        float,
+        Quantity("Frequency", "Of the sine wave.", unit="kHz", low="100 Hz", high="1 GHz"),
+    ]
+    source_resistance: Annotated[
+        float,
+        Quantity(
+            "Source resistance",
+            "Of generator and leads in series with the chip.",
+            unit="ohm",
+            low="0 ohm",
+            high="100 kohm",
+        ),
+    ] = 50.0
+    voltage_limit: Annotated[
+        float,
+        Quantity(
+            "Voltage limit",
+            "Most that the generator gives with nothing connected, peak to peak.",
+            unit="V",
+            low="0.01 V",
+            high="2000 V",
+        ),
+    ] = 20.0
+    current_limit: Annotated[
+        float,
+        Quantity(
+            "Current limit",
+            "Most current that the generator gives, rms.",
+            unit="mA",
+            low="0.01 mA",
+            high="20 A",
+        ),
+    ] = 0.2
+    duty: Annotated[
+        float,
+        Quantity(
+            "Duty",
+            "Fraction of time the drive is on, switched faster than particles and heat follow.",
+            unit="",
+            low="0.001",
+            high="1",
+            detail=True,
+        ),
+    ] = 1.0
+
+
+class Flow(Part):
+    """The liquid's flow through the channel."""
+
+    rate: Annotated[
+        float,
+        Quantity(
+            "Flow rate",
+            "Through the whole channel; 0 for liquid at rest.",
+            unit="uL/min",
+            low="0 uL/min",
+            high="100 mL/min",
+        ),
+    ] = 0.0
+
+
+_thresholds: dict[str, Any] = {
+    name: (Annotated[float, limit.threshold], limit.default)
+    for name, limit in LIMITS.items()
+    if limit.threshold is not None
+}
+if TYPE_CHECKING:
+
+    class Limits(Part):
+        """Thresholds of all limits that have one of their own, keyed by the limit's id."""
+else:
+    Limits = create_model("Limits", __base__=Part, **_thresholds)
+
+
+class Design(Part):
+    """A whole design: task, chip, liquid, drive, flow, particles and limits."""
+
+    model_config = ConfigDict(validate_by_name=True, validate_by_alias=True)
+
+    title: Annotated[str, Text("Title", "Names the design on screen and sheet.", longest=80)] = (
+        "Untitled"
+    )
+    question: Annotated[str, Text("Question", "What the design is to answer.", longest=240)] = ""
+    task: Annotated[Task, OneOf(TASKS, "kind")]
+    chip: Annotated[Layout, OneOf(LAYOUTS, "layout")]
+    liquid: Liquid
+    drive: Drive
+    flow: Flow = Flow()
+    particles: Annotated[
+        tuple[Annotated[Particle, OneOf(PARTICLES, "kind")], ...],
+        Field(alias="particle", min_length=1, max_length=MOST_PARTICLES),
+    ]
+    limits: Limits = Limits()
+
+    @property
+    def collected(self) -> tuple[Particle, ...]:
+        """Particles that the task must succeed for."""
+        return tuple(particle for particle in self.particles if particle.role == "collect")
+
+    def threshold(self, limit: str) -> float:
+        """Threshold of a limit in SI."""
+        return float(getattr(self.limits, limit))
+
+    @model_validator(mode="after")
+    def _parts_fit(self) -> "Design":
+        misfits = tuple(_misfits(self))
+        if misfits:
+            problem = "; ".join(f"{path} {problem}" for path, problem in misfits)
+            raise PydanticCustomError(
+                "misfits", "{problem}", {"problem": problem, "misfits": misfits}
+            )
+        return self
+
+
+def _misfits(design: Design) -> Iterable[tuple[str, str]]:
+    """Find fields that are fine alone and impossible together: path and problem."""
+    names = Counter(particle.name for particle in design.particles)
+    for index, particle in enumerate(design.particles):
+        if names[particle.name] > 1:
+            yield f"particle.{index}.name", f"“{particle.name}” is the name of two particles"
+    if not design.collected:
+        yield "particle.0.role", "at least one particle must have the role collect"
+    height, channel = design.task.force_height, design.chip.channel_height
+    for particle in design.collected:
+        radius = particle.equivalent_radius
+        if not radius <= height <= channel - radius:
+            low, high = (format_quantity(bound, "um", 4) for bound in (radius, channel - radius))
+            yield (
+                "task.working_height",
+                f"must be from {low} to {high}, so that {particle.name} clears floor and lid",
+            )
+            break

@@ -1,0 +1,225 @@
+"""Evaluate a design on its chip's patterns: operating point, ledger, verdict, corridor."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from model.arrays import Real
+from model.conditions import Conditions
+from model.corridor import Corridor, Rule, corridor, rules
+from model.crossovers import Crossover, find_crossovers
+from model.design import Design
+from model.fields.patterns import ChipPatterns
+from model.particle import Particle
+from model.voltage import PEAK, PEAK_TO_PEAK
+
+#: Frequencies of a corridor unless others are asked for, Hz; widened to hold the design's own.
+LOWEST, HIGHEST, POINTS = 1e3, 1e8, 400
+
+
+@dataclass(frozen=True)
+class LedgerRow:
+    """One rule at the operating point; values in SI, `unit` is the one to show them in.
+
+    `headroom` is the most allowed voltage over the present one, for a floor the present voltage
+    over the least; infinite if no voltage breaks the rule. `bound_pp` is that voltage, peak to
+    peak.
+    """
+
+    rule: Rule
+    value: float
+    allowed: float
+    bound_pp: float
+    headroom: float
+
+    @property
+    def kept(self) -> bool:
+        """Whether the rule is kept at the operating point."""
+        return self.headroom >= 1.0
+
+
+@dataclass(frozen=True)
+class ParticleResult:
+    """One population at the operating point.
+
+    `force` is the largest along the flow over one period at the force height, N, positive
+    towards strong field; `membrane_voltage` the peak at the strongest field it has to endure,
+    None without a membrane.
+    """
+
+    particle: Particle
+    polarisation: complex
+    force: float
+    membrane_voltage: float | None
+
+
+@dataclass(frozen=True)
+class ChipLoad:
+    """The chip as the generator sees it, SI."""
+
+    resistance: float
+    capacitance: float
+    rms_current: float
+    power: float
+
+
+@dataclass(frozen=True)
+class Evaluation:
+    """All results of one design; what is not asked for is not computed.
+
+    Made by :func:`evaluate`.
+    """
+
+    design: Design
+    patterns: ChipPatterns
+    frequency: Real
+
+    @cached_property
+    def point(self) -> Conditions:
+        """Conditions at the operating frequency alone."""
+        frequency = np.array([self.design.drive.frequency])
+        return Conditions(self.design, self.patterns, frequency, self._conductivity)
+
+    @cached_property
+    def spectrum(self) -> Conditions:
+        """Conditions over all frequencies."""
+        return Conditions(self.design, self.patterns, self.frequency, self._conductivity)
+
+    @property
+    def _conductivity(self) -> Real:
+        return np.array(self.design.liquid.conductivity)
+
+    @property
+    def rms_voltage(self) -> float:
+        """Voltage between neighbouring electrodes, rms."""
+        return self.design.drive.voltage / PEAK_TO_PEAK
+
+    @cached_property
+    def ledger(self) -> tuple[LedgerRow, ...]:
+        """Every rule at the operating point, the one with least headroom first."""
+        rows = [self._row(rule) for rule in rules(self.point)]
+        return tuple(sorted(rows, key=lambda row: row.headroom))
+
+    def _row(self, rule: Rule) -> LedgerRow:
+        voltage, law = self.rms_voltage, rule.law
+        bound = float(law.bound().reshape(-1)[0])
+        if law.sense == "most":
+            headroom = bound / voltage
+        else:
+            headroom = voltage / bound if bound > 0 else np.inf
+        value = float(law.value(voltage).reshape(-1)[0])
+        return LedgerRow(rule, value, law.allowed, bound * PEAK_TO_PEAK, headroom)
+
+    @property
+    def inside(self) -> bool:
+        """Whether the task is done and no limit is broken."""
+        return all(row.kept for row in self.ledger)
+
+    @property
+    def binding(self) -> LedgerRow:
+        """The rule with least headroom."""
+        return self.ledger[0]
+
+    def _bounds(self, sense: str) -> list[float]:
+        return [row.bound_pp for row in self.ledger if row.rule.law.sense == sense]
+
+    @property
+    def floor_pp(self) -> float:
+        """Least voltage that does the task at this frequency, peak to peak; may be infinite."""
+        return max(self._bounds("least"), default=0.0)
+
+    @property
+    def ceiling_pp(self) -> float:
+        """Most voltage that breaks no limit at this frequency, peak to peak."""
+        return min(self._bounds("most"), default=np.inf)
+
+    @cached_property
+    def corridor(self) -> Corridor:
+        """Floor and ceilings over all frequencies."""
+        return corridor(self.spectrum)
+
+    @cached_property
+    def particles(self) -> tuple[ParticleResult, ...]:
+        """Every population at the operating point, in the design's order."""
+        return tuple(self._particle(particle) for particle in self.design.particles)
+
+    def _particle(self, particle: Particle) -> ParticleResult:
+        at, voltage = self.point, self.rms_voltage
+        gain = at.membrane_gain(particle)
+        membrane = None
+        if gain is not None:
+            membrane = float(gain[0]) * at.exposure(particle) * PEAK * voltage
+        force = float(at.force_along_flow(particle)[0]) * voltage**2
+        return ParticleResult(particle, complex(at.polarisation(particle)[0]), force, membrane)
+
+    def crossovers(self, particle: Particle) -> tuple[Crossover, ...]:
+        """Every crossover of a particle in this liquid, in order of frequency."""
+
+        def real_part(frequency: Real) -> Real:
+            at = Conditions(self.design, self.patterns, frequency, self._conductivity)
+            return at.polarisation(particle).real
+
+        return find_crossovers(real_part)
+
+    @property
+    def temperature_rise(self) -> float:
+        """Rise of the hottest liquid over the stage, K."""
+        return float(self.point.heating[0]) * self.rms_voltage**2
+
+    @property
+    def electrothermal_speed(self) -> float:
+        """Largest electrothermal speed at the force height, m/s."""
+        return float(self.point.electrothermal_speed[0]) * self.rms_voltage**4
+
+    @property
+    def dielectrophoretic_speed(self) -> float:
+        """Largest dielectrophoretic speed there of the slowest particle to be collected, m/s."""
+        speeds = [self.point.dielectrophoretic_speed(p)[0] for p in self.design.collected]
+        return float(min(speeds)) * self.rms_voltage**2
+
+    @cached_property
+    def load(self) -> ChipLoad:
+        """Resistance, capacitance, current and power (mean over the duty) of the chip."""
+        admittance, omega = complex(self.point.admittance[0]), float(self.point.omega[0])
+        power = admittance.real * self.rms_voltage**2 * self.design.drive.duty
+        return ChipLoad(
+            1.0 / admittance.real,
+            admittance.imag / omega,
+            abs(admittance) * self.rms_voltage,
+            power,
+        )
+
+
+def evaluate(
+    design: Design,
+    patterns: ChipPatterns,
+    frequency: Sequence[float] | Real | None = None,
+    points: int = POINTS,
+) -> Evaluation:
+    """Evaluate a design on the patterns of its chip.
+
+    Parameters
+    ----------
+    design
+        The whole design.
+    patterns
+        From :func:`model.fields.solve.solve_chip` of the same chip.
+    frequency
+        Hz, for corridor and spectra; by default 1 kHz to 100 MHz, widened to hold the design's
+        own frequency.
+    points
+        How many frequencies the default has.
+
+    Raises
+    ------
+    ValueError
+        If the patterns are those of another chip.
+    """
+    if patterns.chip != design.chip:
+        raise ValueError("the patterns belong to another chip than the design's")
+    if frequency is None:
+        low, high = min(LOWEST, design.drive.frequency), max(HIGHEST, design.drive.frequency)
+        frequency = np.geomspace(low, high, points)
+    return Evaluation(design, patterns, np.asarray(frequency, dtype=float))

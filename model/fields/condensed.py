@@ -1,0 +1,98 @@
+"""Direct solve of cell matrices, each cell's inner unknowns eliminated on the spot."""
+
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.sparse import csc_matrix
+from scipy.sparse.linalg import SuperLU, splu
+
+from model.arrays import Real
+from model.fields.assembly import gather
+from model.fields.cells import Index
+
+
+@dataclass(frozen=True, eq=False)
+class CellSystem:
+    """A symmetric system as the sum of cell matrices.
+
+    Parameters
+    ----------
+    blocks
+        Cell matrices (n_cell, n_local, n_local).
+    dofs
+        Unknown of each row, (n_local, n_cell).
+    inner
+        How many of the last local rows have unknowns that belong to one cell alone.
+    size
+        Number of unknowns.
+    """
+
+    blocks: Real
+    dofs: Index
+    inner: int
+    size: int
+
+    def apply(self, vector: Real) -> Real:
+        """Product with a vector (size,)."""
+        local = (self.blocks @ vector[self.dofs].T[:, :, None])[:, :, 0].T
+        return gather(self.dofs, local, self.size)
+
+
+@dataclass(frozen=True, eq=False)
+class Factor:
+    """A factorised :class:`CellSystem` with some unknowns held."""
+
+    system: CellSystem
+    free: Index
+    inverse: Real
+    extension: Real
+    factor: SuperLU
+
+    def solve(self, vector: Real, held: Real) -> Real:
+        """Solution whose held unknowns are those of `held` (size,), the others 0 there.
+
+        `vector` (size,) is the right-hand side. One step of iterative refinement follows.
+        """
+        solution = held.copy()
+        for _ in range(2):
+            solution = solution + self._correct(vector - self.system.apply(solution))
+        return solution
+
+    def _correct(self, residual: Real) -> Real:
+        dofs, outer = self.system.dofs, len(self.system.dofs) - self.system.inner
+        inner = residual[dofs[outer:]].T[:, :, None]  # (cell, i, 1)
+        passed = (self.extension.transpose(0, 2, 1) @ inner)[:, :, 0].T
+        rest = residual - gather(dofs[:outer], passed, self.system.size)
+        change = np.zeros(self.system.size)
+        change[self.free] = self.factor.solve(rest[self.free])
+        along = self.extension @ change[dofs[:outer]].T[:, :, None]
+        change[dofs[outer:]] = (self.inverse @ inner - along)[:, :, 0].T
+        return change
+
+
+def factorise(system: CellSystem, held: Index) -> Factor:
+    """Eliminate the inner unknowns of each cell and factorise what is left.
+
+    The ordering is symmetric, without pivoting: the systems are positive definite, or
+    quasi-definite if they hold a pressure.
+    """
+    outer = len(system.dofs) - system.inner
+    inverse = np.asarray(np.linalg.inv(system.blocks[:, outer:, outer:]), dtype=float)
+    coupling = system.blocks[:, outer:, :outer]
+    extension = inverse @ coupling
+    condensed = system.blocks[:, :outer, :outer] - coupling.transpose(0, 2, 1) @ extension
+    free = np.setdiff1d(system.dofs[:outer], held)
+    number = np.full(system.size, -1, dtype=np.int32)
+    number[free] = np.arange(free.size)
+    place = number[system.dofs[:outer]].T
+    i = np.broadcast_to(place[:, :, None], condensed.shape).ravel()
+    j = np.broadcast_to(place[:, None, :], condensed.shape).ravel()
+    kept = (i >= 0) & (j >= 0)
+    matrix = csc_matrix((condensed.ravel()[kept], (i[kept], j[kept])), shape=(free.size,) * 2)
+    factor = splu(
+        matrix,
+        permc_spec="MMD_AT_PLUS_A",
+        diag_pivot_thresh=0.0,
+        options={"SymmetricMode": True},
+    )
+    return Factor(system, free, inverse, extension, factor)

@@ -1,0 +1,192 @@
+"""Mesh of a flat channel between a floor and a lid that carry bars."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from itertools import pairwise
+
+import numpy as np
+from skfem import Mesh, MeshQuad
+
+from model.arrays import Real
+from model.fields.grading import between, march, split
+from model.fields.section import Rest
+from model.walls import Wall
+
+#: Meshed wall thickness over the pitch. Ripples of Θ fall as exp(−2πy/p) in a wall: to 4·10⁻⁶
+#: here; what lies beyond conducts as a plane slab.
+WALL_REACH = 2.0
+#: First cell at an electrode edge over the narrower half width; the error of the capacitance,
+#: and of |E|² far from the edge, is about a hundredth of it.
+EDGE_CELL = 6e-4
+#: Longest cell over the pitch, near the electrodes.
+LONGEST = 0.15
+
+
+@dataclass(frozen=True)
+class Span:
+    """A named stretch of electrode on the floor or the lid, x from `start` to `end`."""
+
+    name: str
+    start: float
+    end: float
+    on_lid: bool = False
+
+
+@dataclass(frozen=True)
+class Channel:
+    """A stretch of channel, `ends` its two x, with electrode `spans` on its faces."""
+
+    ends: tuple[float, float]
+    height: float
+    pitch: float
+    spans: tuple[Span, ...]
+    floor: Wall
+    lid: Wall
+    periodic: bool = False
+
+
+@dataclass(frozen=True)
+class Layered:
+    """Mesh of a :class:`Channel`, and how heat leaves it, as :class:`Section` takes them."""
+
+    mesh: Mesh
+    wall_conductivities: Mapping[str, float]
+    outsides: Mapping[str, float | None]
+    rests: tuple[Rest, ...]
+
+
+def layered(channel: Channel, refinement: int = 0) -> Layered:
+    """Mesh a channel with its walls.
+
+    The boundaries are the names of the spans and ``left``, ``right``, ``floor-outside``,
+    ``lid-outside``; the subdomains ``floor``, ``liquid``, ``lid``. Walls thicker than a few
+    pitches are cut off, the rest entering the heat-transfer coefficient, which is exact once the
+    ripple along x has died out.
+    """
+    columns = split(_columns(channel), refinement)
+    floor, lid = (_wall_rows(wall, channel) for wall in (channel.floor, channel.lid))
+    liquid = _liquid_rows(channel)
+    rows = split(
+        np.concatenate([-floor[:0:-1], liquid, channel.height + lid[1:]]),
+        refinement,
+    )
+    return Layered(
+        _named(MeshQuad.init_tensor(columns, rows), channel),
+        {"floor": channel.floor.heat_conductivity, "lid": channel.lid.heat_conductivity},
+        {
+            "floor-outside": _transfer(channel.floor, floor[-1]),
+            "lid-outside": _transfer(channel.lid, lid[-1]),
+        },
+        (
+            _rest(channel.floor, 0.0, -1, floor[-1]),
+            _rest(channel.lid, channel.height, 1, lid[-1]),
+        ),
+    )
+
+
+def _narrowest(channel: Channel) -> float:
+    """Half the shortest stretch between neighbouring edges on one face."""
+    shortest = channel.height
+    for on_lid in (False, True):
+        edges = _edges(channel, on_lid)
+        if edges:
+            stops = np.unique([*channel.ends, *edges])
+            # a stretch that ends on a mirror plane is itself half of one
+            lengths = np.diff(stops) * (0.5 if channel.periodic else 1.0)
+            shortest = min(shortest, float(lengths.min()))
+    return shortest
+
+
+def _edges(channel: Channel, on_lid: bool) -> list[float]:
+    low, high = channel.ends
+    return [
+        x
+        for span in channel.spans
+        if span.on_lid == on_lid
+        for x in (span.start, span.end)
+        if low < x < high
+    ]
+
+
+def _columns(channel: Channel) -> Real:
+    first = EDGE_CELL * _narrowest(channel)
+    edges = {*_edges(channel, False), *_edges(channel, True)}
+    stops = np.unique([*channel.ends, *edges])
+    longest = LONGEST * channel.pitch
+    pieces = []
+    for start, end in pairwise(stops):
+        if start in edges and end in edges:
+            piece = between(start, end, (first, first), lambda _: longest)
+        elif start in edges:
+            piece = start + march(end - start, first, lambda _: longest)
+        elif end in edges:
+            piece = end - march(end - start, first, lambda _: longest)[::-1]
+        else:
+            piece = np.linspace(start, end, 9)
+        pieces.append(piece)
+    return np.concatenate([pieces[0], *(piece[1:] for piece in pieces[1:])])
+
+
+def _liquid_rows(channel: Channel) -> Real:
+    first = EDGE_CELL * _narrowest(channel)
+    pitch = channel.pitch
+
+    def limit(distance: float) -> float:
+        """Grow again where the field has decayed."""
+        return LONGEST * max(pitch, min(distance, 2 * pitch), 4 * (distance - 2.5 * pitch))
+
+    if not any(span.on_lid for span in channel.spans):
+        return march(channel.height, first, limit)
+    if not any(not span.on_lid for span in channel.spans):
+        return channel.height - march(channel.height, first, limit)[::-1]
+    return between(0.0, channel.height, (first, first), limit)
+
+
+def _wall_rows(wall: Wall, channel: Channel) -> Real:
+    """Distances into a wall, from 0 to where the mesh ends."""
+    reach = min(wall.thickness, WALL_REACH * channel.pitch)
+    first = 0.1 * min(_narrowest(channel), reach)
+    return march(reach, first, lambda _: 0.5 * channel.pitch)
+
+
+def _transfer(wall: Wall, reach: float) -> float | None:
+    """Heat-transfer coefficient that stands for the rest of the wall and its outside."""
+    rest = wall.thickness - reach
+    if rest <= 1e-9 * wall.thickness:
+        return wall.heat_transfer
+    if wall.heat_transfer is None:
+        return wall.heat_conductivity / rest
+    if wall.heat_transfer == 0:
+        return 0.0
+    return 1 / (rest / wall.heat_conductivity + 1 / wall.heat_transfer)
+
+
+def _rest(wall: Wall, face: float, sense: int, reach: float) -> Rest:
+    """Describe the wall beyond its meshed part; `sense` is −1 downward."""
+    transfer = _transfer(wall, reach)
+    falloff = 0.0 if transfer is None else transfer / wall.heat_conductivity
+    return Rest(face + sense * reach, face + sense * wall.thickness, falloff)
+
+
+def _named(mesh: Mesh, channel: Channel) -> Mesh:
+    middles = mesh.p[:, mesh.facets].mean(axis=1)  # (2, n_facet)
+    upright = mesh.p[0, mesh.facets[0]] == mesh.p[0, mesh.facets[1]]
+    low, high = channel.ends
+    boundaries = {
+        "left": np.flatnonzero(upright & (middles[0] == low)),
+        "right": np.flatnonzero(upright & (middles[0] == high)),
+        "floor-outside": np.flatnonzero(~upright & (middles[1] == mesh.p[1].min())),
+        "lid-outside": np.flatnonzero(~upright & (middles[1] == mesh.p[1].max())),
+    }
+    for span in channel.spans:
+        level = channel.height if span.on_lid else 0.0
+        within = (middles[0] > span.start) & (middles[0] < span.end)
+        found = np.flatnonzero(~upright & (middles[1] == level) & within)
+        boundaries[span.name] = np.union1d(boundaries.get(span.name, found), found)
+    centre = mesh.p[1, mesh.t].mean(axis=0)
+    subdomains = {
+        "floor": np.flatnonzero(centre < 0),
+        "liquid": np.flatnonzero((centre > 0) & (centre < channel.height)),
+        "lid": np.flatnonzero(centre > channel.height),
+    }
+    return mesh.with_boundaries(boundaries).with_subdomains(subdomains)

@@ -1,0 +1,169 @@
+"""A solved chip: patterns that any voltage, liquid and frequency merely scale."""
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from model.arrays import Real
+from model.fields.lines import Line, LineTable
+from model.fields.piecewise import Piecewise
+from model.fields.section import Fold, Rest
+from model.fields.stored import Stored
+
+if TYPE_CHECKING:
+    from model.layout import Layout
+
+
+@dataclass(frozen=True, eq=False)
+class ChipPatterns(Stored):
+    r"""Field, heat and flow of a chip per 1 V rms between neighbouring electrodes.
+
+    With the liquid's permittivity ε, conductivity σ, thermal conductivity k and viscosity η, the
+    angular frequency ω, α = d ln ε/dT, β = d ln σ/dT and the rms voltage V:
+
+    - field E = V·Ê, with Ê from :meth:`electric_field` in 1/m;
+    - temperature rise ΔT = (σV²/k)·Θ, Θ from :meth:`temperature`;
+    - electrothermal velocity u = (εσV⁴/(kηL))·[(α − β)/(1 + (ωε/σ)²)·U₁ − (α/2)·U₂], U from
+      :meth:`electrothermal`, L the attribute `length`;
+    - capacitance of one gap per metre of bar C = ε·`cell_factor`, its conductance
+      σ·`cell_factor`.
+
+    Coordinates in m: x from a bar's centre along the flow, any x; y from the electrode plane.
+    Ohmic heat alone is counted, and its change of σ, ε and η is not fed back: right for rises of
+    a few kelvin.
+
+    Parameters
+    ----------
+    chip
+        What was solved.
+    thermal_conductivity
+        k of the liquid that was used, W/(m K).
+    cell_factor
+        C/ε per metre of bar and gap.
+    length
+        The pitch L, m.
+    period
+        Repeat of |Ê|², Θ and the flow along x, m; None if the chip does not repeat.
+    height
+        Of the liquid, m.
+    peak_temperature
+        Largest Θ in the liquid.
+    """
+
+    chip: "Layout"
+    thermal_conductivity: float
+    cell_factor: float
+    length: float
+    height: float
+    peak_temperature: float
+    fold: Fold
+    rests: tuple[Rest, ...]
+    potential: Piecewise
+    heat: Piecewise
+    flows: Piecewise
+    table: LineTable
+
+    @property
+    def period(self) -> float | None:
+        """Repeat of the quadratic patterns along x, m."""
+        return self.fold.period
+
+    def electric_field(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
+        """Field Ê = −∇φ in 1/m, that is V/m per volt; it changes sign from bar to bar.
+
+        Parameters
+        ----------
+        x, y
+            Places in the liquid, m; they broadcast.
+
+        Raises
+        ------
+        ValueError
+            If a place is not in the liquid.
+        """
+        spots = _spots(x, y)
+        place, side, sign = self.fold.fold(spots.x)
+        slopes = self.potential.slopes(*_within(self.potential, place, spots.y))[0]
+        flip = side if self.fold.parity == 1 else np.ones_like(side)
+        lift = np.ones_like(side) if self.fold.parity == 1 else side
+        return spots.shaped(-slopes[0] * sign * flip), spots.shaped(-slopes[1] * sign * lift)
+
+    def gradient_e2(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
+        """∇|Ê|² = 2(Ê·∇)Ê in 1/m³; arguments and errors as :meth:`electric_field`."""
+        spots = _spots(x, y)
+        place, side, _ = self.fold.fold(spots.x)
+        located = _within(self.potential, place, spots.y)
+        gradient = self.potential.square_gradients(*located)[0]
+        return spots.shaped(gradient[0] * side), spots.shaped(gradient[1])
+
+    def temperature(self, x: ArrayLike, y: ArrayLike) -> Real:
+        """Temperature rise Θ = ΔT·k/(σV²) in liquid and walls.
+
+        Raises
+        ------
+        ValueError
+            If a place is outside the chip.
+        """
+        spots = _spots(x, y)
+        place, _, _ = self.fold.fold(spots.x)
+        level, factor = spots.y.copy(), np.ones_like(spots.y)
+        for rest in self.rests:
+            low, high = sorted((rest.level, rest.outside))
+            beyond = (level >= low) & (level <= high)
+            factor[beyond] = 1 - rest.falloff * np.abs(level[beyond] - rest.level)
+            level[beyond] = rest.level
+        values = self.heat.values(*_within(self.heat, place, level))[0]
+        return spots.shaped(values * factor)
+
+    def electrothermal(
+        self, x: ArrayLike, y: ArrayLike
+    ) -> tuple[tuple[Real, Real], tuple[Real, Real]]:
+        """Velocity patterns U₁ of the force (∇Θ·Ê)Ê and U₂ of |Ê|²∇Θ, each (x, y), no unit.
+
+        Arguments and errors as :meth:`electric_field`. The liquid as a whole is not pumped:
+        without a pressure difference no net flow is driven along a symmetric array.
+        """
+        spots = _spots(x, y)
+        place, side, _ = self.fold.fold(spots.x)
+        u = self.flows.values(*_within(self.flows, place, spots.y))
+        return (
+            (spots.shaped(u[0] * side), spots.shaped(u[1])),
+            (spots.shaped(u[2] * side), spots.shaped(u[3])),
+        )
+
+    def line(self, y: float) -> Line:
+        """All patterns along one period at the height `y`, in tens of microseconds.
+
+        Raises
+        ------
+        ValueError
+            If the height is not in the liquid.
+        """
+        return self.table.line(y)
+
+
+@dataclass(frozen=True)
+class _Spots:
+    """Flattened places and the shape to give back."""
+
+    x: Real
+    y: Real
+    shape: tuple[int, ...]
+
+    def shaped(self, values: Real) -> Real:
+        return values.reshape(self.shape)
+
+
+def _spots(x: ArrayLike, y: ArrayLike) -> _Spots:
+    wide, tall = np.broadcast_arrays(np.asarray(x, dtype=float), np.asarray(y, dtype=float))
+    return _Spots(wide.ravel(), tall.ravel(), wide.shape)
+
+
+def _within(functions: Piecewise, x: Real, y: Real) -> tuple[np.ndarray, Real]:
+    cell, place = functions.cells.locate(np.stack([x, y]))
+    if np.any(cell < 0):
+        worst = int(np.argmax(cell < 0))
+        raise ValueError(f"x = {x[worst]:g} m, y = {y[worst]:g} m is outside the section")
+    return cell, place

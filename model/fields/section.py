@@ -1,0 +1,151 @@
+"""What a layout hands to the solves: mesh, named parts, and how the piece repeats."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+import numpy as np
+from skfem import Mesh, MeshQuad
+
+from model.arrays import Real
+
+
+@dataclass(frozen=True)
+class Fold:
+    """How the solved piece stands for every x.
+
+    Quadratic patterns (|Ê|², heat, flow) repeat with `period`; the field itself comes back
+    multiplied by `alternation`.
+
+    Parameters
+    ----------
+    period
+        Length of one repeat along x, m; None if the piece stands alone.
+    mirrored
+        The piece is one half, 0 ≤ x ≤ period/2, with mirror planes at both ends; the other half
+        is its mirror image about x = 0. A piece without a period is mirrored about x = 0 alone.
+    alternation
+        φ(x + period)/φ(x): −1 if neighbouring electrodes are opposite, else 1.
+    parity
+        φ(−x)/φ(x) of a mirrored piece: 1 or −1.
+    """
+
+    period: float | None = None
+    mirrored: bool = False
+    alternation: int = 1
+    parity: int = 1
+
+    def fold(self, x: Real) -> tuple[Real, Real, Real]:
+        """Place any x into the piece.
+
+        Returns
+        -------
+        place, side, sign
+            `place` lies in the piece. An x component of a force or velocity is multiplied by
+            `side` (±1), φ by `sign` (±1); all have the shape of `x`.
+        """
+        side, sign = np.ones_like(x), np.ones_like(x)
+        place = x
+        if self.period is not None:
+            turns = np.round(x / self.period) if self.mirrored else np.floor(x / self.period)
+            place = x - turns * self.period
+            if self.alternation < 0:
+                sign = np.where(turns % 2 == 0, 1.0, -1.0)
+        if self.mirrored:
+            side = np.where(place < 0, -1.0, 1.0)
+            sign = sign * (np.where(place < 0, self.parity, 1.0))
+            place = np.abs(place)
+            if self.period is not None:
+                place = np.minimum(place, 0.5 * self.period)  # rounding must not lead outside
+        return place, side, sign
+
+
+@dataclass(frozen=True)
+class Rest:
+    """A wall that goes on beyond the mesh, where Θ no longer varies along x.
+
+    There Θ(y) = Θ(level)·(1 − falloff·|y − level|), from `level`, where the mesh ends (m), to
+    `outside`, where the wall ends (m); `falloff` in 1/m.
+    """
+
+    level: float
+    outside: float
+    falloff: float
+
+
+@dataclass(frozen=True, eq=False)
+class Section:
+    """Smallest piece of a chip that symmetry leaves, ready for the solves.
+
+    Lengths in m, x along the flow from a bar's centre, y upward from the electrode plane.
+
+    Parameters
+    ----------
+    mesh
+        Triangles, or quadrilaterals that traverse every shared side in the same sense. The
+        subdomain ``liquid`` must be named; every other subdomain is a wall. Sides are named as
+        boundaries.
+    potentials
+        Potential of each named side that is held, in V per volt between neighbours: electrodes,
+        and mirror planes about which φ is odd. All other sides of the liquid are insulating.
+    electrodes
+        Which of `potentials` are metal.
+    length
+        Length L that scales the flow patterns: the pitch.
+    height
+        Of the liquid.
+    cells_per_gap
+        How many of these pieces carry the energy of one gap (2 if the piece is half a gap).
+    fold
+        How the piece repeats.
+    mirrors
+        Symmetry planes of the liquid and the axis (0 for x, 1 for y) they stand across: flow
+        slips freely along them. No slip holds on every other side.
+    wall_conductivities
+        Thermal conductivity of each wall subdomain, W/(m K).
+    outsides
+        Heat-transfer coefficient of each side through which heat leaves, W/(m² K); None holds
+        it at Θ = 0. Sides that are not named are insulated.
+    rests
+        What lies beyond a mesh that stands for thicker walls.
+    joined
+        The two sides that are one and the same, of a piece that repeats without mirror planes.
+    """
+
+    mesh: Mesh
+    potentials: Mapping[str, float]
+    electrodes: tuple[str, ...]
+    length: float
+    height: float
+    cells_per_gap: float = 1.0
+    fold: Fold = field(default_factory=Fold)
+    mirrors: Mapping[str, int] = field(default_factory=dict)
+    wall_conductivities: Mapping[str, float] = field(default_factory=dict)
+    outsides: Mapping[str, float | None] = field(default_factory=dict)
+    rests: tuple[Rest, ...] = ()
+    joined: tuple[str, str] | None = None
+
+    def __post_init__(self) -> None:
+        subdomains = self.mesh.subdomains or {}
+        boundaries = self.mesh.boundaries or {}
+        named = {*self.potentials, *self.electrodes, *self.mirrors, *self.outsides}
+        named |= set(self.joined or ())
+        if missing := named - set(boundaries):
+            raise ValueError(f"the mesh names no boundary {sorted(missing)}")
+        if missing := {"liquid", *self.wall_conductivities} - set(subdomains):
+            raise ValueError(f"the mesh names no subdomain {sorted(missing)}")
+        if isinstance(self.mesh, MeshQuad) and not _sides_agree(self.mesh):
+            raise ValueError("two quadrilaterals traverse a shared side in opposite sense")
+
+    def liquid(self) -> Mesh:
+        """Mesh of the liquid alone, with the same names."""
+        return self.mesh.restrict("liquid")
+
+
+def _sides_agree(mesh: Mesh) -> bool:
+    """Whether every side has one sense, as elements of third and higher order need."""
+    sides = np.array([[0, 1], [1, 2], [3, 2], [0, 3]])
+    ends = mesh.t[sides]  # (4, 2, n_cell)
+    forward = ends[:, 0] < ends[:, 1]
+    first = np.full(mesh.nfacets, -1)
+    first[mesh.t2f.ravel()] = forward.ravel()
+    return bool(np.all(first[mesh.t2f] == forward))

@@ -1,0 +1,82 @@
+"""Integrals along named sides of a mesh."""
+
+from collections.abc import Callable
+
+import numpy as np
+
+from model.arrays import Real
+from model.fields.assembly import Space
+from model.fields.cells import Index
+
+#: Ends of each side of the reference triangle and square, as scikit-fem numbers them.
+_ENDS = {
+    3: (((0, 0), (1, 0)), ((1, 0), (0, 1)), ((0, 0), (0, 1))),
+    4: (((0, 0), (1, 0)), ((1, 0), (1, 1)), ((0, 1), (1, 1)), ((0, 0), (0, 1))),
+}
+
+
+def side_masses(functions: Space, name: str) -> tuple[Index, Real]:
+    """Cells (n,) at a named side, and their matrices (n, n_local, n_local) of ∫ u v along it."""
+    cells, sides, lengths = _sides(functions, name)
+    traces, weights = _traces(functions)
+    reference = traces @ (traces * weights).transpose(0, 2, 1)
+    return cells, reference[sides] * lengths[:, None, None]
+
+
+def project_on_side(functions: Space, name: str, law: Callable[[Real], Real], axis: int) -> Real:
+    """Coefficients (n_unknown,) closest to one component of `law` on a named side, 0 elsewhere.
+
+    `law` takes places (2, n) in m and gives vectors (2, n); `axis` picks the component.
+    """
+    cells, sides, lengths = _sides(functions, name)
+    traces, weights = _traces(functions)
+    own = functions.on(name)
+    place = np.full(functions.size, -1)
+    place[own] = np.arange(own.size)
+    system, vector = np.zeros((own.size, own.size)), np.zeros(own.size)
+    corners = functions.mesh.p[:, functions.mesh.t[:, cells]]  # (2, corner, n)
+    _, masses = side_masses(functions, name)
+    for row, (cell, side) in enumerate(zip(cells, sides, strict=True)):
+        start, end = (_corner(corners[:, :, row], point) for point in _ENDS[len(corners[0])][side])
+        spots = start[:, None] + (end - start)[:, None] * _steps()[0]
+        values = traces[side] @ (law(spots)[axis] * weights) * lengths[row]
+        local = place[functions.dofs[:, cell]]
+        at = local >= 0
+        system[np.ix_(local[at], local[at])] += masses[row][np.ix_(at, at)]
+        vector[local[at]] += values[at]
+    solution = np.zeros(functions.size)
+    solution[own] = np.linalg.solve(system, vector)
+    return solution
+
+
+def _sides(functions: Space, name: str) -> tuple[Index, Index, Real]:
+    """Cell, local number and length of each facet of a named side."""
+    mesh = functions.mesh
+    facets = mesh.boundaries[name]
+    cells = mesh.f2t[0, facets]
+    sides = (mesh.t2f[:, cells] == facets).argmax(axis=0)
+    ends = mesh.p[:, mesh.facets[:, facets]]
+    return cells, sides, np.hypot(*(ends[:, 1] - ends[:, 0]))
+
+
+def _traces(functions: Space) -> tuple[Real, Real]:
+    """Local functions on each reference side, (n_side, n_local, n_point), and weights."""
+    steps, weights = _steps()
+    tables = []
+    for start, end in _ENDS[functions.mesh.t.shape[0]]:
+        places = np.outer(start, 1 - steps) + np.outer(end, steps)
+        parts = [functions.element.lbasis(places, i)[0] for i in range(len(functions.dofs))]
+        tables.append(np.stack([np.broadcast_to(part, steps.shape) for part in parts]))
+    return np.stack(tables), weights
+
+
+def _steps() -> tuple[Real, Real]:
+    """Gauss points and weights on 0…1, exact for the square of any degree in use."""
+    points, weights = np.polynomial.legendre.leggauss(10)
+    return 0.5 + 0.5 * points, 0.5 * weights
+
+
+def _corner(corners: Real, point: tuple[int, int]) -> Real:
+    """Corner (2,) of a cell that stands at a corner of the reference cell."""
+    numbers = {(0, 0): 0, (1, 0): 1, (1, 1): 2, (0, 1): 3 if corners.shape[1] == 4 else 2}
+    return corners[:, numbers[point]]

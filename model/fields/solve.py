@@ -1,0 +1,95 @@
+"""Solves a chip once into its patterns."""
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from model.arrays import Real
+from model.fields.assembly import space
+from model.fields.cells import Cells
+from model.fields.electric import solve_potential
+from model.fields.flow import FlowSpace, solve_flow
+from model.fields.heat import Cooling, solve_temperature
+from model.fields.patterns import ChipPatterns
+from model.fields.piecewise import Piecewise
+from model.fields.sampling import sample_lines
+from model.fields.section import Section
+
+if TYPE_CHECKING:
+    from model.layout import Layout
+
+#: Water at 25 °C and 0.1 MPa, W/(m K), IAPWS R15-11.
+WATER = 0.6065
+#: Polynomial degrees: φ is differentiated twice, so it is the finest.
+FIELD_DEGREE, HEAT_DEGREE, FLOW_DEGREE = 7, 4, 4
+#: Quadrature order: |Ê|² of the field's own polynomials.
+ORDER = 2 * FIELD_DEGREE
+
+
+def solve_chip(
+    chip: "Layout", thermal_conductivity: float = WATER, refinement: int = 0
+) -> ChipPatterns:
+    """Solve field, heat and electrothermal flow of a chip.
+
+    Parameters
+    ----------
+    chip
+        Its layout; `section` gives the mesh.
+    thermal_conductivity
+        k of the liquid, W/(m K).
+    refinement
+        Levels of uniform refinement, for convergence tests; each takes about four times longer.
+
+    Raises
+    ------
+    ValueError
+        If floor and lid are both insulated, so that no steady temperature exists.
+    """
+    section = chip.section(refinement)
+    mesh = section.liquid()
+    potential = solve_potential(
+        space(mesh, FIELD_DEGREE, ORDER, section.joined), section.potentials
+    )
+    field = potential.gradients()
+    heat, slopes = _heat(section, field, thermal_conductivity)
+    along = np.einsum("ckq,ckq->kq", slopes, field)
+    pair = FlowSpace.on(mesh, FLOW_DEGREE, ORDER, section.joined)
+    flows = solve_flow(
+        pair,
+        [along * field, np.einsum("ckq,ckq->kq", field, field) * slopes],
+        section.mirrors,
+    )
+    cells = Cells.of(mesh)
+    patterns = {
+        "potential": Piecewise.of(potential.space, potential.solution[None], cells),
+        "heat": heat,
+        # velocities in 1/m per unit of force: the length makes them plain numbers
+        "flows": Piecewise.of(pair.velocity, np.concatenate(flows) * section.length, cells),
+    }
+    return ChipPatterns(
+        chip=chip,
+        thermal_conductivity=thermal_conductivity,
+        cell_factor=section.cells_per_gap * potential.energy,
+        length=section.length,
+        height=section.height,
+        peak_temperature=float(heat.highest(section.mesh.subdomains["liquid"])[0]),
+        fold=section.fold,
+        rests=section.rests,
+        table=sample_lines(section, **patterns),
+        **patterns,
+    )
+
+
+def _heat(section: Section, field: Real, thermal_conductivity: float) -> tuple[Piecewise, Real]:
+    """Θ in the whole section, and its gradient at the quadrature points of the liquid."""
+    mesh = section.mesh
+    functions = space(mesh, HEAT_DEGREE, ORDER, section.joined)
+    liquid = mesh.subdomains["liquid"]
+    conductivity = np.full(mesh.nelements, thermal_conductivity)
+    for name, value in section.wall_conductivities.items():
+        conductivity[mesh.subdomains[name]] = value
+    density = np.zeros((mesh.nelements, field.shape[2]))
+    density[liquid] = thermal_conductivity * np.einsum("ckq,ckq->kq", field, field)
+    solution = solve_temperature(functions, conductivity, density, Cooling(section.outsides))
+    slopes = functions.gradients(solution)[:, liquid]
+    return Piecewise.of(functions, solution[None], Cells.of(mesh)), slopes

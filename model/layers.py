@@ -1,0 +1,134 @@
+"""Parts of a layered particle as a person enters them: its core and the layers around it."""
+
+from collections.abc import Mapping
+from typing import Annotated, Any
+
+from pydantic import BeforeValidator, Discriminator, Tag
+from pydantic_core import PydanticCustomError
+from scipy.constants import epsilon_0
+
+from model.arrays import Complex, Real
+from model.declare import Part, Quantity, Text
+from model.polarisation import complex_permittivity
+
+#: Most layers around one core.
+MOST_LAYERS = 32
+#: A layer up to this thickness counts as a membrane whose voltage matters: bilayers have 4 to
+#: 10 nm, envelopes of two bilayers up to about 25 nm; cell walls and coats are thicker.
+MEMBRANE_THICKNESS = 25e-9
+
+RelativePermittivity = Annotated[
+    float,
+    Quantity("Relative permittivity", "Static, of the material.", unit="", low="1", high="1000"),
+]
+Conductivity = Annotated[
+    float,
+    Quantity("Conductivity", "Of the material.", unit="S/m", low="0 S/m", high="1e8 S/m"),
+]
+
+
+class Material(Part):
+    """A homogeneous conducting dielectric."""
+
+    relative_permittivity: RelativePermittivity
+    conductivity: Conductivity
+
+    def complex_permittivity(self, omega: Real) -> Complex:
+        """ε̃ = ε − jσ/ω, F/m, the shape of `omega`."""
+        return complex_permittivity(
+            epsilon_0 * self.relative_permittivity, self.conductivity, omega
+        )
+
+
+class Core(Material):
+    """What all layers enclose, e.g. the cytoplasm."""
+
+
+class Layer(Material):
+    """A layer with a thickness, e.g. a cell wall."""
+
+    name: Annotated[str, Text("Name", "How this layer is called.", longest=40)] = "layer"
+    thickness: Annotated[
+        float,
+        Quantity("Thickness", "Of the layer.", unit="nm", low="0.1 nm", high="100 um"),
+    ]
+
+    @property
+    def is_membrane(self) -> bool:
+        """Whether its voltage counts as a membrane voltage: at most 25 nm thick."""
+        return self.thickness <= MEMBRANE_THICKNESS
+
+
+class Membrane(Part):
+    """A layer without thickness, given by area-specific values as published data come."""
+
+    name: Annotated[str, Text("Name", "How this membrane is called.", longest=40)] = "membrane"
+    capacitance: Annotated[
+        float,
+        Quantity(
+            "Membrane capacitance",
+            "Per area, folds and microvilli included.",
+            unit="mF/m^2",
+            low="0.01 mF/m^2",
+            high="1 F/m^2",
+        ),
+    ]
+    conductance: Annotated[
+        float,
+        Quantity(
+            "Membrane conductance",
+            "Per area; 0 for a membrane that holds tight.",
+            unit="S/m^2",
+            low="0 S/m^2",
+            high="1e8 S/m^2",
+        ),
+    ]
+
+    @property
+    def thickness(self) -> float:
+        """None of its own."""
+        return 0.0
+
+    @property
+    def is_membrane(self) -> bool:
+        """Always."""
+        return True
+
+    def complex_capacitance(self, omega: Real) -> Complex:
+        """c̃ = C + G/(jω), F/m², the shape of `omega`."""
+        return complex_permittivity(self.capacitance, self.conductance, omega)
+
+
+def _tag(value: Any) -> str | None:
+    """Tell the two apart: a membrane has capacitance or conductance."""
+    if isinstance(value, Mapping):
+        return "membrane" if {"capacitance", "conductance"} & value.keys() else "layer"
+    if isinstance(value, Membrane):
+        return "membrane"
+    return "layer" if isinstance(value, Layer) else None
+
+
+def _counted(value: Any) -> Any:
+    """Refuse what is no list, and more layers than are read, before each is looked at."""
+    if not isinstance(value, list | tuple):
+        problem = "must be a list of layers, core outward"
+    elif not value:
+        problem = "needs at least one layer"
+    elif len(value) > MOST_LAYERS:
+        problem = f"has {len(value)} layers; at most {MOST_LAYERS} layers can be used"
+    else:
+        return value
+    raise PydanticCustomError("declared", "{problem}", {"problem": problem})
+
+
+#: One layer: with a thickness, or a membrane by capacitance and conductance.
+AnyLayer = Annotated[
+    Annotated[Layer, Tag("layer")] | Annotated[Membrane, Tag("membrane")],
+    Discriminator(
+        _tag,
+        custom_error_type="declared",
+        custom_error_message="must be a table with thickness, or with capacitance and conductance",
+    ),
+]
+#: Layers around a core, outward.
+Layers = Annotated[tuple[AnyLayer, ...], BeforeValidator(_counted)]

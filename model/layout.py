@@ -1,0 +1,57 @@
+"""What every electrode layout provides; the layouts themselves stand in ``model/layouts/``."""
+
+from abc import ABC, abstractmethod
+from typing import Annotated
+
+from model.declare import Part, Quantity
+from model.fields.section import Section
+from model.walls import Wall
+
+
+class Layout(Part, ABC):
+    """A chip: electrodes, channel and walls. Only what is solved for once stands here.
+
+    A layout adds its own fields, a ``layout`` literal, and the methods below; it knows nothing
+    of liquids, particles or voltages.
+    """
+
+    layout: str
+    channel_height: Annotated[
+        float,
+        Quantity(
+            "Channel height",
+            "Liquid depth between floor and lid.",
+            unit="um",
+            low="5 um",
+            high="2 mm",
+        ),
+    ]
+    channel_width: Annotated[
+        float,
+        Quantity(
+            "Channel width",
+            "Across the flow; also the wetted length of each bar.",
+            unit="mm",
+            low="10 um",
+            high="50 mm",
+        ),
+    ]
+    floor: Wall = Wall(material="glass", thickness=700e-6, outside="held")
+    lid: Wall = Wall(material="pdms", thickness=4e-3, outside="still-air")
+
+    @abstractmethod
+    def section(self, refinement: int = 0) -> Section:
+        """Mesh and named parts of the smallest piece that symmetry leaves, for the solves.
+
+        `refinement` adds levels of uniform refinement, for convergence tests.
+        """
+
+    @property
+    @abstractmethod
+    def parallel_length(self) -> float:
+        """Total length of the gaps that carry current in parallel, m."""
+
+    @property
+    @abstractmethod
+    def narrowest(self) -> float:
+        """Smallest opening that a particle meets between electrodes, m."""

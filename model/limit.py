@@ -1,0 +1,34 @@
+"""What every limit provides; the limits themselves stand in ``model/limits/``."""
+
+from abc import ABC, abstractmethod
+from typing import TYPE_CHECKING, ClassVar
+
+from model.declare import Quantity
+from model.law import Law
+
+if TYPE_CHECKING:
+    from model.conditions import Conditions
+
+
+class Limit(ABC):
+    """Something that must not happen; gives the most voltage at which it does not.
+
+    The id is also the profile's key in ``[limits]`` when the limit has a threshold of its own.
+    """
+
+    id: ClassVar[str]
+    label: ClassVar[str]
+    #: Why it matters, one sentence.
+    why: ClassVar[str]
+    source: ClassVar[str]
+    #: What to change, one sentence.
+    remedy: ClassVar[str]
+    #: Unit in which the ledger shows value and threshold.
+    unit: ClassVar[str]
+    #: Declaration of the editable threshold and its default in SI; None if it stands elsewhere.
+    threshold: ClassVar[Quantity | None] = None
+    default: ClassVar[float] = 0.0
+
+    @abstractmethod
+    def laws(self, at: "Conditions") -> tuple[Law, ...]:
+        """One law, or one for each particle it protects; none where it does not apply."""

@@ -1,0 +1,30 @@
+"""Limit: particles to be collected must be drawn the way the task needs."""
+
+from typing import TYPE_CHECKING
+
+from model.law import Law
+from model.limit import Limit
+
+if TYPE_CHECKING:
+    from model.conditions import Conditions
+
+
+class ForceSign(Limit):
+    """Re K, counted positive the way the task wants it, must be above zero at any voltage."""
+
+    id = "force_sign"
+    label = "sign of the force"
+    why = "With the wrong sign the particle is pushed away from where it should be collected."
+    source = "sign of the Clausius–Mossotti factor, Jones 1995, Electromechanics of Particles"
+    remedy = "Move the frequency or the conductivity to the other side of the crossover."
+    unit = ""
+
+    def laws(self, at: "Conditions") -> tuple[Law, ...]:
+        """One condition for each collected particle that the task needs a sign of."""
+        laws = []
+        for particle in at.design.collected:
+            sign = at.design.task.wanted_sign(particle)
+            if sign:
+                value = sign * at.polarisation(particle).real
+                laws.append(Law(value, 0, 0.0, sense="least", subject=particle.name))
+        return tuple(laws)

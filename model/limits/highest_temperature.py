@@ -1,0 +1,35 @@
+"""Limit: the highest temperature anywhere in the liquid."""
+
+from typing import TYPE_CHECKING
+
+from model.declare import Quantity
+from model.law import Law
+from model.limit import Limit
+
+if TYPE_CHECKING:
+    from model.conditions import Conditions
+
+
+class HighestTemperature(Limit):
+    """T = T_stage + duty · Θ_max σ V_rms²/k."""
+
+    id = "highest_temperature"
+    label = "highest temperature"
+    why = "Above body temperature mammalian cells are stressed; other samples have their own bound."
+    source = "37 °C: common practice for mammalian cells, no source; set your organism's own"
+    remedy = "Cool the stage, or lower the voltage or the conductivity."
+    unit = "degC"
+    threshold = Quantity(
+        "Highest temperature",
+        "Most that the liquid may reach anywhere.",
+        unit="degC",
+        low="1 degC",
+        high="99 degC",
+        source="common practice, no source",
+    )
+    default = 310.15
+
+    def laws(self, at: "Conditions") -> tuple[Law, ...]:
+        """One law, power 2, starting from the stage temperature."""
+        stage = at.design.liquid.temperature
+        return (Law(at.heating, 2, at.design.threshold(self.id), offset=stage),)

@@ -1,0 +1,36 @@
+"""Limit: how much warmer than the stage the liquid may become."""
+
+from typing import TYPE_CHECKING
+
+from model.declare import Quantity
+from model.law import Law
+from model.limit import Limit
+
+if TYPE_CHECKING:
+    from model.conditions import Conditions
+
+
+class TemperatureRise(Limit):
+    """ΔT = duty · Θ_max σ V_rms²/k at the hottest point of the liquid."""
+
+    id = "temperature_rise"
+    label = "temperature rise"
+    why = "Warm liquid flows, changes conductivity and harms cells."
+    source = (
+        "Joule heating, Ramos et al. 1998 J. Phys. D 31:2338; threshold: common practice, no source"
+    )
+    remedy = "Lower the voltage or the conductivity, or cool the floor better."
+    unit = "K"
+    threshold = Quantity(
+        "Temperature rise",
+        "Most that the hottest liquid may be warmer than the stage.",
+        unit="K",
+        low="0.01 K",
+        high="80 K",
+        source="common practice, no source",
+    )
+    default = 4.0
+
+    def laws(self, at: "Conditions") -> tuple[Law, ...]:
+        """One law, power 2."""
+        return (Law(at.heating, 2, at.design.threshold(self.id)),)

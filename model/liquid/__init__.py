@@ -1,0 +1,1 @@
+"""The liquid: water, what is dissolved in it, and how warmth changes it."""

@@ -1,0 +1,214 @@
+"""Profiles: a design as nested plain data, as a TOML file and as a short fingerprint."""
+
+import difflib
+import hashlib
+import json
+import tomllib
+from collections.abc import Mapping
+from pathlib import Path
+from typing import Any
+
+import tomli_w
+from pydantic import BaseModel, ValidationError
+
+from model.declare import FROM_PERSON, declarations
+from model.design import Design
+from model.errors import DesignError, FieldError
+from model.layouts import LAYOUTS
+from model.particles import PARTICLES
+from model.tasks import TASKS
+
+#: Version of the format; a change of meaning raises it and brings a migration.
+SCHEMA = 1
+#: Largest profile that is read.
+MAX_BYTES = 256 * 1024
+_TAGS = {*LAYOUTS, *PARTICLES, *TASKS, "layer", "membrane"}
+
+
+def load_profile(path: str | Path) -> Design:
+    """Read a profile file.
+
+    Raises
+    ------
+    DesignError
+        With every field that is wrong, or the reason why the file cannot be read at all.
+    """
+    try:
+        with Path(path).open("rb") as file:
+            content = file.read(MAX_BYTES + 1)
+    except OSError as problem:
+        reason = problem.strerror or "unknown reason"
+        raise DesignError([FieldError("", str(path), f"cannot be opened: {reason}")]) from None
+    return read_profile(content)
+
+
+def read_profile(content: bytes) -> Design:
+    """Read a profile from the bytes of a TOML file; errors as :func:`load_profile`."""
+    return parse_design(read_document(content))
+
+
+def read_document(content: bytes) -> dict[str, Any]:
+    """Read TOML into nested plain data without looking at the fields."""
+    if len(content) > MAX_BYTES:
+        size = f"{MAX_BYTES // 1024} kB"
+        raise DesignError([FieldError("", "", f"is larger than {size}, the most a profile may be")])
+    try:
+        return tomllib.loads(content.decode("utf-8"))
+    except UnicodeDecodeError:
+        raise DesignError([FieldError("", "", "is no UTF-8 text file")]) from None
+    except (ValueError, RecursionError) as problem:  # ValueError: also numbers of endless digits
+        raise DesignError([FieldError("", "", f"is no TOML file: {problem}")]) from None
+
+
+def parse_design(document: Mapping[str, Any]) -> Design:
+    """Turn nested plain data, as people write it, into a design.
+
+    A bare number is taken in the unit that the field shows.
+
+    Raises
+    ------
+    DesignError
+        With one entry for every field that is wrong.
+    """
+    data = dict(document)
+    schema = data.pop("schema", SCHEMA)
+    if schema != SCHEMA or isinstance(schema, bool):
+        problem = f"must be {SCHEMA}; this program reads no other version"
+        raise DesignError([FieldError("schema", _shown(schema), problem)])
+    try:
+        return Design.model_validate(data, context=FROM_PERSON)
+    except ValidationError as problem:
+        raise DesignError(_field_errors(problem, data)) from None
+
+
+def document(design: Design) -> dict[str, Any]:
+    """Write a design as nested plain data that :func:`parse_design` reads back exactly."""
+    return {"schema": SCHEMA, **_part_document(design)}
+
+
+def profile_text(design: Design) -> str:
+    """Write a design as the text of a TOML profile."""
+    return tomli_w.dumps(document(design))
+
+
+def fingerprint(design: Design) -> str:
+    """Give eight hexadecimal digits that tell designs apart by what is computed from them.
+
+    Title and question do not count.
+    """
+    data = document(design)
+    del data["title"], data["question"]
+    text = json.dumps(data, sort_keys=True, separators=(",", ":"), ensure_ascii=True)
+    digest = hashlib.sha256(text.encode()).hexdigest()
+    return f"{digest[:4]}-{digest[4:8]}"
+
+
+def _part_document(part: BaseModel) -> dict[str, Any]:
+    known = dict(declarations(type(part)))
+    data = {}
+    for name, info in type(part).model_fields.items():
+        key, value = info.alias or name, getattr(part, name)
+        if key in known:
+            value = known[key].text(value)
+        elif isinstance(value, BaseModel):
+            value = _part_document(value)
+        elif isinstance(value, tuple):
+            value = [_part_document(item) for item in value]
+        if value is not None:
+            data[key] = value
+    return data
+
+
+def _field_errors(problem: ValidationError, data: Mapping[str, Any]) -> list[FieldError]:
+    """Reword the validator's findings, each with the path as the profile has it."""
+    errors = []
+    for found in problem.errors(include_url=False):
+        keys, value = _place(found["loc"], data)
+        path, context = ".".join(map(str, keys)), found.get("ctx", {})
+        for end, reason in context.get("misfits", ()):  # fine alone, impossible together
+            place = f"{path}.{end}".lstrip(".")
+            errors.append(FieldError(place, _shown(_at(data, place)), reason))
+        if "misfits" not in context:
+            shown = "" if found["type"] == "missing" else _shown(value)
+            problem_text = _problem(found["type"], found["msg"], context, keys)
+            errors.append(FieldError(path, shown, problem_text))
+    return list(dict.fromkeys(errors))
+
+
+def _place(location: tuple[int | str, ...], data: Any) -> tuple[list[int | str], Any]:
+    """Follow a validator's location through the data; its union tags are no part of the path."""
+    keys: list[int | str] = []
+    for key in location:
+        if isinstance(data, Mapping) and key not in data and key in _TAGS:
+            continue
+        keys.append(key)
+        data = _step(data, key)
+    return keys, data
+
+
+def _at(data: Any, path: str) -> Any:
+    for key in path.split("."):
+        data = _step(data, int(key) if key.isdecimal() else key)
+    return data
+
+
+def _step(data: Any, key: int | str) -> Any:
+    if isinstance(data, Mapping):
+        return data.get(key)
+    if isinstance(data, list | tuple) and isinstance(key, int) and key < len(data):
+        return data[key]
+    return None
+
+
+def _problem(kind: str, message: str, context: Mapping[str, Any], keys: list[int | str]) -> str:
+    """Say what is wrong as one plain sentence."""
+    match kind:
+        case "declared":
+            return message
+        case "missing":
+            return "is missing"
+        case "extra_forbidden":
+            near = difflib.get_close_matches(str(keys[-1]), _known_keys(), 1)
+            return "is no key of a profile" + (f"; is {near[0]} meant?" if near else "")
+        case "union_tag_invalid":
+            key, allowed = (
+                str(context[name]).strip("'") for name in ("discriminator", "expected_tags")
+            )
+            return f"needs {key} to be one of {allowed.replace(chr(39), '')}"
+        case "union_tag_not_found":
+            return f"needs the key {str(context['discriminator']).strip(chr(39))}"
+        case "too_long":
+            found, most = context["actual_length"], context["max_length"]
+            return f"has {found} entries; at most {most} can be used"
+        case "too_short":
+            return f"needs at least {context['min_length']} entry"
+        case "tuple_type" | "list_type":
+            return "must be a list of tables"
+        case "model_type" | "model_attributes_type" | "dict_type":
+            return "must be a table of keys"
+        case _:
+            return message
+
+
+def _known_keys() -> set[str]:
+    """Every key that a profile may have, for the suggestion beside a misspelt one."""
+
+    def keys(part: type[BaseModel]) -> set[str]:
+        found = set()
+        for name, info in part.model_fields.items():
+            found.add(info.alias or name)
+            if isinstance(info.annotation, type) and issubclass(info.annotation, BaseModel):
+                found |= keys(info.annotation)
+        return found
+
+    parts: list[type[BaseModel]] = [Design, type(Design.model_fields["limits"].default)]
+    parts += [*LAYOUTS.values(), *PARTICLES.values(), *TASKS.values()]
+    return set().union(*(keys(part) for part in parts))
+
+
+def _shown(value: Any) -> str:
+    """Shorten a value for a message."""
+    if value is None:
+        return ""
+    text = value if isinstance(value, str) else repr(value)
+    return text if len(text) <= 60 else f"{text[:57]}…"

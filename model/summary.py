@@ -1,0 +1,176 @@
+"""A result as text and as plain data, for the command line and for other programs."""
+
+import csv
+import io
+import math
+from collections.abc import Iterator
+from typing import Any
+
+import numpy as np
+
+from model.arrays import Real
+from model.cautions import cautions, notes, rms_and_peak
+from model.design import Design
+from model.evaluate import Evaluation, LedgerRow, ParticleResult
+from model.polarisation import complex_permittivity
+from model.profile import fingerprint
+from model.quantity import format_quantity, format_si, to_unit
+from model.verdict import format_headroom, format_value, verdict
+from model.version import VERSION
+
+
+def check_object(result: Evaluation) -> dict[str, Any]:
+    """Verdict, ledger and particles as plain data; numbers finite, or null with a reason."""
+    load = result.load
+    binding = result.binding
+    return {
+        "version": VERSION,
+        "fingerprint": fingerprint(result.design),
+        "title": result.design.title,
+        "inside": result.inside,
+        "binding": binding.rule.id,
+        **_finite("headroom", binding.headroom, "no voltage breaks it"),
+        **_finite("floor_Vpp", result.floor_pp, "no voltage does the task at this frequency"),
+        **_finite("ceiling_Vpp", result.ceiling_pp, "no limit bounds the voltage"),
+        "temperature_rise_K": result.temperature_rise,
+        "electrothermal_speed_um_s": result.electrothermal_speed * 1e6,
+        "dep_speed_um_s": result.dielectrophoretic_speed * 1e6,
+        "chip": {
+            "liquid_resistance_ohm": load.resistance,
+            "liquid_capacitance_pF": load.capacitance * 1e12,
+            "current_mA_rms": load.rms_current * 1e3,
+            "power_mW": load.power * 1e3,
+        },
+        "particles": [_particle(result, found) for found in result.particles],
+        "limits": [_limit(row) for row in result.ledger],
+        "notes": list(notes(result)),
+        "cautions": list(cautions(result)),
+    }
+
+
+def _particle(result: Evaluation, found: ParticleResult) -> dict[str, Any]:
+    crossovers = result.crossovers(found.particle)
+    data = {
+        "name": found.particle.name,
+        "re_k": found.polarisation.real,
+        "im_k": found.polarisation.imag,
+        "crossovers_Hz": [crossover.frequency for crossover in crossovers],
+        "crossovers_direction": [crossover.direction for crossover in crossovers],
+        "force_pN": found.force * 1e12,
+    }
+    voltage = math.nan if found.membrane_voltage is None else found.membrane_voltage
+    return {**data, **_finite("membrane_voltage_V_peak", voltage, "the particle has no membrane")}
+
+
+def _limit(row: LedgerRow) -> dict[str, Any]:
+    unit = row.rule.unit
+    return {
+        "id": row.rule.id,
+        "particle": row.rule.law.subject or None,
+        **_finite("value", to_unit(row.value, unit), "out of all bounds"),
+        "allowed": to_unit(row.allowed, unit),
+        "sense": row.rule.law.sense,
+        "unit": unit,
+        **_finite("headroom", row.headroom, "no voltage breaks it"),
+    }
+
+
+def _finite(key: str, value: float, reason: str) -> dict[str, Any]:
+    """The number, or null with the reason beside it."""
+    if math.isfinite(value):
+        return {key: value}
+    return {key: None, f"{key}_reason": reason}
+
+
+def check_text(result: Evaluation) -> str:
+    """Verdict and ledger for people to read."""
+    design, drive, found = result.design, result.design.drive, verdict(result)
+    load = result.load
+    lines = [
+        f"{design.title}  [{fingerprint(design)}]",
+        *([design.question] if design.question else []),
+        "",
+        f"{found.headline}: {found.sentence}.",
+        "",
+        f"  at {format_si(drive.frequency, 'Hz')}, {format_si(drive.voltage, 'V')} peak to peak "
+        f"({rms_and_peak(drive.voltage)}), {format_si(design.liquid.conductivity, 'S/m')}",
+        f"  {_corridor(result)}",
+        f"  chip: {format_si(load.resistance, 'Ω')} and {format_si(load.capacitance, 'F')} in "
+        f"parallel, {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
+        "",
+        *_table(
+            ("limit", "value", "allowed", "headroom"),
+            [
+                (
+                    row.rule.name,
+                    format_value(row.value, row.rule.unit),
+                    ("≥ " if row.rule.law.sense == "least" else "≤ ")
+                    + format_value(row.allowed, row.rule.unit),
+                    format_headroom(row.headroom) if row.headroom else "broken",
+                )
+                for row in result.ledger
+            ],
+        ),
+        "",
+        *_table(
+            ("particle", "Re K", "force", "membrane, peak", "crossovers"),
+            [_particle_row(result, item) for item in result.particles],
+        ),
+    ]
+    lines += ["", *(f"Note: {note}" for note in notes(result))] if notes(result) else []
+    return "\n".join([*lines, "", *cautions(result)])
+
+
+def _particle_row(result: Evaluation, found: ParticleResult) -> tuple[str, ...]:
+    crossovers = result.crossovers(found.particle)
+    membrane = found.membrane_voltage
+    return (
+        found.particle.name,
+        format_quantity(found.polarisation.real, "", 3),
+        format_si(found.force, "N"),
+        "none" if membrane is None else format_si(membrane, "V"),
+        ", ".join(f"{format_si(item.frequency, 'Hz')} {item.direction}" for item in crossovers)
+        or "none",
+    )
+
+
+def _table(head: tuple[str, ...], rows: list[tuple[str, ...]]) -> list[str]:
+    """Columns of text, each as wide as its widest entry."""
+    widths = [max(len(row[index]) for row in (head, *rows)) for index in range(len(head))]
+    return [
+        "  "
+        + "  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)).rstrip()
+        for row in (head, *rows)
+    ]
+
+
+def _corridor(result: Evaluation) -> str:
+    floor, ceiling = _volts(result.floor_pp), _volts(result.ceiling_pp)
+    if result.floor_pp > result.ceiling_pp:
+        return f"no corridor here: the floor is {floor}, the lowest ceiling {ceiling} peak to peak"
+    return f"corridor here: {floor} to {ceiling} peak to peak"
+
+
+def _volts(voltage: float) -> str:
+    return "beyond any voltage" if math.isinf(voltage) else format_si(voltage, "V")
+
+
+def spectrum_rows(design: Design, frequency: Real) -> Iterator[str]:
+    """CSV lines: frequency_Hz, then Re K and Im K of every particle."""
+    omega = 2.0 * np.pi * frequency
+    liquid = design.liquid
+    medium = complex_permittivity(liquid.state.permittivity, liquid.conductivity, omega)
+    spectra = [particle.polarisation(omega, medium) for particle in design.particles]
+    names = [
+        f"{particle.name} {part}" for particle in design.particles for part in ("re_k", "im_k")
+    ]
+    yield _csv(["frequency_Hz", *names])
+    for index, value in enumerate(frequency):
+        cells = [f"{part:.9g}" for k in spectra for part in (k[index].real, k[index].imag)]
+        yield _csv([f"{value:.9g}", *cells])
+
+
+def _csv(cells: list[str]) -> str:
+    line = io.StringIO()
+    csv.writer(line, lineterminator="").writerow(cells)
+    return line.getvalue()

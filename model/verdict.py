@@ -1,0 +1,87 @@
+"""The verdict in words: inside or outside, what binds, and by how much."""
+
+import math
+from dataclasses import dataclass
+
+from model.evaluate import Evaluation, LedgerRow
+from model.quantity import format_quantity, format_si
+
+
+@dataclass(frozen=True)
+class Verdict:
+    """What the corridor says of the operating point: a headline and one sentence."""
+
+    inside: bool
+    headline: str
+    sentence: str
+
+
+def verdict(result: Evaluation) -> Verdict:
+    """Word the verdict on a design."""
+    binding = result.binding
+    if result.inside:
+        margin = format_headroom(binding.headroom)
+        return Verdict(
+            True, "Inside the corridor", f"{margin} headroom, set by {binding.rule.name}"
+        )
+    frequency = format_si(result.design.drive.frequency, "Hz")
+    floor, ceiling = _worst(result, "least"), _worst(result, "most")
+    if floor is not None and floor.bound_pp == float("inf"):
+        culprit = next(
+            (row for row in result.ledger if row.rule.law.power == 0 and not row.kept), floor
+        )
+        return Verdict(
+            False,
+            "No voltage does the task",
+            f"at {frequency}, because of {culprit.rule.name}",
+        )
+    if floor is not None and ceiling is not None and floor.bound_pp > ceiling.bound_pp:
+        return Verdict(
+            False,
+            f"No corridor at {frequency}",
+            f"{floor.rule.name} needs {_volts(floor)}, "
+            f"but {ceiling.rule.name} allows {_volts(ceiling)}",
+        )
+    if binding.rule.law.sense == "least":
+        return Verdict(
+            False,
+            "Below the corridor",
+            f"{binding.rule.name} needs at least {_volts(binding)}",
+        )
+    return Verdict(
+        False, "Above the corridor", f"{binding.rule.name} allows at most {_volts(binding)}"
+    )
+
+
+def format_headroom(headroom: float) -> str:
+    """Write a headroom as a factor, e.g. ``1.15×``.
+
+    >>> format_headroom(1.1499), format_headroom(float("inf")), format_headroom(250.0)
+    ('1.15×', 'any voltage', '> 100×')
+    """
+    if headroom == float("inf"):
+        return "any voltage"
+    if headroom > 100:
+        return "> 100×"
+    # Rounded towards broken, so that 0.9996 never reads 1.00.
+    places = 2 if headroom < 10 else 1
+    return f"{math.floor(headroom * 10**places) / 10**places:.{places}f}×"
+
+
+def format_value(value: float, unit: str) -> str:
+    """Write a ledger value or threshold in its unit to three digits."""
+    if value in (float("inf"), float("-inf")):
+        return "beyond measure"
+    return format_quantity(value, unit, 3)
+
+
+def _worst(result: Evaluation, sense: str) -> LedgerRow | None:
+    """Find the row that sets the floor or the ceiling."""
+    rows = [row for row in result.ledger if row.rule.law.sense == sense]
+    if not rows:
+        return None
+    return (max if sense == "least" else min)(rows, key=lambda row: row.bound_pp)
+
+
+def _volts(row: LedgerRow) -> str:
+    return format_si(row.bound_pp, "V")

@@ -1,0 +1,5 @@
+"""The program's version, as installed."""
+
+from importlib.metadata import version
+
+VERSION = version("slackwater")

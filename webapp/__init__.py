@@ -1,0 +1,1 @@
+"""The dashboard: parses what people enter, calls the model, draws the result."""

@@ -1,0 +1,103 @@
+"""Answers to the page: state, figures and words, as plain data for the browser."""
+
+from collections.abc import Callable
+from typing import Any
+
+from model.cautions import cautions, notes, rms_and_peak
+from model.design import Design
+from model.errors import DesignError
+from model.evaluate import Evaluation
+from model.profile import fingerprint
+from model.quantity import format_quantity, format_si
+from model.verdict import verdict
+from model.version import VERSION
+from webapp.controls import summaries
+from webapp.figures.theme import THEMES, Theme
+from webapp.link import encode
+from webapp.services import Services
+from webapp.state import design_of, read_request
+
+#: A view's own part of an answer: figures, sentences and whatever else it shows.
+ViewPart = Callable[[Evaluation, Theme], dict[str, Any]]
+
+
+def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
+    """Answer one request: the state of the page and the visible view, in one go.
+
+    Raises
+    ------
+    BadRequestError
+        If no page of ours could have sent `data`.
+    """
+    request = read_request(data)
+    try:
+        design = design_of(request)
+    except DesignError as problem:
+        return error_answer(request.number, problem)
+    result = services.evaluate(design)
+    return {**state_answer(request.number, result), **view(result, THEMES[request.theme])}
+
+
+def state_answer(number: int, result: Evaluation) -> dict[str, Any]:
+    """Fingerprint, link, verdict and the knobs' positions of a good design."""
+    design = result.design
+    found = verdict(result)
+    return {
+        "number": number,
+        "errors": {},
+        "link": encode(design),
+        "fingerprint": fingerprint(design),
+        "title": design.title,
+        "verdict": {"inside": found.inside, "headline": found.headline, "sentence": found.sentence},
+        "knobs": knobs(design),
+        "summaries": summaries(design),
+        "names": [particle.name for particle in design.particles],
+        "cautions": list(cautions(result)),
+        "notes": list(notes(result)),
+        "caption": caption(design),
+    }
+
+
+def error_answer(number: int, problem: DesignError) -> dict[str, Any]:
+    """Which controls cannot be used, and why; the page keeps its last good result."""
+    return {
+        "number": number,
+        "errors": {error.path: _sentence(error.problem) for error in problem.errors},
+    }
+
+
+def knobs(design: Design) -> dict[str, dict[str, Any]]:
+    """Value, text and side note of each knob of the operating strip, by field."""
+    drive, conductivity = design.drive, design.liquid.conductivity
+    return {
+        "drive.frequency": {
+            "value": drive.frequency,
+            "text": format_si(drive.frequency, "Hz", 4),
+            "note": f"period {format_si(1.0 / drive.frequency, 's')}",
+        },
+        "drive.voltage": {
+            "value": drive.voltage,
+            "most": round(max(1.5 * drive.voltage_limit, drive.voltage), 2),
+            "text": format_si(drive.voltage, "V", 4),
+            "note": rms_and_peak(drive.voltage),
+        },
+        "liquid.conductivity": {
+            "value": conductivity,
+            "text": format_si(conductivity, "S/m", 4),
+            "note": format_quantity(conductivity, "uS/cm", 4),
+        },
+    }
+
+
+def caption(design: Design) -> str:
+    """One line that traces a figure to its inputs: title, operating point, fingerprint, version."""
+    drive, liquid = design.drive, design.liquid
+    point = (
+        f"{format_si(drive.frequency, 'Hz')}, {format_si(drive.voltage, 'V')} peak to peak, "
+        f"{format_si(liquid.conductivity, 'S/m')}, {format_quantity(liquid.temperature, 'degC', 3)}"
+    )
+    return f"{design.title} · {point} · {fingerprint(design)} · Slackwater {VERSION}"
+
+
+def _sentence(text: str) -> str:
+    return text[:1].upper() + text[1:]

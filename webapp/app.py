@@ -1,0 +1,143 @@
+"""Makes the web application: page, callbacks, cache, headers, compression."""
+
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any, cast
+
+from dash import Dash
+from flask import Flask, Response, jsonify, request
+from flask_caching import Cache
+from flask_compress import Compress
+
+from webapp import callbacks
+from webapp.answer import answer
+from webapp.cache import ChipCache, Solver, default_folder, settings, solve
+from webapp.services import DEMO_PROFILES, Services, load_profiles
+from webapp.state import BadRequestError
+from webapp.views import VIEWS
+from webapp.views.page import page
+
+#: Largest request that is read; a profile is far smaller.
+MAX_REQUEST = 1024 * 1024
+
+
+@dataclass(frozen=True)
+class Settings:
+    """What a deployment may choose.
+
+    Parameters
+    ----------
+    profiles
+        Folder of profiles offered under "Open a demo".
+    first
+        Profile shown to a visitor without a link, instead of the folder's first.
+    cache_folder
+        Private folder for solved chips; by default one of this user's.
+    solver
+        Solves a design's chip; replaced in tests.
+    """
+
+    profiles: Path = DEMO_PROFILES
+    first: Path | None = None
+    cache_folder: Path | None = None
+    solver: Solver = field(default=solve)
+
+
+def make_app(chosen: Settings | None = None) -> Dash:
+    """Make the application, ready to serve.
+
+    Raises
+    ------
+    DesignError, FileNotFoundError
+        If a profile of the folder is bad, or there is none.
+    """
+    chosen = chosen or Settings()
+    folder = chosen.cache_folder or default_folder()
+    server = Flask("slackwater")
+    server.config.update(MAX_CONTENT_LENGTH=MAX_REQUEST, COMPRESS_MIMETYPES=_COMPRESSED)
+    Compress(server)
+    chips = ChipCache(Cache(server, config=settings(folder)), folder, chosen.solver)
+    services = Services(chips, load_profiles(chosen.profiles, chosen.first))
+
+    app = Dash(
+        "slackwater",
+        server=cast(Any, server),  # the parameter's type forgets the servers that it takes
+        title="Slackwater",
+        update_title="",
+        assets_folder=str(Path(__file__).parent / "assets"),
+        serve_locally=True,
+        meta_tags=[{"name": "viewport", "content": "width=device-width, initial-scale=1"}],
+    )
+    app.index_string = _INDEX
+    app.layout = page(services.profiles)
+    callbacks.register(app, services)
+    _answers(server, services)
+    _guard(server, app)
+    # Bundles can answer 500 while several threads make the first page together, so one
+    # visitor goes through the door before it opens.
+    with server.test_client() as client:
+        client.get("/")
+        client.get("/_dash-layout")
+        client.get("/_dash-dependencies")
+    return app
+
+
+_COMPRESSED = [
+    "text/html", "text/css", "text/javascript", "application/javascript", "application/json",
+]  # fmt: skip
+_INDEX = """<!DOCTYPE html>
+<html lang="en">
+<head>
+{%metas%}
+<title>{%title%}</title>
+{%favicon%}
+{%css%}
+</head>
+<body>
+{%app_entry%}
+<footer id="dash-scripts">
+{%config%}
+{%scripts%}
+{%renderer%}
+</footer>
+</body>
+</html>"""
+
+
+def _answers(server: Flask, services: Services) -> None:
+    """Answer the page's requests for the visible view.
+
+    A plain route and no framework callback: the page asks many times a second while a knob moves,
+    and the framework's bookkeeping in the browser costs more than the answer (see DEVELOPERS.md).
+    """
+
+    @server.post("/answer/<view>")
+    def answer_view(view: str) -> Any:
+        if view not in VIEWS:
+            raise BadRequestError("no such view")
+        return jsonify(answer(request.get_json(silent=True), services, VIEWS[view]))
+
+
+def _guard(server: Flask, app: Dash) -> None:
+    """Security headers on every answer, and plain answers to what no page of ours sends."""
+    script = " ".join(["'self'", *app.csp_hashes()])
+    policy = (
+        f"default-src 'self'; script-src {script}; style-src 'self' 'unsafe-inline'; "
+        "img-src 'self' data: blob:; connect-src 'self'; object-src 'none'; "
+        "base-uri 'self'; frame-ancestors 'self'"
+    )
+
+    @server.after_request
+    def protect(response: Response) -> Response:
+        response.headers["Content-Security-Policy"] = policy
+        response.headers["X-Content-Type-Options"] = "nosniff"
+        response.headers["Referrer-Policy"] = "same-origin"
+        return response
+
+    @server.errorhandler(BadRequestError)
+    def refuse(problem: BadRequestError) -> tuple[dict[str, Any], int]:
+        return {"error": str(problem)}, 400
+
+    @server.get("/health")
+    def health() -> dict[str, str]:
+        return {"status": "up"}

@@ -1,0 +1,134 @@
+/* Draws figure dicts into their places and saves them as pictures. Knows nothing of their meaning.
+
+   While a knob moves, traces that only got new numbers are sketched (sketch.js), which costs a
+   small part of a full redraw; when the hand rests the drawing library draws them in full. One
+   shared configuration keeps every figure on this machine. */
+(function () {
+  "use strict";
+  const page = (window.slackwater = window.slackwater || {});
+  const CONFIG = {
+    displaylogo: false,
+    displayModeBar: false,
+    showSendToCloud: false,
+    showLink: false,
+    responsive: true,
+    doubleClick: false,
+    scrollZoom: false,
+  };
+  const RESTS = 400; // ms without a new figure, after which sketches are drawn in full
+  const NUMBERS = new Set(["x", "y", "text", "textfont"]); // what a sketch can change
+  let resting = 0;
+  const drawn = {};
+  page.figures = drawn;
+  page.caption = "";
+
+  page.draw = function (name, figure) {
+    const place = document.getElementById("figure-" + name);
+    if (!place) return;
+    const data = figure.data.map(unpack);
+    const layout = JSON.stringify(figure.layout);
+    const shape = JSON.stringify(data, withoutNumbers);
+    const kept = drawn[name];
+    const now = { data, layout, shape, parts: null, sketched: false };
+    drawn[name] = now;
+    const alike = kept && kept.layout === layout && kept.shape === shape;
+    if (alike && page.sketch(place, kept.parts, data)) {
+      now.parts = kept.parts;
+      now.sketched = true;
+      clearTimeout(resting);
+      resting = setTimeout(fullOne, RESTS);
+    } else {
+      full(place, now);
+    }
+  };
+
+  /* Draw one sketched figure in full, then the next, so that a hand that moves again can. */
+  function fullOne() {
+    const found = Object.entries(drawn).find(([, figure]) => figure.sketched);
+    if (!found) return;
+    found[1].sketched = false;
+    full(document.getElementById("figure-" + found[0]), found[1]);
+    resting = setTimeout(fullOne, 0);
+  }
+
+  function full(place, figure) {
+    window.Plotly.react(place, figure.data, JSON.parse(figure.layout), CONFIG);
+    figure.parts = page.sketchParts(place);
+  }
+
+  function withoutNumbers(key, value) {
+    return NUMBERS.has(key) ? undefined : value;
+  }
+
+  /* Binary numbers become typed arrays, which the drawing library takes as they are. */
+  function unpack(trace) {
+    const copy = { ...trace };
+    for (const key of ["x", "y"]) {
+      const value = copy[key];
+      if (value && value.bdata !== undefined) {
+        const bytes = Uint8Array.from(atob(value.bdata), (letter) => letter.charCodeAt(0));
+        copy[key] = new Float32Array(bytes.buffer);
+      }
+    }
+    return copy;
+  }
+
+  /* The place on a logarithmic-logarithmic figure that a click meant, or null. */
+  page.valueAt = function (place, event) {
+    const full = place._fullLayout;
+    if (!full || !full.xaxis) return null;
+    const box = place.getBoundingClientRect();
+    const x = event.clientX - box.left - full.xaxis._offset;
+    const y = event.clientY - box.top - full.yaxis._offset;
+    if (x < 0 || y < 0 || x > full.xaxis._length || y > full.yaxis._length) return null;
+    return { x: full.xaxis.p2d(x), y: full.yaxis.p2d(y) };
+  };
+
+  /* Save a figure with its heading and a caption line that traces it to its inputs. */
+  page.save = async function (name, format) {
+    const place = document.getElementById("figure-" + name);
+    const kept = drawn[name];
+    if (!place || !kept) return;
+    const width = Math.max(760, place.clientWidth);
+    const height = Math.max(420, place.clientHeight) + 70;
+    const layout = JSON.parse(kept.layout);
+    const margin = layout.margin;
+    layout.title = {
+      text: place.getAttribute("aria-label"),
+      x: 0.01,
+      xanchor: "left",
+      y: 0.98,
+      yanchor: "top",
+      font: { size: 16 },
+    };
+    layout.margin = { ...margin, t: margin.t + 34, b: margin.b + 36 };
+    layout.annotations = [
+      {
+        text: escape(page.caption),
+        showarrow: false,
+        xref: "paper",
+        yref: "paper",
+        x: 0,
+        xanchor: "left",
+        y: 0,
+        yanchor: "top",
+        yshift: -(margin.b + 8),
+        font: { size: 10.5 },
+      },
+    ];
+    layout.width = width;
+    layout.height = height;
+    const picture = { data: kept.data, layout, config: CONFIG };
+    const options = { format, width, height, scale: format === "png" ? 2 : 1 };
+    const address = await window.Plotly.toImage(picture, options);
+    const link = document.createElement("a");
+    link.href = address;
+    link.download = "slackwater-" + name + "." + format;
+    link.click();
+  };
+
+  /* Figure text reads a little markup; a title that a person typed must stay plain. */
+  function escape(text) {
+    return text.replace(/&/g, "&amp;").replace(/</g, "&lt;").replace(/>/g, "&gt;");
+  }
+})();

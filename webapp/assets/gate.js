@@ -1,0 +1,71 @@
+/* The gate between the controls and the server: one request at a time, always the newest values.
+
+   A drag makes far more values than can be answered. Each request waits for the answer to the one
+   before, and then carries whatever stands in the controls by then. A failed or lost answer opens
+   the gate again; the next change, or a short while, tries anew. Requests go past the page
+   framework, whose bookkeeping of every control would cost more than the answer itself. */
+(function () {
+  "use strict";
+  const PATIENCE = 60000; // a chip solve and a queue of others may be ahead
+  const BUSY_AFTER = 250;
+  const AGAIN_AFTER = 3000;
+  const page = (window.slackwater = window.slackwater || {});
+
+  const gate = { values: {}, profile: null, theme: "light", view: "corridor", number: 0 };
+  page.gate = gate;
+  let waiting = false;
+  let dirty = false;
+  let asked = 0;
+  let sent = "";
+
+  /* Ask for an answer to the values as they are now. */
+  gate.push = function () {
+    if (!dirty) asked = performance.now();
+    dirty = true;
+    pump();
+  };
+
+  /* Whether newer values wait than those that are being answered. */
+  gate.moving = () => dirty;
+
+  /* What a request carries. */
+  gate.body = function () {
+    return { number: gate.number, document: gate.profile, values: gate.values, theme: gate.theme };
+  };
+
+  async function pump() {
+    if (!dirty || waiting || !gate.profile) return;
+    dirty = false;
+    const text = JSON.stringify([gate.profile, gate.values, gate.theme]);
+    if (text === sent) return;
+    sent = text;
+    gate.number += 1;
+    waiting = true;
+    const since = asked;
+    const busy = setTimeout(() => document.body.classList.add("busy"), BUSY_AFTER);
+    let answer = null;
+    try {
+      answer = await ask(gate.body());
+    } catch (problem) {
+      sent = "";
+      setTimeout(() => waiting || gate.push(), AGAIN_AFTER);
+    }
+    clearTimeout(busy);
+    document.body.classList.remove("busy");
+    document.getElementById("lost").hidden = answer !== null;
+    waiting = false;
+    pump(); // first of all, so that the server works while this page draws
+    if (answer) page.answered(answer, since);
+  }
+
+  async function ask(body) {
+    const response = await fetch("answer/" + gate.view, {
+      method: "POST",
+      headers: { "Content-Type": "application/json" },
+      body: JSON.stringify(body),
+      signal: AbortSignal.timeout(PATIENCE),
+    });
+    if (!response.ok) throw new Error("status " + response.status);
+    return response.json();
+  }
+})();

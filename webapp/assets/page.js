@@ -1,0 +1,241 @@
+/* The page's own behaviour: gathers the controls, moves the knobs, shows answers, shares links. */
+(function () {
+  "use strict";
+  const page = (window.slackwater = window.slackwater || {});
+  const gate = page.gate;
+  const none = () => window.dash_clientside.no_update;
+  const props = (id, values) => window.dash_clientside.set_props(id, values);
+  const byId = (id) => document.getElementById(id);
+  const marked = new Set(); // paths that carry an error now
+  let profile = null;
+  let addressTimer = 0;
+
+  /* ---- opening ---- */
+
+  function start() {
+    const wanted = window.localStorage.getItem("slackwater-appearance");
+    const system = window.matchMedia("(prefers-color-scheme: dark)").matches ? "dark" : "light";
+    appearance(wanted || system);
+    props("dark", { checked: gate.theme === "dark" });
+    page.knobs.make((path, text) => props(idOf(path), { value: text }));
+    window.addEventListener("popstate", () => props("address", { data: window.location.hash }));
+    document.addEventListener("click", clicked);
+    for (const event of ["focusin", "mouseover"]) document.addEventListener(event, help);
+    return window.location.hash;
+  }
+
+  /* ---- controls ---- */
+
+  function controls(values, flags, opened, ids, flagIds) {
+    if (!opened) return none();
+    const fresh = opened !== profile;
+    if (fresh) {
+      profile = opened;
+      gate.profile = opened.profile;
+      gate.values = {};
+      gate.sent = "";
+      marked.clear();
+      notice(opened.problems);
+    }
+    ids.forEach((id, index) => {
+      if (values[index] !== undefined) gate.values[pathOf(id.field)] = values[index] ?? "";
+    });
+    flagIds.forEach((id, index) => {
+      if (flags[index] !== undefined) gate.values[pathOf(id.flag)] = Boolean(flags[index]);
+    });
+    gate.push();
+    return none();
+  }
+
+  /* ---- answers ---- */
+
+  page.answered = function (answer, since) {
+    const good = Object.keys(answer.errors).length === 0;
+    mark(answer.errors);
+    document.body.classList.toggle("stale", !good);
+    byId("stale-label").hidden = good;
+    if (!good) return;
+    show(answer);
+    draw(answer);
+    // Told when the picture is on its way to the screen; benchmarks listen.
+    requestAnimationFrame(() =>
+      document.dispatchEvent(new CustomEvent("slackwater-drawn", { detail: { since } }))
+    );
+  };
+
+  function draw(answer) {
+    for (const [name, figure] of Object.entries(answer.figures)) page.draw(name, figure);
+    for (const [name, words] of Object.entries(answer.sentences)) text("sentence-" + name, words);
+    if (answer.ledger) page.ledger(answer.ledger);
+    page.shown = answer.number;
+  }
+
+  function show(answer) {
+    text("fingerprint", answer.fingerprint);
+    text("verdict-headline", answer.verdict.headline);
+    text("verdict-sentence", answer.verdict.sentence);
+    byId("verdict").className = answer.verdict.inside ? "inside" : "outside";
+    page.caption = answer.caption;
+    for (const [path, found] of Object.entries(answer.knobs)) page.knobs.place(path, found);
+    for (const [key, words] of Object.entries(answer.summaries)) text("summary-" + key, words);
+    answer.names.forEach((name, index) => text("particle-name-" + index, name));
+    items("notes", answer.notes);
+    items("cautions", answer.cautions);
+    document.title = answer.title + " · Slackwater";
+    keepAddress(answer.link);
+  }
+
+  function mark(errors) {
+    for (const path of [...marked]) {
+      if (!(path in errors)) {
+        props(idOf(path), { error: null });
+        marked.delete(path);
+      }
+    }
+    const homeless = [];
+    for (const [path, words] of Object.entries(errors)) {
+      if (path in gate.values) {
+        props(idOf(path), { error: words });
+        marked.add(path);
+        unfold(path);
+      } else {
+        homeless.push(path + ": " + words);
+      }
+    }
+    if (homeless.length) notice(homeless);
+  }
+
+  /* Ids have slashes where profile paths have dots. */
+  function pathOf(name) {
+    return name.replaceAll("/", ".");
+  }
+
+  function idOf(path) {
+    const name = path.replaceAll(".", "/");
+    return typeof gate.values[path] === "boolean" ? { flag: name } : { field: name };
+  }
+
+  /* A marked control must be seen: open whatever it is folded into. */
+  function unfold(path) {
+    for (const input of document.querySelectorAll("#inputs input")) {
+      if (input.id.includes('"' + path.replaceAll(".", "/") + '"')) {
+        for (let place = input; place; place = place.parentElement) {
+          if (place.tagName === "DETAILS") place.open = true;
+        }
+      }
+    }
+  }
+
+  function notice(problems) {
+    const place = byId("notice");
+    place.hidden = problems.length === 0;
+    place.replaceChildren(
+      ...problems.map((words) => Object.assign(document.createElement("p"), { textContent: words }))
+    );
+    if (problems.length) {
+      const button = document.createElement("button");
+      button.textContent = "Understood";
+      button.addEventListener("click", () => (place.hidden = true));
+      place.append(button);
+    }
+  }
+
+  function text(id, words) {
+    const place = byId(id);
+    if (place && place.textContent !== words) place.textContent = words;
+  }
+
+  function items(id, lines) {
+    const place = byId(id);
+    const now = [...place.children].map((item) => item.textContent).join("\n");
+    if (now === lines.join("\n")) return;
+    place.replaceChildren(
+      ...lines.map((line) => Object.assign(document.createElement("li"), { textContent: line }))
+    );
+  }
+
+  /* ---- address ---- */
+
+  /* The address follows the design; it is written seldom, browsers refuse a flood of changes. */
+  function keepAddress(link) {
+    page.link = link;
+    clearTimeout(addressTimer);
+    addressTimer = setTimeout(() => history.replaceState(null, "", "#" + link), 350);
+  }
+
+  async function share(clicks) {
+    if (!clicks || !page.link) return none();
+    clearTimeout(addressTimer);
+    history.replaceState(null, "", "#" + page.link);
+    history.pushState(null, "", "#" + page.link);
+    const address = window.location.href;
+    try {
+      await navigator.clipboard.writeText(address);
+      toast("Link copied. It holds the whole design.");
+    } catch (refused) {
+      toast("Copy the address of this page: it holds the whole design.");
+    }
+    return none();
+  }
+
+  function toast(words) {
+    const place = byId("toast");
+    place.textContent = words;
+    place.classList.add("shown");
+    setTimeout(() => place.classList.remove("shown"), 4000);
+  }
+
+  function save(clicks) {
+    return clicks ? gate.body() : none();
+  }
+
+  /* ---- appearance, help, clicks ---- */
+
+  function dark(checked) {
+    if (checked === undefined || checked === null) return none();
+    const wanted = checked ? "dark" : "light";
+    if (wanted !== gate.theme) {
+      window.localStorage.setItem("slackwater-appearance", wanted);
+      appearance(wanted);
+      gate.push();
+    }
+    return none();
+  }
+
+  function appearance(wanted) {
+    gate.theme = wanted;
+    props("appearance", { forceColorScheme: wanted });
+  }
+
+  function help(event) {
+    const target = event.target;
+    const place = target.closest && target.closest(".mantine-InputWrapper-root, .mantine-Switch-root");
+    if (!place || !place.closest("#inputs")) return;
+    const words = place.querySelector(".mantine-InputWrapper-description, .mantine-Switch-description");
+    const label = place.querySelector("label, .mantine-Switch-label");
+    if (words) byId("help").textContent = (label ? label.textContent + ": " : "") + words.textContent;
+  }
+
+  function clicked(event) {
+    const button = event.target.closest && event.target.closest("button.export");
+    if (button) page.save(button.dataset.figure, button.dataset.format);
+    const figure = event.target.closest && event.target.closest("#figure-corridor");
+    if (figure) {
+      const place = page.valueAt(figure, event);
+      if (place) {
+        page.knobs.set("drive.frequency", place.x);
+        page.knobs.set("drive.voltage", place.y);
+      }
+    }
+  }
+
+  window.dash_clientside = Object.assign({}, window.dash_clientside, {
+    slackwater: {
+      start,
+      controls,
+      save,
+      share,
+      dark,
+    },
+  });
+})();

@@ -1,0 +1,101 @@
+"""Chip solves, cached on disk (or wherever flask-caching is pointed) and computed once.
+
+The caching library has no guard against many callers computing one missing entry together, so a
+file lock stands in front: one solver at a time per chip, across threads and processes; the others
+wait and then find the entry.
+"""
+
+import hashlib
+import json
+import os
+from collections.abc import Callable
+from pathlib import Path
+
+from filelock import FileLock
+from flask_caching import Cache
+
+import model.fields
+import model.layouts
+from model.design import Design
+from model.fields.patterns import ChipPatterns
+from model.fields.solve import solve_chip
+from model.profile import document
+from model.version import VERSION
+
+#: Solved chips are kept this long, seconds.
+KEPT = 30 * 24 * 3600
+Solver = Callable[[Design], ChipPatterns]
+
+
+def default_folder() -> Path:
+    """Private cache folder of this user: entries are pickles, so nobody else may write there.
+
+    ``SLACKWATER_CACHE`` names another folder.
+    """
+    named = os.environ.get("SLACKWATER_CACHE")
+    folder = Path(named) if named else Path.home() / ".cache" / "slackwater"
+    folder.mkdir(mode=0o700, parents=True, exist_ok=True)
+    return folder
+
+
+def settings(folder: Path, most: int = 500) -> dict[str, object]:
+    """flask-caching settings for a folder on disk."""
+    return {"CACHE_TYPE": "FileSystemCache", "CACHE_DIR": str(folder), "CACHE_THRESHOLD": most}
+
+
+def solve(design: Design) -> ChipPatterns:
+    """Solve the chip of a design."""
+    return solve_chip(design.chip, design.liquid.heat_conductivity)
+
+
+class ChipCache:
+    """Gives the patterns of a design's chip, solving each chip once however many ask."""
+
+    def __init__(self, cache: Cache, folder: Path, solver: Solver = solve) -> None:
+        self._cache, self._folder, self._solver = cache, folder, solver
+        self._near: dict[str, ChipPatterns] = {}
+
+    def patterns(self, design: Design) -> ChipPatterns:
+        """Patterns from memory, from the cache, or from a solve."""
+        key = chip_key(design)
+        found = self._near.get(key)
+        if found is None:
+            found = self._far(key, design)
+            if len(self._near) >= _NEAR:
+                self._near.pop(next(iter(self._near)), None)
+            self._near[key] = found
+        return found
+
+    def _far(self, key: str, design: Design) -> ChipPatterns:
+        found = self._cache.get(key)
+        if found is None:
+            with FileLock(self._folder / f"{key}.lock"):
+                found = self._cache.get(key)
+                if found is None:
+                    found = self._solver(design)
+                    self._cache.set(key, found, timeout=KEPT)
+        if not isinstance(found, ChipPatterns):
+            raise TypeError("the cache holds something that is no solved chip")
+        return found
+
+
+#: Chips kept in memory per process, the one longest there going first.
+_NEAR = 32
+
+
+def _solver_digest() -> str:
+    """Digest of the code that makes the patterns, so that changed code never meets old entries."""
+    digest = hashlib.sha256()
+    for package in (model.fields, model.layouts):
+        for path in sorted(Path(package.__path__[0]).glob("*.py")):
+            digest.update(path.read_bytes())
+    return digest.hexdigest()
+
+
+_SOLVER = _solver_digest()
+
+
+def chip_key(design: Design) -> str:
+    """Key of a chip solve: everything that it depends on and the code that makes it, hashed."""
+    parts = [VERSION, _SOLVER, document(design)["chip"], design.liquid.heat_conductivity]
+    return hashlib.sha256(json.dumps(parts, sort_keys=True).encode()).hexdigest()

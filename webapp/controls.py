@@ -1,0 +1,192 @@
+"""The inputs at the left, generated from the fields that the design's parts declare."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Any
+
+import dash_mantine_components as dmc
+from dash import html
+from dash.development.base_component import Component
+from pydantic import BaseModel
+
+from model.declare import Choice, Count, Declared, Flag, Quantity, declarations
+from model.design import Design
+from model.layout import Layout
+from model.quantity import format_quantity
+from webapp.figures.theme import DASHES
+
+#: Fields that live in the operating strip and the header instead.
+ELSEWHERE = {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
+
+#: Attributes of what only decorates.
+HIDDEN: dict[str, Any] = {"aria-hidden": "true"}
+
+
+@dataclass(frozen=True)
+class Field:
+    """One declared field of a design, with its place in the profile."""
+
+    path: str
+    declared: Declared
+    value: Any
+
+    @property
+    def text(self) -> str | bool:
+        """What the control shows: text as people write it, or yes and no."""
+        if isinstance(self.declared, Flag):
+            return bool(self.value)
+        if self.value is None:
+            return ""
+        if isinstance(self.declared, Quantity):
+            return format_quantity(self.value, self.declared.unit).replace("−", "-")
+        return str(self.value)
+
+
+def fields(part: BaseModel, path: str) -> Iterator[Field]:
+    """Declared fields of one part, not of the parts within it; a layout's own before the shared."""
+    found = list(declarations(type(part)))
+    if isinstance(part, Layout):
+        found.sort(key=lambda item: item[0] in Layout.model_fields)
+    for key, declared in found:
+        place = f"{path}.{key}" if path else key
+        if place not in ELSEWHERE:
+            yield Field(place, declared, getattr(part, key))
+
+
+def inner_parts(part: BaseModel, path: str) -> Iterator[tuple[str, str, BaseModel]]:
+    """Path, heading and part of everything within a part, e.g. a cell's layers."""
+    for name, info in type(part).model_fields.items():
+        value, key = getattr(part, name), info.alias or name
+        if isinstance(value, BaseModel):
+            yield f"{path}.{key}", key.replace("_", " ").capitalize(), value
+        elif isinstance(value, tuple):
+            for index, item in enumerate(value):
+                heading = f"{key.removesuffix('s').capitalize()} {index + 1}"
+                yield f"{path}.{key}.{index}", heading, item
+
+
+def inputs_panel(design: Design) -> list[Component]:
+    """Every section of the inputs, folded by part."""
+    sections = [
+        ("task", "Task", [*_question(design), *part_controls(design.task, "task")]),
+        ("chip", "Chip", part_controls(design.chip, "chip")),
+        ("liquid", "Liquid", part_controls(design.liquid, "liquid")),
+        ("particles", "Particles", _particles(design)),
+        ("drive", "Drive", part_controls(design.drive, "drive")),
+        ("flow", "Flow", part_controls(design.flow, "flow")),
+        ("limits", "Limits", part_controls(design.limits, "limits")),
+    ]
+    return [
+        _section(key, heading, content, key in ("chip", "particles"))
+        for key, heading, content in sections
+    ]
+
+
+def summaries(design: Design) -> dict[str, str]:
+    """The quiet words at the right of each section's heading."""
+    defaults = type(design).model_fields["limits"].default
+    changed = sum(
+        getattr(design.limits, key) != getattr(defaults, key)
+        for key in type(design.limits).model_fields
+    )
+    liquid, drive = design.liquid, design.drive
+    return {
+        "task": design.task.label,
+        "chip": design.chip.layout.replace("-", " "),
+        "liquid": format_quantity(liquid.temperature, "degC"),
+        "particles": str(len(design.particles)),
+        "drive": f"{format_quantity(drive.source_resistance, 'ohm')} source",
+        "flow": format_quantity(design.flow.rate, "uL/min", 4),
+        "limits": f"{changed} changed" if changed else "as usual",
+    }
+
+
+def part_controls(part: BaseModel, path: str) -> list[Component]:
+    """Controls of a part and of everything within it; details folded away."""
+    found = list(fields(part, path))
+    content: list[Component] = []
+    if any(not field.declared.detail for field in found):
+        plain = [control(field) for field in found if not field.declared.detail]
+        content.append(html.Div(plain, className="fields"))
+    details = [control(field) for field in found if field.declared.detail]
+    if details:
+        folded = html.Div(details, className="fields")
+        content.append(html.Details([html.Summary("More"), folded], className="more"))
+    for inner_path, heading, inner in inner_parts(part, path):
+        head = html.H4(heading, className="inner-heading")
+        content.append(html.Div([head, *part_controls(inner, inner_path)], className="inner"))
+    return content
+
+
+def control(field: Field) -> Component:
+    """The control of one field, with label, help and range."""
+    declared = field.declared
+    base: dict[str, Any] = {
+        "id": control_id(field.path, flag=isinstance(declared, Flag)),
+        "label": declared.label,
+        "description": help_text(declared),
+        "size": "sm",
+    }
+    if isinstance(declared, Flag):
+        return dmc.Switch(**base, checked=bool(field.text), className="wide")
+    if isinstance(declared, Choice):
+        options = [{"value": key, "label": label} for key, label in declared.options.items()]
+        return dmc.Select(
+            **base, data=options, value=field.text, allowDeselect=False, checkIconPosition="right"
+        )
+    wide = "" if isinstance(declared, Quantity | Count) else "wide"
+    placeholder = "usual value" if declared.optional else ""
+    return dmc.TextInput(
+        **base, value=field.text, debounce=True, className=wide, placeholder=placeholder
+    )
+
+
+def control_id(path: str, *, flag: bool = False) -> dict[str, str]:
+    """Id of the control of a field; slashes, as the framework keeps dots for itself.
+
+    >>> control_id("chip.gap")
+    {'field': 'chip/gap'}
+    """
+    return {"flag" if flag else "field": path.replace(".", "/")}
+
+
+def help_text(declared: Declared) -> str:
+    """One sentence of help, with what is allowed and where a default comes from."""
+    pieces = [declared.help]
+    if isinstance(declared, Quantity | Count):
+        pieces.append(f"Allowed: {declared.allowed()}.")
+    if declared.source:
+        pieces.append(f"Source: {declared.source}.")
+    return " ".join(pieces)
+
+
+def _question(design: Design) -> list[Component]:
+    questions = [field for field in fields(design, "") if field.path == "question"]
+    return [html.Div([control(field) for field in questions], className="fields")]
+
+
+def _particles(design: Design) -> list[Component]:
+    found: list[Component] = []
+    for index, particle in enumerate(design.particles):
+        swatch = html.Span(
+            className=f"swatch swatch-{index % 7} dash-{DASHES[index % len(DASHES)]}", **HIDDEN
+        )
+        name = html.Span(particle.name, id=f"particle-name-{index}")
+        kind = html.Span(particle.kind.replace("-", " "), className="section-note")
+        found.append(
+            html.Details(
+                [
+                    html.Summary([swatch, name, kind]),
+                    *part_controls(particle, f"particle.{index}"),
+                ],
+                className="particle",
+            )
+        )
+    return found
+
+
+def _section(key: str, heading: str, content: list[Component], opened: bool) -> Component:
+    summary = html.Summary(
+        [html.H3(heading), html.Span(id=f"summary-{key}", className="section-note")]
+    )
+    return html.Details([summary, *content], className="section", open=opened, id=f"section-{key}")

@@ -1,0 +1,191 @@
+"""The voltage corridor: floor, ceilings and operating point against frequency."""
+
+from collections.abc import Sequence
+from itertools import pairwise
+from typing import Any
+
+import numpy as np
+
+from model.arrays import Real
+from model.corridor import Bound
+from model.evaluate import Evaluation
+from model.quantity import format_si
+from model.voltage import PEAK_TO_PEAK
+from webapp.figures.labels import Label, Wish, place_labels
+from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark, numbers
+
+#: Text of an empty slot: a word joiner, which is drawn as nothing.
+_NOTHING = "\u2060"
+#: Values far off the axis are drawn this many times beyond its end, never as gaps.
+_BEYOND = 30.0
+
+
+def corridor_figure(result: Evaluation, theme: Theme) -> Figure:
+    """Draw floor, every ceiling with its name, the corridor between, and the operating point."""
+    frequency = result.corridor.frequency
+    low, high = voltage_range(result)
+    shown = _shown(low, high)
+    floor, ceiling = shown(result.corridor.floor), shown(result.corridor.ceiling)
+    x = numbers(frequency)
+    data: list[dict[str, Any]] = [
+        _edge(x, numbers(floor)),
+        _edge(x, numbers(np.maximum(ceiling, floor)), fill="tonexty", fillcolor=theme.shade),
+    ]
+    binding = result.corridor.binding_ceiling()
+    ceilings = result.corridor.ceilings
+    data += [_ceiling(x, shown(bound.rms_voltage), bound, theme) for bound in ceilings]
+    for index, bound in enumerate(ceilings):
+        binds = np.where(binding == index, shown(bound.rms_voltage), np.nan)
+        data.append(_binding(frequency, binds, low / _BEYOND, bound, theme))
+    data.append(_floor(x, floor, result, theme))
+    labels = _labels(result, floor, [shown(bound.rms_voltage) for bound in ceilings], (low, high))
+    data.append(_label_trace(labels, result, theme))
+    drive = result.design.drive
+    data.append(mark(theme, drive.frequency, drive.voltage))
+    x_axis = log_axis(theme, "Frequency", float(frequency[0]), float(frequency[-1]), "Hz")
+    y_axis = log_axis(theme, "Voltage, peak to peak (V)", low, high, "")
+    return {"data": data, "layout": layout(theme, xaxis=x_axis, yaxis=y_axis)}
+
+
+def corridor_sentence(result: Evaluation) -> str:
+    """Say what the corridor shows now, in one sentence."""
+    corridor = result.corridor
+    open_at = corridor.floor <= corridor.ceiling
+    if not open_at.any():
+        return "No frequency has a corridor: everywhere the floor lies above the lowest ceiling."
+    spans = [
+        f"{format_si(float(corridor.frequency[start]), 'Hz')} to "
+        f"{format_si(float(corridor.frequency[stop - 1]), 'Hz')}"
+        for start, stop in _runs(open_at)
+    ]
+    room = np.where(open_at, corridor.ceiling / np.maximum(corridor.floor, 1e-9), 0.0)
+    best = int(np.argmax(room))
+    widest = format_si(float(corridor.frequency[best]), "Hz")
+    return f"A corridor exists from {' and from '.join(spans[:3])}; it is widest near {widest}."
+
+
+def voltage_range(result: Evaluation) -> tuple[float, float]:
+    """Ends of the voltage axis; they follow the generator, so that they rest while knobs move."""
+    drive = result.design.drive
+    low, high = drive.voltage_limit / 30.0, drive.voltage_limit * 2.5
+    return min(low, drive.voltage / 2.0), max(high, drive.voltage * 1.5)
+
+
+def _shown(low: float, high: float) -> Any:
+    """Turn V_rms into peak to peak, with values off the axis kept a little beyond its ends."""
+
+    def convert(rms_voltage: Real) -> Real:
+        return np.clip(rms_voltage * PEAK_TO_PEAK, low / _BEYOND, high * _BEYOND)
+
+    return convert
+
+
+def _edge(x: dict[str, str], y: dict[str, str], **more: Any) -> dict[str, Any]:
+    return {
+        "type": "scatter",
+        "mode": "lines",
+        "x": x,
+        "y": y,
+        "line": {"width": 0},
+        "hoverinfo": "skip",
+        **more,
+    }
+
+
+def _ceiling(x: dict[str, str], volts: Real, bound: Bound, theme: Theme) -> dict[str, Any]:
+    return {
+        **_edge(x, numbers(volts)),
+        "name": bound.name,
+        "line": {"color": limit_colour(theme, bound.id), "width": 1.2, "dash": "dash"},
+        "hoverinfo": "all",
+        "hovertemplate": f"{bound.name}<br>at most %{{y:.3~g}} V at %{{x:.3~s}}Hz<extra></extra>",
+    }
+
+
+def _binding(
+    frequency: Real, volts: Real, beyond: float, bound: Bound, theme: Theme
+) -> dict[str, Any]:
+    """Strong line where a ceiling is the lowest; a stub off the axis keeps it when it never is."""
+    stub_x, stub_y = frequency[:2], np.array([beyond, beyond, np.nan])
+    return {
+        **_edge(
+            numbers(np.concatenate([stub_x, stub_x[1:], frequency])),
+            numbers(np.concatenate([stub_y, volts])),
+        ),
+        "name": f"binding {bound.name}",
+        "line": {"color": limit_colour(theme, bound.id), "width": 3.5},
+    }
+
+
+def _floor(x: dict[str, str], floor: Real, result: Evaluation, theme: Theme) -> dict[str, Any]:
+    label = result.design.task.label
+    return {
+        **_edge(x, numbers(floor)),
+        "name": f"floor: {label}",
+        "line": {"color": theme.accent, "width": 3.5},
+        "hoverinfo": "all",
+        "hovertemplate": f"floor: {label}<br>"
+        "at least %{y:.3~g} V at %{x:.3~s}Hz<extra></extra>",
+    }
+
+
+def _labels(
+    result: Evaluation, floor: Real, ceilings: Sequence[Real], ends: tuple[float, float]
+) -> list[Label]:
+    """Name every stretch where a ceiling binds within the axes, and the floor."""
+    corridor, (low, high) = result.corridor, ends
+    x = _fraction(corridor.frequency, float(corridor.frequency[0]), float(corridor.frequency[-1]))
+    heights = [_fraction(volts, low, high) for volts in (floor, *ceilings)]
+    binding, task = corridor.binding_ceiling(), result.design.task
+    wishes = [
+        Wish(f"floor: {task.label}", task.kind, x[run], heights[0][run], above=False)
+        for run in _longest((heights[0] > 0.0) & (heights[0] < 1.0))
+    ]
+    for index, bound in enumerate(corridor.ceilings):
+        height = heights[index + 1]
+        visible = (binding == index) & (height > 0.0) & (height < 1.0)
+        wishes += [Wish(bound.label, bound.id, x[run], height[run]) for run in _slices(visible)]
+    wishes.sort(key=lambda wish: -wish.x.size)
+    return place_labels(wishes, [(x, height) for height in heights])
+
+
+def _label_trace(labels: list[Label], result: Evaluation, theme: Theme) -> dict[str, Any]:
+    """Names as one trace with a slot for each that may ever stand there, so that they can move."""
+    low, high = voltage_range(result)
+    frequency = result.corridor.frequency
+    first, last = float(frequency[0]), float(frequency[-1])
+    spare = [Label(_NOTHING, "", 0.0, 0.0)] * (2 * len(result.corridor.bounds) - len(labels))
+    slots = [*labels, *spare]
+    return {
+        "type": "scatter",
+        "mode": "text",
+        "x": [first * (last / first) ** label.x for label in slots],
+        "y": [low * (high / low) ** label.y for label in slots],
+        "text": [label.text for label in slots],
+        "textposition": "middle center",
+        "textfont": {"size": 13, "color": [limit_colour(theme, label.key) for label in slots]},
+        "hoverinfo": "skip",
+        "cliponaxis": False,
+        "name": "labels",
+    }
+
+
+def _fraction(values: Real, low: float, high: float) -> Real:
+    """Place on a logarithmic axis, 0 at `low` and 1 at `high`."""
+    return np.asarray(np.log(values / low) / np.log(high / low))
+
+
+def _slices(mask: Any) -> list[slice]:
+    """Every stretch where `mask` holds."""
+    return [slice(start, stop) for start, stop in _runs(mask)]
+
+
+def _longest(mask: Any) -> list[slice]:
+    """The longest stretch where `mask` holds, if there is one."""
+    return sorted(_slices(mask), key=lambda run: run.start - run.stop)[:1]
+
+
+def _runs(mask: Any) -> list[tuple[int, int]]:
+    """Start and stop of every stretch where `mask` holds."""
+    edges = np.flatnonzero(np.diff(np.concatenate([[False], mask, [False]]).astype(int)))
+    return [(int(start), int(stop)) for start, stop in list(pairwise(edges))[::2]]

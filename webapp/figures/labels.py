@@ -1,0 +1,95 @@
+"""Places names on curves so that they cover neither one another nor, where it can be, a line."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from model.arrays import Real
+
+#: Typical plot area in pixels and size of a letter; only proportions matter.
+WIDTH, HEIGHT = 640.0, 370.0
+LETTER, LINE = 7.4, 17.0
+
+
+@dataclass(frozen=True)
+class Wish:
+    """A name that wants to stand on a stretch of a curve.
+
+    `x`, `y` are the stretch in fractions of the plot area, 0 to 1 each; `above` says on which
+    side it stands if both are free.
+    """
+
+    text: str
+    key: str
+    x: Real
+    y: Real
+    above: bool = True
+
+
+@dataclass(frozen=True)
+class Label:
+    """A placed name: centre in fractions of the plot area."""
+
+    text: str
+    key: str
+    x: float
+    y: float
+
+
+def place_labels(wishes: Sequence[Wish], lines: Sequence[tuple[Real, Real]]) -> list[Label]:
+    """Place every name, in the order of the wishes, where it covers least.
+
+    Parameters
+    ----------
+    wishes
+        Names with the stretches they belong to.
+    lines
+        All drawn curves as (x, y) in fractions of the plot area.
+    """
+    points = [np.stack([x * WIDTH, y * HEIGHT]) for x, y in lines]
+    drawn = np.concatenate(points, axis=1) if points else np.empty((2, 0))
+    boxes: list[Real] = []
+    placed = []
+    for wish in wishes:
+        spots = _spots(wish)
+        rank = 0.01 * np.arange(len(spots))
+        box = spots[
+            int(np.argmin(_covered_points(spots, drawn) + _covered_names(spots, boxes) + rank))
+        ]
+        boxes.append(box)
+        x, y = float(box[0] + box[2]) / 2.0, float(box[1] + box[3]) / 2.0
+        placed.append(Label(wish.text, wish.key, x / WIDTH, y / HEIGHT))
+    return placed
+
+
+def _spots(wish: Wish) -> Real:
+    """Boxes (left, low, right, high) where a name may stand, the most wanted first, ``(n, 4)``."""
+    half = LETTER * len(wish.text) / 2.0
+    shares = np.round(np.array([0.5, 0.3, 0.7, 0.12, 0.88]) * (wish.x.size - 1)).astype(int)
+    x = np.clip(wish.x[shares] * WIDTH, half + 4.0, WIDTH - half - 4.0)
+    near = np.abs(wish.x[:, np.newaxis] * WIDTH - x).argmin(axis=0)
+    side = 1.0 if wish.above else -1.0
+    steps = np.array([0.75, 1.6, -0.75, -1.6]) * side * LINE
+    y = np.clip(
+        (wish.y[near] * HEIGHT)[:, np.newaxis] + steps, LINE / 2.0, HEIGHT - LINE / 2.0
+    ).reshape(-1)
+    x = np.repeat(x, steps.size)
+    return np.stack([x - half, y - LINE / 2.0, x + half, y + LINE / 2.0], axis=1)
+
+
+def _covered_points(spots: Real, drawn: Real) -> Real:
+    """Weight of the curve points under each box."""
+    left, low, right, high = spots.T[:, :, np.newaxis]
+    x, y = drawn
+    return 0.1 * ((x > left) & (x < right) & (y > low) & (y < high)).sum(axis=1)
+
+
+def _covered_names(spots: Real, boxes: Sequence[Real]) -> Real:
+    """Weight of the names that each box would cover: more than any number of points."""
+    if not boxes:
+        return np.zeros(len(spots))
+    left, low, right, high = np.array(boxes).T
+    mine = spots[:, :, np.newaxis]
+    covers = (mine[:, 0] < right) & (left < mine[:, 2]) & (mine[:, 1] < high) & (low < mine[:, 3])
+    return 100.0 * covers.sum(axis=1)

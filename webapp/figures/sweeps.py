@@ -1,0 +1,110 @@
+"""Temperature rise and electrothermal-flow risk against voltage and against conductivity."""
+
+from typing import Any
+
+import numpy as np
+
+from model.evaluate import Evaluation
+from model.limits import LIMITS
+from model.quantity import format_si
+from model.sweeps import Sweep, sweep
+from model.verdict import format_value
+from webapp.figures.force import nice_ceiling
+from webapp.figures.theme import (
+    Figure,
+    Theme,
+    axis,
+    layout,
+    limit_colour,
+    log_axis,
+    mark,
+    numbers,
+)
+
+#: Conductivities shown, S/m: from clean water to beyond body fluids.
+_LEAST, _MOST = 1e-4, 3.0
+
+
+def sweep_of(result: Evaluation, limit: str) -> Sweep:
+    """Sweep a limit over the axes that the figures show."""
+    drive, present = result.design.drive, result.design.liquid.conductivity
+    most = max(1.25 * drive.voltage_limit, 1.25 * drive.voltage)
+    ends = min(_LEAST, present / 2.0), max(_MOST, present * 2.0)
+    return sweep(result, limit, np.linspace(most / 80.0, most, 80), np.geomspace(*ends, 80))
+
+
+def heating_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
+    """Draw the temperature rise of the hottest liquid."""
+    top = nice_ceiling(1.6 * max(found.value, found.allowed))
+    return _figure(found, result, theme, axis(theme, "Temperature rise (K)", range=[0.0, top]))
+
+
+def electrothermal_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
+    """Draw electrothermal speed over dielectrophoretic speed."""
+    low = min(1e-4, 10.0 ** np.floor(np.log10(max(found.value, 1e-12))))
+    high = max(10.0, 10.0 ** np.ceil(np.log10(min(found.value, 1e6)) + 0.2))
+    title = "Electrothermal / DEP speed"
+    return _figure(found, result, theme, log_axis(theme, title, low, high, ""))
+
+
+def heating_sentence(found: Sweep, result: Evaluation) -> str:
+    """Say how warm it gets and what that allows."""
+    rise = result.design.liquid.temperature + found.value
+    return (
+        f"The hottest liquid is {format_si(found.value, 'K')} above the stage, at "
+        f"{format_value(rise, 'degC')}; {format_si(found.allowed, 'K')} is allowed."
+    )
+
+
+def electrothermal_sentence(found: Sweep, result: Evaluation) -> str:
+    """Say whether the liquid or the force wins at the working height."""
+    liquid = format_si(result.electrothermal_speed, "m/s")
+    force = format_si(result.dielectrophoretic_speed, "m/s")
+    return f"The liquid stirs at up to {liquid} while the force moves particles at up to {force}."
+
+
+def _figure(found: Sweep, result: Evaluation, theme: Theme, y_axis: dict[str, Any]) -> Figure:
+    """Two panels on one value axis: voltage at the left, conductivity at the right."""
+    limit = LIMITS[found.limit]
+    colour = limit_colour(theme, found.limit)
+    ends = y_axis["range"]
+    low, high = (10.0**end for end in ends) if y_axis.get("type") == "log" else ends
+    drive, present = result.design.drive, result.design.liquid.conductivity
+    data: list[dict[str, Any]] = []
+    panels = (
+        ("x", found.voltage, found.by_voltage, drive.voltage, "V"),
+        ("x2", found.conductivity, found.by_conductivity, present, "S/m"),
+    )
+    for name, at, values, here, unit in panels:
+        hover = f"%{{y:.3~g}} {limit.unit} at %{{x:.3~s}}{unit}<extra></extra>"
+        visible = np.clip(values, low / 30.0, high * 30.0)
+        curve = {"type": "scatter", "mode": "lines", "xaxis": name, "hovertemplate": hover}
+        line = {"color": colour, "width": 2.5}
+        data.append({**curve, "x": numbers(at), "y": numbers(visible), "line": line})
+        ends_here = [float(at[0]), float(at[-1])]
+        dashed = {"color": colour, "width": 1.2, "dash": "dash"}
+        threshold = f"allowed: {format_value(found.allowed, limit.unit)}<extra></extra>"
+        data.append(
+            {
+                **curve,
+                "x": ends_here,
+                "y": [found.allowed, found.allowed],
+                "line": dashed,
+                "hovertemplate": threshold,
+            }
+        )
+        shown = float(np.clip(found.value, low, high))
+        data.append(mark(theme, here, shown, xaxis=name))
+    x_axis = axis(
+        theme,
+        "Voltage, peak to peak (V)",
+        range=[0.0, float(found.voltage[-1])],
+        domain=[0.0, 0.47],
+    )
+    least, most = float(found.conductivity[0]), float(found.conductivity[-1])
+    x2_axis = {
+        **log_axis(theme, "Conductivity", least, most, "S/m"),
+        "domain": [0.53, 1.0],
+        "anchor": "y",
+    }
+    return {"data": data, "layout": layout(theme, xaxis=x_axis, xaxis2=x2_axis, yaxis=y_axis)}

@@ -1,0 +1,148 @@
+"""Colours, dashes, axes and number arrays that all figures share.
+
+Particles take the palette of Okabe and Ito (2008), each with a dash of its own, so that a figure
+survives grey print and colour blindness. Every limit keeps one colour in every figure.
+"""
+
+import base64
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from model.limits import LIMITS
+from model.quantity import format_si
+
+Figure = dict[str, Any]
+
+
+@dataclass(frozen=True)
+class Theme:
+    """Colours of one appearance."""
+
+    text: str
+    quiet: str
+    grid: str
+    accent: str
+    shade: str
+    paper: str
+    particles: tuple[str, ...]
+    limits: tuple[str, ...]
+
+
+_OKABE_ITO = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#8C8C8C")
+THEMES = {
+    "light": Theme(
+        text="#1b2733",
+        quiet="#5b6875",
+        grid="#e6eaee",
+        accent="#0f766e",
+        shade="rgba(15,118,110,0.16)",
+        paper="#ffffff",
+        particles=_OKABE_ITO,
+        limits=("#b45309", "#7c3aed", "#475569", "#1d4ed8", "#be185d", "#b91c1c", "#4d7c0f"),
+    ),
+    "dark": Theme(
+        text="#e8edf2",
+        quiet="#a3b0bd",
+        grid="#2c3742",
+        accent="#2dd4bf",
+        shade="rgba(45,212,191,0.20)",
+        paper="#161d25",
+        particles=("#4FA8DE", "#FF8A4C", "#2CC99A", "#E6A2C8", "#F2B632", "#8ED0F5", "#B5B5B5"),
+        limits=("#f0a04b", "#b794f6", "#a8b6c6", "#7ea6ff", "#f58abb", "#f87171", "#a3d65c"),
+    ),
+}
+DASHES = ("solid", "dash", "dot", "dashdot", "longdash", "longdashdot")
+
+
+def limit_colour(theme: Theme, limit: str) -> str:
+    """Colour of a limit, the same everywhere; the accent for the task's own floor."""
+    if limit not in LIMITS:
+        return theme.accent
+    return theme.limits[list(LIMITS).index(limit) % len(theme.limits)]
+
+
+def particle_line(theme: Theme, index: int) -> dict[str, Any]:
+    """Line of the particle at `index` in the design."""
+    colour = theme.particles[index % len(theme.particles)]
+    return {"color": colour, "dash": DASHES[index % len(DASHES)], "width": 2.5}
+
+
+def numbers(values: ArrayLike) -> dict[str, str]:
+    """Pack numbers as single-precision binary, which serialises thirty times faster than text."""
+    data = np.ascontiguousarray(values, dtype="<f4")
+    return {"dtype": "f4", "bdata": base64.b64encode(data.tobytes()).decode()}
+
+
+def axis(theme: Theme, title: str, **more: Any) -> dict[str, Any]:
+    """One axis: title with unit, quiet lines, ticks outside."""
+    return {
+        "title": {"text": title, "standoff": 8, "font": {"size": 13}},
+        "gridcolor": theme.grid,
+        "linecolor": theme.grid,
+        "zeroline": False,
+        "tickfont": {"size": 12},
+        "ticks": "outside",
+        "tickcolor": theme.grid,
+        "fixedrange": True,
+        **more,
+    }
+
+
+def log_axis(theme: Theme, title: str, low: float, high: float, unit: str) -> dict[str, Any]:
+    """Logarithmic axis whose ticks read 10 kHz, 1 MHz and so on; plain numbers without a unit."""
+    span = np.log10(high / low)
+    steps = (1.0, 2.0, 5.0) if span < 3.0 else (1.0,)
+    powers = np.arange(np.floor(np.log10(low)), np.ceil(np.log10(high)) + 1)
+    ticks = [step * 10.0**power for power in powers for step in steps]
+    ticks = [tick for tick in ticks if low * 0.999 <= tick <= high * 1.001]
+    return axis(
+        theme,
+        title,
+        type="log",
+        range=[float(np.log10(low)), float(np.log10(high))],
+        tickvals=ticks,
+        ticktext=[format_si(tick, unit) if unit else f"{tick:g}" for tick in ticks],
+    )
+
+
+def layout(theme: Theme, **more: Any) -> dict[str, Any]:
+    """Layout that all figures share."""
+    return {
+        "paper_bgcolor": theme.paper,
+        "plot_bgcolor": theme.paper,
+        "font": {"color": theme.text, "family": "system-ui, 'Segoe UI', 'DejaVu Sans', sans-serif"},
+        "margin": {"l": 64, "r": 14, "t": 10, "b": 48},
+        "showlegend": False,
+        "hovermode": "closest",
+        "dragmode": False,
+        "hoverlabel": {
+            "bgcolor": theme.paper,
+            "bordercolor": theme.quiet,
+            "font": {"color": theme.text},
+        },
+        "uirevision": "kept",
+        **more,
+    }
+
+
+def mark(theme: Theme, x: float, y: float, **more: Any) -> dict[str, Any]:
+    """Operating point, the same ring in every figure; the verdict tells its numbers."""
+    return {
+        "type": "scatter",
+        "mode": "markers",
+        "x": [x],
+        "y": [y],
+        "marker": {
+            "symbol": "circle-open",
+            "size": 14,
+            "color": theme.text,
+            "line": {"width": 3, "color": theme.text},
+        },
+        "hoverinfo": "skip",
+        "cliponaxis": False,
+        "name": "operating point",
+        **more,
+    }

@@ -1,0 +1,158 @@
+"""From what the browser holds to a design, and back.
+
+The browser keeps the last document it opened and the text of every control. Both arrive with
+each request; here they become one :class:`Design` or the list of fields that cannot be used.
+"""
+
+import copy
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from model.design import Design
+from model.errors import DesignError, FieldError
+from model.profile import document, fingerprint, parse_design, read_document
+from webapp.link import LinkError, decode
+
+#: Most controls in a request and most characters in one; more is no browser of ours.
+MOST_VALUES, LONGEST_VALUE = 1000, 400
+THEMES = ("light", "dark")
+
+
+class BadRequestError(ValueError):
+    """A request that no page of ours sends; answered with status 400."""
+
+
+@dataclass(frozen=True)
+class Request:
+    """One request of the page: the document, the controls' values by path, and the theme."""
+
+    number: int
+    document: Mapping[str, Any]
+    values: Mapping[str, str | bool]
+    theme: str
+
+
+def read_request(data: Any) -> Request:
+    """Check the shape of what a browser sent; its contents are checked as a design."""
+    if not isinstance(data, dict):
+        raise BadRequestError("no request")
+    number, base, values, theme = (
+        data.get(key) for key in ("number", "document", "values", "theme")
+    )
+    if not isinstance(number, int) or not isinstance(base, dict) or not isinstance(values, dict):
+        raise BadRequestError("a request needs number, document and values")
+    if theme not in THEMES or len(values) > MOST_VALUES:
+        raise BadRequestError("unknown theme or too many values")
+    for path, value in values.items():
+        if not isinstance(value, str | bool) or len(str(path)) > 120:
+            raise BadRequestError("a value is neither text nor yes or no")
+        if isinstance(value, str) and len(value) > LONGEST_VALUE:
+            raise BadRequestError("a value is too long")
+    return Request(number, base, values, theme)
+
+
+def design_of(request: Request) -> Design:
+    """Put the controls' values into the document and read it; raises :class:`DesignError`."""
+    data = copy.deepcopy(dict(request.document))
+    for path, value in request.values.items():
+        put(data, path, value)
+    return parse_design(data)
+
+
+def put(data: Any, path: str, value: str | bool) -> None:
+    """Set one value at a dotted path; an emptied control takes its key out.
+
+    Raises
+    ------
+    BadRequestError
+        If the document has no such place.
+    """
+    *parents, last = path.split(".")
+    for key in parents:
+        try:
+            data = data[int(key)] if isinstance(data, list) else data[key]
+        except (KeyError, ValueError, IndexError, TypeError):
+            raise BadRequestError("the document has no such place") from None
+    if not isinstance(data, dict):
+        raise BadRequestError("the document has no such place")
+    if value == "":
+        data.pop(last, None)
+    else:
+        data[last] = value
+
+
+@dataclass(frozen=True)
+class Opened:
+    """A design that was opened, and what could not be used of its source."""
+
+    design: Design
+    problems: tuple[str, ...] = ()
+
+
+def open_link(address: str, fallback: Design) -> Opened:
+    """Open a link; what it lacks is taken from `fallback` and named."""
+    try:
+        data, stated = decode(address)
+    except LinkError as problem:
+        return Opened(fallback, (f"The link could not be opened: {problem}.",))
+    opened = open_document(data, fallback)
+    if not opened.problems and fingerprint(opened.design) != stated:
+        warning = (
+            "The link's check does not fit its contents: it was damaged, or made by another "
+            "version. Compare the inputs before you trust the result."
+        )
+        return Opened(opened.design, (warning,))
+    return opened
+
+
+def open_file(content: bytes, fallback: Design) -> Opened:
+    """Open an uploaded profile; what cannot be used is named."""
+    try:
+        data = read_document(content)
+    except DesignError as problem:
+        return Opened(fallback, tuple(str(error) for error in problem.errors))
+    return open_document(data, fallback)
+
+
+def open_document(data: Mapping[str, Any], fallback: Design) -> Opened:
+    """Make a design of plain data; fields that cannot be used are taken from `fallback`."""
+    try:
+        return Opened(parse_design(data))
+    except DesignError as problem:
+        errors = problem.errors
+    spare = document(fallback)
+    mended: Any = copy.deepcopy(dict(data))
+    for error in errors:
+        _replace(mended, spare, error.path.split(".") if error.path else [])
+    told = tuple(_told(error) for error in errors)
+    try:
+        return Opened(parse_design(mended), told)
+    except DesignError:
+        return Opened(fallback, (*told, "Too much of it is unusable; the last good design stays."))
+
+
+def _told(error: FieldError) -> str:
+    return f"{error}; another value stands in its place."
+
+
+def _replace(data: Any, spare: Any, keys: list[str]) -> None:
+    """Put the spare's value at a path, or take the key out where the spare has none."""
+    for key in keys[:-1]:
+        data, spare = _step(data, key), _step(spare, key)
+    if not keys:
+        return
+    last, value = keys[-1], _step(spare, keys[-1])
+    if isinstance(data, dict):
+        if value is None:
+            data.pop(last, None)
+        else:
+            data[last] = copy.deepcopy(value)
+
+
+def _step(data: Any, key: str) -> Any:
+    if isinstance(data, dict):
+        return data.get(key)
+    if isinstance(data, list) and key.isdecimal() and int(key) < len(data):
+        return data[int(key)]
+    return None

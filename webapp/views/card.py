@@ -1,0 +1,33 @@
+"""A card that holds one figure: heading, export buttons, the figure, and one sentence."""
+
+from typing import Any
+
+from dash import html
+from dash.development.base_component import Component
+
+
+def card(name: str, heading: str) -> Component:
+    """Place for the figure `name`; the browser draws into it."""
+    place: dict[str, Any] = {"role": "img", "aria-label": heading}
+    exports = [_export(name, heading, kind) for kind in ("png", "svg")]
+    return html.Section(
+        [
+            html.Div(
+                [html.H2(heading), html.Div(exports, className="exports")], className="card-head"
+            ),
+            html.Div(id=f"figure-{name}", className="figure", **place),
+            html.P(id=f"sentence-{name}", className="sentence"),
+        ],
+        className=f"card card-{name}",
+    )
+
+
+def _export(name: str, heading: str, kind: str) -> Component:
+    """Button that saves the figure as a picture."""
+    data: dict[str, Any] = {
+        "data-figure": name,
+        "data-format": kind,
+        "aria-label": f"{heading} as {kind.upper()}",
+    }
+    title = f"Save as {kind.upper()} with a caption line"
+    return html.Button(kind.upper(), className="export", title=title, **data)
