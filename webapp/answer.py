@@ -1,6 +1,6 @@
 """Answers to the page: state, figures and words, as plain data for the browser."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from typing import Any
 
 from model.cautions import cautions, notes, rms_and_peak
@@ -11,7 +11,7 @@ from model.profile import fingerprint
 from model.quantity import format_quantity, format_si
 from model.verdict import verdict
 from model.version import VERSION
-from webapp.controls import summaries
+from webapp.controls import all_fields, summaries
 from webapp.figures.theme import THEMES, Theme
 from webapp.link import encode
 from webapp.services import Services
@@ -35,7 +35,11 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
     except DesignError as problem:
         return error_answer(request.number, problem)
     result = services.evaluate(design)
-    return {**state_answer(request.number, result), **view(result, THEMES[request.theme])}
+    return {
+        **state_answer(request.number, result),
+        "texts": tidied(design, request.values),
+        **view(result, THEMES[request.theme]),
+    }
 
 
 def state_answer(number: int, result: Evaluation) -> dict[str, Any]:
@@ -86,6 +90,17 @@ def knobs(design: Design) -> dict[str, dict[str, Any]]:
             "text": format_si(conductivity, "S/m", 4),
             "note": format_quantity(conductivity, "uS/cm", 4),
         },
+    }
+
+
+def tidied(design: Design, values: Mapping[str, str | bool]) -> dict[str, str]:
+    """How controls would write what was typed differently: ``50`` becomes ``50 µm``."""
+    knob_texts = {path: found["text"] for path, found in knobs(design).items()}
+    texts = {field.path: field.text for field in all_fields(design)} | knob_texts
+    return {
+        path: text
+        for path, typed in values.items()
+        if isinstance(text := texts.get(path, typed), str) and text != typed
     }
 
 

@@ -48,7 +48,7 @@ def fields(part: BaseModel, path: str) -> Iterator[Field]:
     if isinstance(part, Layout):
         found.sort(key=lambda item: item[0] in Layout.model_fields)
     for key, declared in found:
-        place = f"{path}.{key}" if path else key
+        place = _join(path, key)
         if place not in ELSEWHERE:
             yield Field(place, declared, getattr(part, key))
 
@@ -58,11 +58,22 @@ def inner_parts(part: BaseModel, path: str) -> Iterator[tuple[str, str, BaseMode
     for name, info in type(part).model_fields.items():
         value, key = getattr(part, name), info.alias or name
         if isinstance(value, BaseModel):
-            yield f"{path}.{key}", key.replace("_", " ").capitalize(), value
+            yield _join(path, key), key.replace("_", " ").capitalize(), value
         elif isinstance(value, tuple):
             for index, item in enumerate(value):
                 heading = f"{key.removesuffix('s').capitalize()} {index + 1}"
-                yield f"{path}.{key}.{index}", heading, item
+                yield f"{_join(path, key)}.{index}", heading, item
+
+
+def _join(path: str, key: str) -> str:
+    return f"{path}.{key}" if path else key
+
+
+def all_fields(part: BaseModel, path: str = "") -> Iterator[Field]:
+    """Every declared field of a part and of everything within it."""
+    yield from fields(part, path)
+    for inner_path, _, inner in inner_parts(part, path):
+        yield from all_fields(inner, inner_path)
 
 
 def inputs_panel(design: Design) -> list[Component]:

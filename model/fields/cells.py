@@ -52,6 +52,8 @@ class Cells(Stored):
                 continue
             local = self._reference(cells[waiting], points[:, waiting])
             inside = self._contains(local)
+            if not self._straight:
+                inside &= self._hits(cells[waiting], local, points[:, waiting])
             found[waiting[inside]] = cells[waiting[inside]]
             place[:, waiting[inside]] = local[:, inside]
         return found, np.clip(place, 0.0, 1.0)
@@ -77,6 +79,13 @@ class Cells(Stored):
         highest = local.sum(axis=0) if self.corners.shape[1] == 3 else local.max(axis=0)
         inside: NDArray[np.bool_] = (local.min(axis=0) >= -TOLERANCE) & (highest <= 1 + TOLERANCE)
         return inside
+
+    def _hits(self, cells: Index, local: Real, points: Real) -> NDArray[np.bool_]:
+        """Whether the Newton steps have arrived; far from a skewed cell they may not."""
+        corners = self.corners[cells]
+        miss = np.abs(points - self._map(corners, local))
+        close: NDArray[np.bool_] = (miss <= 1e-7 * np.ptp(corners, axis=1).T).all(axis=0)
+        return close
 
     def _reference(self, cells: Index, points: Real) -> Real:
         """Invert the reference map by Newton steps: one is exact for parallelograms."""

@@ -28,7 +28,7 @@
   function makeRow() {
     const row = document.createElement("li");
     row.innerHTML =
-      '<details><summary><span class="row-name"><i aria-hidden="true"></i><b></b><em></em></span>' +
+      '<details><summary><span class="row-name"><i aria-hidden="true"></i><b></b></span>' +
       '<span class="row-headroom"></span>' +
       '<span class="bar" aria-hidden="true"><span></span></span>' +
       '<span class="row-value"></span><span class="row-state"></span></summary>' +
@@ -40,9 +40,8 @@
   function fill(row, values) {
     row.className = values.state;
     set(row, "b", values.label);
-    set(row, "em", values.subject);
     set(row, ".row-headroom", values.headroom);
-    set(row, ".row-value", values.value + ", " + values.allowed);
+    set(row, ".row-value", (values.subject ? values.subject + ": " : "") + values.value + ", " + values.allowed);
     set(row, ".row-state", { broken: "broken", tight: "tight", kept: "kept" }[values.state]);
     set(row, ".row-bound", "Voltage: " + values.bound + ".");
     set(row, ".row-why", values.why);

@@ -63,6 +63,17 @@
     );
   };
 
+  /* Write typed values the usual way, unless something newer has been typed since. */
+  function tidy(texts) {
+    if (gate.moving()) return;
+    for (const [path, words] of Object.entries(texts)) {
+      const field = byId(JSON.stringify(idOf(path)));
+      if (!field || field.value !== gate.values[path]) continue;
+      gate.values[path] = words;
+      props(idOf(path), { value: words });
+    }
+  }
+
   function draw(answer) {
     for (const [name, figure] of Object.entries(answer.figures)) page.draw(name, figure);
     for (const [name, words] of Object.entries(answer.sentences)) text("sentence-" + name, words);
@@ -79,6 +90,7 @@
     for (const [path, found] of Object.entries(answer.knobs)) page.knobs.place(path, found);
     for (const [key, words] of Object.entries(answer.summaries)) text("summary-" + key, words);
     answer.names.forEach((name, index) => text("particle-name-" + index, name));
+    tidy(answer.texts);
     items("notes", answer.notes);
     items("cautions", answer.cautions);
     document.title = answer.title + " · Slackwater";

@@ -14,6 +14,8 @@ from model.voltage import PEAK_TO_PEAK
 from webapp.figures.labels import Label, Wish, place_labels
 from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark, numbers
 
+#: A stretch where a ceiling does not bind gets a name if it spans this share of the axis.
+_WORTH_A_NAME = 0.15
 #: Text of an empty slot: a word joiner, which is drawn as nothing.
 _NOTHING = "\u2060"
 #: Values far off the axis are drawn this many times beyond its end, never as gaps.
@@ -132,7 +134,7 @@ def _floor(x: dict[str, str], floor: Real, result: Evaluation, theme: Theme) -> 
 def _labels(
     result: Evaluation, floor: Real, ceilings: Sequence[Real], ends: tuple[float, float]
 ) -> list[Label]:
-    """Name every stretch where a ceiling binds within the axes, and the floor."""
+    """Name the floor, and every ceiling where it binds or else where it is longest in sight."""
     corridor, (low, high) = result.corridor, ends
     x = _fraction(corridor.frequency, float(corridor.frequency[0]), float(corridor.frequency[-1]))
     heights = [_fraction(volts, low, high) for volts in (floor, *ceilings)]
@@ -144,7 +146,12 @@ def _labels(
     for index, bound in enumerate(corridor.ceilings):
         height = heights[index + 1]
         visible = (binding == index) & (height > 0.0) & (height < 1.0)
-        wishes += [Wish(bound.label, bound.id, x[run], height[run]) for run in _slices(visible)]
+        runs = _slices(visible) or _longest((height > 0.0) & (height < 1.0))
+        wishes += [
+            Wish(bound.label, bound.id, x[run], height[run])
+            for run in runs
+            if visible.any() or x[run][-1] - x[run][0] > _WORTH_A_NAME
+        ]
     wishes.sort(key=lambda wish: -wish.x.size)
     return place_labels(wishes, [(x, height) for height in heights])
 

@@ -47,13 +47,12 @@ def place_labels(wishes: Sequence[Wish], lines: Sequence[tuple[Real, Real]]) -> 
     lines
         All drawn curves as (x, y) in fractions of the plot area.
     """
-    points = [np.stack([x * WIDTH, y * HEIGHT]) for x, y in lines]
-    drawn = np.concatenate(points, axis=1) if points else np.empty((2, 0))
+    drawn = np.concatenate([_dense(x, y) for x, y in lines] or [np.empty((2, 0))], axis=1)
     boxes: list[Real] = []
     placed = []
     for wish in wishes:
         spots = _spots(wish)
-        rank = 0.01 * np.arange(len(spots))
+        rank = 0.002 * np.arange(len(spots))
         box = spots[
             int(np.argmin(_covered_points(spots, drawn) + _covered_names(spots, boxes) + rank))
         ]
@@ -63,6 +62,14 @@ def place_labels(wishes: Sequence[Wish], lines: Sequence[tuple[Real, Real]]) -> 
     return placed
 
 
+def _dense(x: Real, y: Real) -> Real:
+    """Points of a curve in pixels, with three more in each step so that steep ones count too."""
+    steps = np.arange(4 * (x.size - 1) + 1) / 4.0
+    index = np.arange(x.size)
+    points = np.stack([np.interp(steps, index, x) * WIDTH, np.interp(steps, index, y) * HEIGHT])
+    return points[:, (points[1] > -LINE) & (points[1] < HEIGHT + LINE)]
+
+
 def _spots(wish: Wish) -> Real:
     """Boxes (left, low, right, high) where a name may stand, the most wanted first, ``(n, 4)``."""
     half = LETTER * len(wish.text) / 2.0
@@ -70,7 +77,7 @@ def _spots(wish: Wish) -> Real:
     x = np.clip(wish.x[shares] * WIDTH, half + 4.0, WIDTH - half - 4.0)
     near = np.abs(wish.x[:, np.newaxis] * WIDTH - x).argmin(axis=0)
     side = 1.0 if wish.above else -1.0
-    steps = np.array([0.75, 1.6, -0.75, -1.6]) * side * LINE
+    steps = np.array([0.75, 1.6, -0.75, -1.6, 2.6, -2.6]) * side * LINE
     y = np.clip(
         (wish.y[near] * HEIGHT)[:, np.newaxis] + steps, LINE / 2.0, HEIGHT - LINE / 2.0
     ).reshape(-1)
@@ -82,7 +89,7 @@ def _covered_points(spots: Real, drawn: Real) -> Real:
     """Weight of the curve points under each box."""
     left, low, right, high = spots.T[:, :, np.newaxis]
     x, y = drawn
-    return 0.1 * ((x > left) & (x < right) & (y > low) & (y < high)).sum(axis=1)
+    return 0.025 * ((x > left) & (x < right) & (y > low) & (y < high)).sum(axis=1)
 
 
 def _covered_names(spots: Real, boxes: Sequence[Real]) -> Real:

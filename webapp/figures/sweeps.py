@@ -4,6 +4,7 @@ from typing import Any
 
 import numpy as np
 
+from model.arrays import Real
 from model.evaluate import Evaluation
 from model.limits import LIMITS
 from model.quantity import format_si
@@ -71,40 +72,41 @@ def _figure(found: Sweep, result: Evaluation, theme: Theme, y_axis: dict[str, An
     low, high = (10.0**end for end in ends) if y_axis.get("type") == "log" else ends
     drive, present = result.design.drive, result.design.liquid.conductivity
     data: list[dict[str, Any]] = []
+    conductivity = found.conductivity * 1e3  # mS/m, as the axis shows it
     panels = (
         ("x", found.voltage, found.by_voltage, drive.voltage, "V"),
-        ("x2", found.conductivity, found.by_conductivity, present, "S/m"),
+        ("x2", conductivity, found.by_conductivity, present * 1e3, "mS/m"),
     )
     for name, at, values, here, unit in panels:
-        hover = f"%{{y:.3~g}} {limit.unit} at %{{x:.3~s}}{unit}<extra></extra>"
-        visible = np.clip(values, low / 30.0, high * 30.0)
+        hover = f"%{{y:.3~g}} {limit.unit} at %{{x:.3~g}} {unit}<extra></extra>"
         curve = {"type": "scatter", "mode": "lines", "xaxis": name, "hovertemplate": hover}
         line = {"color": colour, "width": 2.5}
+        visible = np.clip(values, low / 30.0, high * 30.0)
         data.append({**curve, "x": numbers(at), "y": numbers(visible), "line": line})
-        ends_here = [float(at[0]), float(at[-1])]
-        dashed = {"color": colour, "width": 1.2, "dash": "dash"}
-        threshold = f"allowed: {format_value(found.allowed, limit.unit)}<extra></extra>"
-        data.append(
-            {
-                **curve,
-                "x": ends_here,
-                "y": [found.allowed, found.allowed],
-                "line": dashed,
-                "hovertemplate": threshold,
-            }
-        )
-        shown = float(np.clip(found.value, low, high))
-        data.append(mark(theme, here, shown, xaxis=name))
+        data.append({**curve, **_threshold(at, found.allowed, limit.unit, colour)})
+        data.append(mark(theme, here, float(np.clip(found.value, low, high)), xaxis=name))
     x_axis = axis(
         theme,
         "Voltage, peak to peak (V)",
         range=[0.0, float(found.voltage[-1])],
         domain=[0.0, 0.47],
     )
-    least, most = float(found.conductivity[0]), float(found.conductivity[-1])
     x2_axis = {
-        **log_axis(theme, "Conductivity", least, most, "S/m"),
+        **log_axis(
+            theme, "Conductivity (mS/m)", float(conductivity[0]), float(conductivity[-1]), ""
+        ),
         "domain": [0.53, 1.0],
         "anchor": "y",
+        "tickangle": 0,
     }
     return {"data": data, "layout": layout(theme, xaxis=x_axis, xaxis2=x2_axis, yaxis=y_axis)}
+
+
+def _threshold(at: Real, allowed: float, unit: str, colour: str) -> dict[str, Any]:
+    """Dashed line at what is allowed, across one panel."""
+    return {
+        "x": [float(at[0]), float(at[-1])],
+        "y": [allowed, allowed],
+        "line": {"color": colour, "width": 1.2, "dash": "dash"},
+        "hovertemplate": f"allowed: {format_value(allowed, unit)}<extra></extra>",
+    }
