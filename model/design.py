@@ -4,7 +4,7 @@ from collections import Counter
 from collections.abc import Iterable
 from typing import TYPE_CHECKING, Annotated, Any
 
-from pydantic import ConfigDict, Field, create_model, model_validator
+from pydantic import BeforeValidator, ConfigDict, Field, create_model, model_validator
 from pydantic_core import PydanticCustomError
 
 from model.declare import Part, Quantity, Text
@@ -21,6 +21,9 @@ from model.tasks import TASKS
 
 #: Most populations in one design.
 MOST_PARTICLES = 12
+#: Least height of a centre over the radius at which a particle counts as clear of the wall: at
+#: contact itself the drag is infinite, and nothing that is compared with a speed means anything.
+CLEARANCE = 1.01
 
 
 class Drive(Part):
@@ -111,6 +114,19 @@ else:
     Limits = create_model("Limits", __base__=Part, **_thresholds)
 
 
+def _counted(value: Any) -> Any:
+    """Refuse what is no list, or of the wrong length, before any particle is looked at."""
+    if not isinstance(value, list | tuple):
+        problem = "must be a list of tables, one for each particle"
+    elif not value:
+        problem = "needs at least one particle"
+    elif len(value) > MOST_PARTICLES:
+        problem = f"has {len(value)} particles; at most {MOST_PARTICLES} can be used"
+    else:
+        return value
+    raise PydanticCustomError("declared", "{problem}", {"problem": problem})
+
+
 class Design(Part):
     """A whole design: task, chip, liquid, drive, flow, particles and limits."""
 
@@ -127,7 +143,8 @@ class Design(Part):
     flow: Flow = Flow()
     particles: Annotated[
         tuple[Annotated[Particle, OneOf(PARTICLES, "kind")], ...],
-        Field(alias="particle", min_length=1, max_length=MOST_PARTICLES),
+        BeforeValidator(_counted),
+        Field(alias="particle"),
     ]
     limits: Limits = Limits()
 
@@ -159,11 +176,14 @@ def _misfits(design: Design) -> Iterable[tuple[str, str]]:
             yield f"particle.{index}.name", f"“{particle.name}” is the name of two particles"
     if not design.collected:
         yield "particle.0.role", "at least one particle must have the role collect"
+    if design.chip.floor.outside == design.chip.lid.outside == "insulated":
+        yield "chip.lid.outside", "must let heat out when the floor is insulated"
     height, channel = design.task.force_height, design.chip.channel_height
     for particle in design.collected:
-        radius = particle.equivalent_radius
-        if not radius <= height <= channel - radius:
-            low, high = (format_quantity(bound, "um", 4) for bound in (radius, channel - radius))
+        clear = CLEARANCE * particle.equivalent_radius
+        slack = 1e-9 * height  # so that the told bounds themselves can be typed
+        if not clear - slack <= height <= channel - clear + slack:
+            low, high = (format_quantity(bound, "um") for bound in (clear, channel - clear))
             yield (
                 "task.working_height",
                 f"must be from {low} to {high}, so that {particle.name} clears floor and lid",

@@ -98,9 +98,13 @@ class Evaluation:
 
     @cached_property
     def ledger(self) -> tuple[LedgerRow, ...]:
-        """Every rule at the operating point, the one with least headroom first."""
+        """Every rule at the operating point, the one with least headroom first.
+
+        Of equal ones a condition that no voltage changes comes first: it is the reason why the
+        others cannot be kept.
+        """
         rows = [self._row(rule) for rule in rules(self.point)]
-        return tuple(sorted(rows, key=lambda row: row.headroom))
+        return tuple(sorted(rows, key=lambda row: (row.headroom, row.rule.law.power)))
 
     def _row(self, rule: Rule) -> LedgerRow:
         voltage, law = self.rms_voltage, rule.law

@@ -5,6 +5,7 @@ import hashlib
 import json
 import tomllib
 from collections.abc import Mapping
+from functools import lru_cache
 from pathlib import Path
 from typing import Any
 
@@ -14,6 +15,7 @@ from pydantic import BaseModel, ValidationError
 from model.declare import FROM_PERSON, declarations
 from model.design import Design
 from model.errors import DesignError, FieldError
+from model.layers import Layer, Membrane
 from model.layouts import LAYOUTS
 from model.particles import PARTICLES
 from model.tasks import TASKS
@@ -22,6 +24,11 @@ from model.tasks import TASKS
 SCHEMA = 1
 #: Largest profile that is read.
 MAX_BYTES = 256 * 1024
+#: Deepest nesting and most points in a line of a profile; a real one has four and about a hundred.
+#: More would only wear out whatever reads it.
+MOST_LEVELS, MOST_POINTS = 20, 400
+#: Most errors that are told one by one.
+MOST_ERRORS = 100
 _TAGS = {*LAYOUTS, *PARTICLES, *TASKS, "layer", "membrane"}
 
 
@@ -53,9 +60,14 @@ def read_document(content: bytes) -> dict[str, Any]:
         size = f"{MAX_BYTES // 1024} kB"
         raise DesignError([FieldError("", "", f"is larger than {size}, the most a profile may be")])
     try:
-        return tomllib.loads(content.decode("utf-8"))
+        text = content.decode("utf-8-sig")  # some editors put a mark before the first letter
     except UnicodeDecodeError:
         raise DesignError([FieldError("", "", "is no UTF-8 text file")]) from None
+    if any(line.count(".") > MOST_POINTS for line in text.splitlines()):
+        problem = f"has a line with more than {MOST_POINTS} points, which no profile needs"
+        raise DesignError([FieldError("", "", problem)])
+    try:
+        return tomllib.loads(text)
     except (ValueError, RecursionError) as problem:  # ValueError: also numbers of endless digits
         raise DesignError([FieldError("", "", f"is no TOML file: {problem}")]) from None
 
@@ -70,15 +82,33 @@ def parse_design(document: Mapping[str, Any]) -> Design:
     DesignError
         With one entry for every field that is wrong.
     """
+    if too_deep(document):
+        raise DesignError([FieldError("", "", "is nested deeper than any profile")])
     data = dict(document)
     schema = data.pop("schema", SCHEMA)
     if schema != SCHEMA or isinstance(schema, bool):
         problem = f"must be {SCHEMA}; this program reads no other version"
         raise DesignError([FieldError("schema", _shown(schema), problem)])
     try:
-        return Design.model_validate(data, context=FROM_PERSON)
+        # by the profile's own keys alone: names within the program are unknown keys here
+        return Design.model_validate(data, context=FROM_PERSON, by_alias=True, by_name=False)
     except ValidationError as problem:
         raise DesignError(_field_errors(problem, data)) from None
+
+
+def too_deep(data: Any) -> bool:
+    """Tell whether plain data nests deeper than any profile; a loop, as calls would run out."""
+    level = [data]
+    for _ in range(MOST_LEVELS):
+        level = [
+            inner
+            for item in level
+            if isinstance(item, Mapping | list | tuple)
+            for inner in (item.values() if isinstance(item, Mapping) else item)
+        ]
+        if not level:
+            return False
+    return True
 
 
 def document(design: Design) -> dict[str, Any]:
@@ -121,18 +151,21 @@ def _part_document(part: BaseModel) -> dict[str, Any]:
 
 def _field_errors(problem: ValidationError, data: Mapping[str, Any]) -> list[FieldError]:
     """Reword the validator's findings, each with the path as the profile has it."""
-    errors = []
-    for found in problem.errors(include_url=False):
+    errors: dict[FieldError, None] = {}
+    told = problem.errors(include_url=False)
+    for found in told[:MOST_ERRORS]:
         keys, value = _place(found["loc"], data)
-        path, context = ".".join(map(str, keys)), found.get("ctx", {})
+        path, context = ".".join(map(_shown, keys)), found.get("ctx", {})
         for end, reason in context.get("misfits", ()):  # fine alone, impossible together
             place = f"{path}.{end}".lstrip(".")
-            errors.append(FieldError(place, _shown(_at(data, place)), reason))
+            errors[FieldError(place, _shown(_at(data, place)), reason)] = None
         if "misfits" not in context:
             shown = "" if found["type"] == "missing" else _shown(value)
             problem_text = _problem(found["type"], found["msg"], context, keys)
-            errors.append(FieldError(path, shown, problem_text))
-    return list(dict.fromkeys(errors))
+            errors[FieldError(path, shown, problem_text)] = None
+    if len(told) > MOST_ERRORS:
+        errors[FieldError("", "", f"has {len(told) - MOST_ERRORS} more errors")] = None
+    return list(errors)
 
 
 def _place(location: tuple[int | str, ...], data: Any) -> tuple[list[int | str], Any]:
@@ -177,20 +210,14 @@ def _problem(kind: str, message: str, context: Mapping[str, Any], keys: list[int
             return f"needs {key} to be one of {allowed.replace(chr(39), '')}"
         case "union_tag_not_found":
             return f"needs the key {str(context['discriminator']).strip(chr(39))}"
-        case "too_long":
-            found, most = context["actual_length"], context["max_length"]
-            return f"has {found} entries; at most {most} can be used"
-        case "too_short":
-            return f"needs at least {context['min_length']} entry"
-        case "tuple_type" | "list_type":
-            return "must be a list of tables"
         case "model_type" | "model_attributes_type" | "dict_type":
             return "must be a table of keys"
         case _:
             return message
 
 
-def _known_keys() -> set[str]:
+@lru_cache(maxsize=1)  # declarations never change
+def _known_keys() -> frozenset[str]:
     """Every key that a profile may have, for the suggestion beside a misspelt one."""
 
     def keys(part: type[BaseModel]) -> set[str]:
@@ -202,13 +229,14 @@ def _known_keys() -> set[str]:
         return found
 
     parts: list[type[BaseModel]] = [Design, type(Design.model_fields["limits"].default)]
-    parts += [*LAYOUTS.values(), *PARTICLES.values(), *TASKS.values()]
-    return set().union(*(keys(part) for part in parts))
+    parts += [*LAYOUTS.values(), *PARTICLES.values(), *TASKS.values(), Layer, Membrane]
+    return frozenset({"schema"}.union(*(keys(part) for part in parts)))
 
 
 def _shown(value: Any) -> str:
-    """Shorten a value for a message."""
+    """Shorten a value for a message, on one line and without what a terminal would obey."""
     if value is None:
         return ""
-    text = value if isinstance(value, str) else repr(value)
+    plain = isinstance(value, str) and value.isprintable()
+    text = value if plain else repr(value)
     return text if len(text) <= 60 else f"{text[:57]}…"

@@ -57,7 +57,7 @@ def parse_quantity(text: str | float, unit: str) -> float:
     295.15
     """
     if isinstance(text, bool):
-        raise QuantityError(f"needs a number with a unit, e.g. in {pretty_unit(unit)}")
+        raise QuantityError(_example(unit))
     if isinstance(text, int | float):
         number, given = _finite(text), unit
     else:
@@ -164,9 +164,7 @@ def _finite(value: float) -> float:
 
 def _split(text: str, unit: str) -> tuple[float, str]:
     """Split a text into number and unit, which is the field's if none is given."""
-    example = (
-        f"needs a number with a unit, e.g. in {pretty_unit(unit)}" if unit else "needs a number"
-    )
+    example = _example(unit)
     if len(text) > MAX_LENGTH:
         raise QuantityError(f"is longer than {MAX_LENGTH} characters; {example}")
     for odd, plain in _SPELLINGS.items():
@@ -180,6 +178,10 @@ def _split(text: str, unit: str) -> tuple[float, str]:
     if not _UNIT.fullmatch(given):
         raise QuantityError(f"has something after the number that is no unit; {example}")
     return _finite(float(number)), given or unit
+
+
+def _example(unit: str) -> str:
+    return f"needs a number with a unit, e.g. in {pretty_unit(unit)}" if unit else "needs a number"
 
 
 def _convert(number: float, given: str, unit: str) -> float:

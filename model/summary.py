@@ -15,7 +15,7 @@ from model.evaluate import Evaluation, LedgerRow, ParticleResult
 from model.polarisation import complex_permittivity
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
-from model.verdict import format_headroom, format_value, verdict
+from model.verdict import format_headroom, format_value, format_volts, verdict
 from model.version import VERSION
 
 
@@ -145,14 +145,10 @@ def _table(head: tuple[str, ...], rows: list[tuple[str, ...]]) -> list[str]:
 
 
 def _corridor(result: Evaluation) -> str:
-    floor, ceiling = _volts(result.floor_pp), _volts(result.ceiling_pp)
+    floor, ceiling = format_volts(result.floor_pp), format_volts(result.ceiling_pp)
     if result.floor_pp > result.ceiling_pp:
         return f"no corridor here: the floor is {floor}, the lowest ceiling {ceiling} peak to peak"
     return f"corridor here: {floor} to {ceiling} peak to peak"
-
-
-def _volts(voltage: float) -> str:
-    return "beyond any voltage" if math.isinf(voltage) else format_si(voltage, "V")
 
 
 def spectrum_rows(design: Design, frequency: Real) -> Iterator[str]:

@@ -26,7 +26,7 @@ def verdict(result: Evaluation) -> Verdict:
         )
     frequency = format_si(result.design.drive.frequency, "Hz")
     floor, ceiling = _worst(result, "least"), _worst(result, "most")
-    if floor is not None and floor.bound_pp == float("inf"):
+    if floor is not None and floor.bound_pp > MOST_VOLTAGE:
         culprit = next(
             (row for row in result.ledger if row.rule.law.power == 0 and not row.kept), floor
         )
@@ -40,7 +40,7 @@ def verdict(result: Evaluation) -> Verdict:
             False,
             f"No corridor at {frequency}",
             f"{floor.rule.name} needs {_volts(floor)}, "
-            f"but {ceiling.rule.name} allows {_volts(ceiling)}",
+            f"but {ceiling.rule.name} allows at most {_volts(ceiling)}",
         )
     if binding.rule.law.sense == "least":
         return Verdict(
@@ -57,7 +57,7 @@ def format_headroom(headroom: float) -> str:
     """Write a headroom as a factor, e.g. ``1.15×``.
 
     >>> format_headroom(1.1499), format_headroom(float("inf")), format_headroom(250.0)
-    ('1.15×', 'any voltage', '> 100×')
+    ('1.14×', 'any voltage', '> 100×')
     """
     if headroom == float("inf"):
         return "any voltage"
@@ -75,6 +75,21 @@ def format_value(value: float, unit: str) -> str:
     return format_quantity(value, unit, 3)
 
 
+#: Peak-to-peak voltages beyond these are none that is ever made: any, or nothing.
+LEAST_VOLTAGE, MOST_VOLTAGE = 1e-6, 1e6
+
+
+def format_volts(voltage: float) -> str:
+    """Write a peak-to-peak voltage; far beyond what can be made, only that.
+
+    >>> format_volts(8.943), format_volts(float("inf")), format_volts(3e21), format_volts(1e-20)
+    ('8.94 V', 'beyond any voltage', 'beyond any voltage', '0 V')
+    """
+    if voltage > MOST_VOLTAGE:
+        return "beyond any voltage"
+    return format_si(voltage if voltage > LEAST_VOLTAGE else 0.0, "V")
+
+
 def _worst(result: Evaluation, sense: str) -> LedgerRow | None:
     """Find the row that sets the floor or the ceiling."""
     rows = [row for row in result.ledger if row.rule.law.sense == sense]
@@ -84,4 +99,4 @@ def _worst(result: Evaluation, sense: str) -> LedgerRow | None:
 
 
 def _volts(row: LedgerRow) -> str:
-    return format_si(row.bound_pp, "V")
+    return format_volts(row.bound_pp)

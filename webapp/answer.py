@@ -8,7 +8,7 @@ from model.design import Design
 from model.errors import DesignError
 from model.evaluate import Evaluation
 from model.profile import fingerprint
-from model.quantity import format_quantity, format_si
+from model.quantity import DIGITS, format_quantity, format_si
 from model.verdict import verdict
 from model.version import VERSION
 from webapp.controls import all_fields, summaries
@@ -76,18 +76,18 @@ def knobs(design: Design) -> dict[str, dict[str, Any]]:
     return {
         "drive.frequency": {
             "value": drive.frequency,
-            "text": format_si(drive.frequency, "Hz", 4),
+            "text": format_si(drive.frequency, "Hz", DIGITS),
             "note": f"period {format_si(1.0 / drive.frequency, 's')}",
         },
         "drive.voltage": {
             "value": drive.voltage,
             "most": round(max(1.5 * drive.voltage_limit, drive.voltage), 2),
-            "text": format_si(drive.voltage, "V", 4),
+            "text": format_si(drive.voltage, "V", DIGITS),
             "note": rms_and_peak(drive.voltage),
         },
         "liquid.conductivity": {
             "value": conductivity,
-            "text": format_si(conductivity, "S/m", 4),
+            "text": format_si(conductivity, "S/m", DIGITS),
             "note": format_quantity(conductivity, "uS/cm", 4),
         },
     }

@@ -1,5 +1,6 @@
 """Makes the web application: page, callbacks, cache, headers, compression."""
 
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any, cast
@@ -8,6 +9,7 @@ from dash import Dash
 from flask import Flask, Response, jsonify, request
 from flask_caching import Cache
 from flask_compress import Compress
+from werkzeug.exceptions import MethodNotAllowed
 
 from webapp import callbacks
 from webapp.answer import answer
@@ -82,6 +84,8 @@ def make_app(chosen: Settings | None = None) -> Dash:
     return app
 
 
+#: Where the framework takes calls of its callbacks.
+_CALLBACK = "/_dash-update-component"
 _COMPRESSED = [
     "text/html", "text/css", "text/javascript", "application/javascript", "application/json",
 ]  # fmt: skip
@@ -111,11 +115,56 @@ def _answers(server: Flask, services: Services) -> None:
     and the framework's bookkeeping in the browser costs more than the answer (see DEVELOPERS.md).
     """
 
-    @server.post("/answer/<view>")
+    # GET is taken and refused here: the framework would answer it with the page itself.
+    @server.route("/answer/<view>", methods=["GET", "POST"])
     def answer_view(view: str) -> Any:
+        if request.method != "POST":
+            raise MethodNotAllowed(["POST"])
         if view not in VIEWS:
             raise BadRequestError("no such view")
-        return jsonify(answer(request.get_json(silent=True), services, VIEWS[view]))
+        return jsonify(answer(_sent(), services, VIEWS[view]))
+
+
+def _sent() -> Any:
+    """Read the request's plain data; None if it is none."""
+    try:
+        return request.get_json(silent=True)
+    except RecursionError:
+        raise BadRequestError("nested too deep") from None
+
+
+def _calls(sent: Any, callbacks: Mapping[str, Mapping[str, Any]]) -> bool:
+    """Whether a request of the framework names a callback of this page and what it takes.
+
+    The framework checks nothing of it and fails on anything else.
+    """
+    if not isinstance(sent, dict) or not isinstance(sent.get("output"), str):
+        return False
+    known = callbacks.get(sent["output"], {})
+    if "callback" not in known:
+        return False
+    changed, outputs = sent.get("changedPropIds", []), sent.get("outputs")
+    outputs = outputs if isinstance(outputs, list) else [outputs]
+    return (
+        isinstance(changed, list)
+        and all(isinstance(item, str) for item in changed)
+        and all(_fits(sent.get(key, []), known[key]) for key in ("inputs", "state"))
+        and all(isinstance(item, dict | list) for item in outputs)
+        and len(outputs) == sent["output"].count("...") + 1
+    )
+
+
+def _fits(places: Any, known: Sequence[Mapping[str, Any]]) -> bool:
+    """Whether the places of a request are those of the callback; a pattern has a list of them."""
+    if not isinstance(places, list) or len(places) != len(known):
+        return False
+    return all(
+        isinstance(place, list)
+        if str(expected["id"]).startswith("{")
+        else isinstance(place, dict)
+        and (place.get("id"), place.get("property")) == (expected["id"], expected["property"])
+        for place, expected in zip(places, known, strict=True)
+    )
 
 
 def _guard(server: Flask, app: Dash) -> None:
@@ -126,6 +175,12 @@ def _guard(server: Flask, app: Dash) -> None:
         "img-src 'self' data: blob:; connect-src 'self'; object-src 'none'; "
         "base-uri 'self'; frame-ancestors 'self'"
     )
+
+    @server.before_request
+    def check() -> None:
+        called = request.method == "POST" and request.path == _CALLBACK
+        if called and not _calls(_sent(), app.callback_map):
+            raise BadRequestError("no callback of this page")
 
     @server.after_request
     def protect(response: Response) -> Response:

@@ -7,15 +7,20 @@ wait and then find the entry.
 
 import hashlib
 import json
+import logging
 import os
+import threading
 from collections.abc import Callable
 from pathlib import Path
 
 from filelock import FileLock
 from flask_caching import Cache
+from threadpoolctl import threadpool_limits
 
 import model.fields
+import model.layout
 import model.layouts
+import model.walls
 from model.design import Design
 from model.fields.patterns import ChipPatterns
 from model.fields.solve import solve_chip
@@ -39,21 +44,33 @@ def default_folder() -> Path:
 
 
 def settings(folder: Path, most: int = 500) -> dict[str, object]:
-    """flask-caching settings for a folder on disk."""
-    return {"CACHE_TYPE": "FileSystemCache", "CACHE_DIR": str(folder), "CACHE_THRESHOLD": most}
+    """flask-caching settings for a folder on disk.
+
+    Entries have a folder of their own, as the cache takes every file there for one of them.
+    """
+    entries = folder / "chips"
+    return {"CACHE_TYPE": "FileSystemCache", "CACHE_DIR": str(entries), "CACHE_THRESHOLD": most}
 
 
 def solve(design: Design) -> ChipPatterns:
-    """Solve the chip of a design."""
-    return solve_chip(design.chip, design.liquid.heat_conductivity)
+    """Solve the chip of a design.
+
+    On one thread: the linear algebra gains nothing from a second, and threads that wait for one
+    another on a busy machine made a solve of half a second take five.
+    """
+    with threadpool_limits(1, "blas"):
+        return solve_chip(design.chip, design.liquid.heat_conductivity)
 
 
 class ChipCache:
     """Gives the patterns of a design's chip, solving each chip once however many ask."""
 
     def __init__(self, cache: Cache, folder: Path, solver: Solver = solve) -> None:
-        self._cache, self._folder, self._solver = cache, folder, solver
+        self._cache, self._solver = cache, solver
         self._near: dict[str, ChipPatterns] = {}
+        self._guard = threading.Lock()
+        self._locks = folder / "locks"
+        self._locks.mkdir(mode=0o700, parents=True, exist_ok=True)
 
     def patterns(self, design: Design) -> ChipPatterns:
         """Patterns from memory, from the cache, or from a solve."""
@@ -61,22 +78,30 @@ class ChipCache:
         found = self._near.get(key)
         if found is None:
             found = self._far(key, design)
-            if len(self._near) >= _NEAR:
-                self._near.pop(next(iter(self._near)), None)
-            self._near[key] = found
+            with self._guard:
+                if len(self._near) >= _NEAR:
+                    self._near.pop(next(iter(self._near)))
+                self._near[key] = found
         return found
 
     def _far(self, key: str, design: Design) -> ChipPatterns:
-        found = self._cache.get(key)
+        found = self._kept(key)
         if found is None:
-            with FileLock(self._folder / f"{key}.lock"):
-                found = self._cache.get(key)
+            with FileLock(self._locks / f"{key}.lock"):
+                found = self._kept(key)
                 if found is None:
                     found = self._solver(design)
                     self._cache.set(key, found, timeout=KEPT)
-        if not isinstance(found, ChipPatterns):
-            raise TypeError("the cache holds something that is no solved chip")
         return found
+
+    def _kept(self, key: str) -> ChipPatterns | None:
+        """Entry of the cache; None if there is none, or none that can be read."""
+        try:
+            found = self._cache.get(key)
+        except Exception:  # a damaged entry can fail in any way while it is unpacked
+            logging.getLogger(__name__).warning("a damaged entry is solved anew: %s", key)
+            return None
+        return found if isinstance(found, ChipPatterns) else None
 
 
 #: Chips kept in memory per process, the one longest there going first.
@@ -86,9 +111,11 @@ _NEAR = 32
 def _solver_digest() -> str:
     """Digest of the code that makes the patterns, so that changed code never meets old entries."""
     digest = hashlib.sha256()
+    paths = [Path(module.__file__) for module in (model.layout, model.walls) if module.__file__]
     for package in (model.fields, model.layouts):
-        for path in sorted(Path(package.__path__[0]).glob("*.py")):
-            digest.update(path.read_bytes())
+        paths += sorted(Path(package.__path__[0]).glob("*.py"))
+    for path in paths:
+        digest.update(path.read_bytes())
     return digest.hexdigest()
 
 

@@ -80,14 +80,15 @@ def opened_from(services: Services, source: str, address: Any, upload: Any, prof
         return open_file(content, first)
     if source == "profile":
         return Opened(services.profiles.get(str(profile), first))
-    if isinstance(address, str) and address.strip("#"):
-        return open_link(address, first)
+    link = address.get("link") if isinstance(address, dict) else None
+    if isinstance(link, str) and link.strip("#"):
+        return open_link(link, first)
     return Opened(first)
 
 
 def hydrated(opened: Opened) -> tuple[Any, ...]:
     """Controls and document of a design that was opened."""
-    found = knobs(opened.design)
+    found = knobs(opened.design)  # exact texts, so that opening a design changes nothing in it
     data = {"profile": document(opened.design), "problems": list(opened.problems)}
     return (
         inputs_panel(opened.design),

@@ -1,7 +1,9 @@
 """The command line: check a profile, write spectra, serve the dashboard."""
 
 import argparse
+import io
 import json
+import os
 import sys
 import threading
 import webbrowser
@@ -21,16 +23,24 @@ INSIDE, OUTSIDE, BAD_INPUT = 0, 1, 2
 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command and return its exit code: 0 fine, 1 outside the corridor, 2 bad input."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):  # a letter that a terminal lacks is no failure
+            stream.reconfigure(errors="replace")
     options = _parser().parse_args(arguments)
     try:
-        return int(options.run(options))
+        code = int(options.run(options))
+        sys.stdout.flush()
+        return code
+    except BrokenPipeError:  # whoever read has had enough, e.g. `head`
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return INSIDE
     except DesignError as problem:
         for note in getattr(problem, "__notes__", []):
             print(note, file=sys.stderr)
         for error in problem.errors:
             print(error, file=sys.stderr)
         return BAD_INPUT
-    except (FileNotFoundError, QuantityError) as problem:
+    except (OSError, QuantityError) as problem:
         print(problem, file=sys.stderr)
         return BAD_INPUT
 
@@ -85,6 +95,12 @@ def _serve(options: argparse.Namespace) -> int:
     return INSIDE
 
 
+def _port(text: str) -> int:
+    if not text.isdecimal() or not 0 < int(text[:6]) < 65536:
+        raise argparse.ArgumentTypeError("must be a whole number from 1 to 65535")
+    return int(text)
+
+
 def _parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="slackwater",
@@ -108,7 +124,7 @@ def _parser() -> argparse.ArgumentParser:
     serve = commands.add_parser("serve", help="open the dashboard in a browser")
     serve.add_argument("profile", nargs="?", help="profile to show first")
     serve.add_argument("--host", default="127.0.0.1")
-    serve.add_argument("--port", type=int, default=8050)
+    serve.add_argument("--port", type=_port, default=8050)
     serve.add_argument("--profiles", metavar="DIR", help="folder of profiles to offer")
     serve.add_argument("--open", action="store_true", help="open the browser too")
     serve.set_defaults(run=_serve)

@@ -7,18 +7,21 @@ dictionary and in URL-safe base64. A link that was cut still yields its first li
 """
 
 import base64
-import binascii
 import json
+import re
 import zlib
 from collections.abc import Iterator, Mapping
 from typing import Any
 
 from model.design import Design
-from model.profile import document, fingerprint
+from model.profile import MOST_LEVELS, document, fingerprint
 
 VERSION = "1"
 #: Longest address part that is read, characters, and most text it may unpack to, bytes.
 MAX_CHARACTERS, MAX_BYTES = 16_000, 64_000
+#: What stands behind a link in running text; no link made here ends with it.
+_PUNCTUATION = ".,;:!?)>]}'\""
+_LETTERS = re.compile("[A-Za-z0-9_-]*")
 #: Frequent text, so that short profiles pack well. Part of version 1: never change it.
 _DICTIONARY = b"""schema=1
 title="question="task.kind="hold"
@@ -98,7 +101,7 @@ def decode(address: str) -> tuple[dict[str, Any], str]:
     LinkError
         If nothing can be read.
     """
-    pieces = address.removeprefix("#").split(".")
+    pieces = address.removeprefix("#").rstrip(_PUNCTUATION).split(".")
     if len(address) > MAX_CHARACTERS:
         raise LinkError("the link is longer than any that is made here")
     if len(pieces) != 3:
@@ -106,17 +109,19 @@ def decode(address: str) -> tuple[dict[str, Any], str]:
     version, stated, payload = pieces
     if version != VERSION:
         raise LinkError(f"the link has version {version[:8]}, this program reads version {VERSION}")
-    try:
-        packed = base64.urlsafe_b64decode(payload + "=" * (-len(payload) % 4))
-    except (binascii.Error, ValueError):
-        packed = base64.urlsafe_b64decode(
-            payload[: len(payload) // 4 * 4].encode("ascii", "ignore")
-        )
-    text = _unpack(packed)
-    values = dict(_lines(text))
+    values = dict(_lines(_unpack(_packed(payload))))
     if not values:
         raise LinkError("the link is damaged; nothing in it can be read")
     return unflatten(values), stated
+
+
+def _packed(payload: str) -> bytes:
+    """Bytes of the payload up to its first foreign character."""
+    match = _LETTERS.match(payload)
+    letters = match.group() if match else ""
+    if len(letters) % 4 == 1:  # one letter alone holds no byte
+        letters = letters[:-1]
+    return base64.urlsafe_b64decode(letters + "=" * (-len(letters) % 4))
 
 
 def _unpack(packed: bytes) -> str:
@@ -137,11 +142,13 @@ def _lines(text: str) -> Iterator[tuple[str, Any]]:
     """Whole lines of the form path=value; anything else is damage and left out."""
     whole = text[: text.rfind("\n") + 1]
     for line in whole.splitlines():
-        path, _, value = line.partition("=")
+        path, _, text = line.partition("=")
         try:
-            yield path, json.loads(value)
-        except json.JSONDecodeError:
+            value = json.loads(text)
+        except (ValueError, RecursionError):  # ValueError: also numbers of endless digits
             continue
+        if isinstance(value, str | int | float) and path.count(".") < MOST_LEVELS:
+            yield path, value
 
 
 def flatten(data: Any, path: str = "") -> Iterator[tuple[str, Any]]:

@@ -54,7 +54,8 @@ def load_profiles(folder: Path, first: Path | None = None) -> dict[str, Design]:
     """
     paths = sorted(folder.glob("*.toml"), key=lambda path: (path.stem != FIRST_PROFILE, path.stem))
     if first is not None:
-        paths = [first, *(path for path in paths if path.resolve() != first.resolve())]
+        # a file of the same name would stand in its place, so it gives way
+        paths = [first, *(path for path in paths if path.stem != first.stem)]
     if not paths:
         raise FileNotFoundError(f"{folder} holds no profile (*.toml)")
     found = {}

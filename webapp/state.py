@@ -11,7 +11,7 @@ from typing import Any
 
 from model.design import Design
 from model.errors import DesignError, FieldError
-from model.profile import document, fingerprint, parse_design, read_document
+from model.profile import document, fingerprint, parse_design, read_document, too_deep
 from webapp.link import LinkError, decode
 
 #: Most controls in a request and most characters in one; more is no browser of ours.
@@ -40,10 +40,12 @@ def read_request(data: Any) -> Request:
     number, base, values, theme = (
         data.get(key) for key in ("number", "document", "values", "theme")
     )
-    if not isinstance(number, int) or not isinstance(base, dict) or not isinstance(values, dict):
+    if type(number) is not int or not isinstance(base, dict) or not isinstance(values, dict):
         raise BadRequestError("a request needs number, document and values")
     if theme not in THEMES or len(values) > MOST_VALUES:
         raise BadRequestError("unknown theme or too many values")
+    if too_deep(base):
+        raise BadRequestError("the document is nested deeper than any profile")
     for path, value in values.items():
         if not isinstance(value, str | bool) or len(str(path)) > 120:
             raise BadRequestError("a value is neither text nor yes or no")

@@ -18,7 +18,7 @@ MOST_INTERVALS = 96
 Index = NDArray[np.intp]
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class Cells(Stored):
     """Corners of straight-sided triangles or quadrilaterals, (n_cell, 3 or 4, 2), m."""
 

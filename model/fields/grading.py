@@ -6,12 +6,12 @@ import numpy as np
 
 from model.arrays import Real
 
-#: Each cell next to an edge is as long as its distance from the edge, so sizes double.
+#: Length of a cell over its distance from the edge, so that distances grow 2.5-fold.
 GROWTH = 1.5
 
 
 def march(length: float, first: float, limit: Callable[[float], float]) -> Real:
-    """Lines from 0 to `length`: the first cell, then cells as long as their distance from 0.
+    """Lines from 0 to `length`: the first cell, then cells that grow with the distance from 0.
 
     Parameters
     ----------
@@ -27,8 +27,8 @@ def march(length: float, first: float, limit: Callable[[float], float]) -> Real:
 
     Examples
     --------
-    >>> march(16.0, 1.0, lambda distance: 4.0).tolist()
-    [0.0, 1.0, 2.0, 4.0, 8.0, 12.0, 16.0]
+    >>> march(20.0, 1.0, lambda distance: 5.0).tolist()
+    [0.0, 1.0, 2.5, 6.25, 11.25, 16.25, 20.0]
     """
     lines = [0.0]
     step = min(first, length)

@@ -15,7 +15,7 @@ from model.fields.stored import Stored
 COUNT = 9
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class Line(Stored):
     """Patterns at one height over one period; see :class:`ChipPatterns` for their units.
 
@@ -40,7 +40,7 @@ class Line(Stored):
     flow_2: Real
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class LineTable(Stored):
     """Cubic splines in ln y of all patterns at the places of one half period.
 
@@ -59,6 +59,8 @@ class LineTable(Stored):
         Spline coefficients (m − 1, 4, 9·columns).
     levels
         Spline coefficients of the logarithms (m − 1, 4, 2).
+    floor
+        Θ on the floor, (columns,).
     lowest, top
         Heights of the first and last row, m.
     """
@@ -69,11 +71,16 @@ class LineTable(Stored):
     heights: tuple[float, ...]
     shapes: Real
     levels: Real
+    floor: Real
     lowest: float
     top: float
 
     def line(self, y: float) -> Line:
-        """Line at a height; below the first row that row's, with the flow falling to 0.
+        """Line at a height.
+
+        Below the first row the field and gradient are that row's: on the floor itself they are
+        infinite at electrode edges. There Θ is linear to its values on the floor, and the flow
+        falls to 0.
 
         Raises
         ------
@@ -93,7 +100,9 @@ class LineTable(Stored):
         values[0:2] *= math.exp(field)
         values[2:4] *= math.exp(gradient)
         if y < self.lowest:
-            values[5:] *= y / self.lowest
+            share = y / self.lowest
+            values[4] += (1 - share) * (self.floor.take(self.source) - values[4])
+            values[5:] *= share
         return Line(self.x, values[0:2], values[2:4], values[4], values[5:7], values[7:9])
 
 
@@ -126,6 +135,7 @@ def line_table(
         tuple(place.tolist()),
         np.ascontiguousarray(shapes.transpose(1, 0, 2)),
         np.ascontiguousarray(CubicSpline(place, levels).c.transpose(1, 0, 2)),
+        evaluate(columns, np.zeros(places))[4],
         float(heights[0]),
         float(heights[-1]),
     )

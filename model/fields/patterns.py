@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     from model.layout import Layout
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class ChipPatterns(Stored):
     r"""Field, heat and flow of a chip per 1 V rms between neighbouring electrodes.
 

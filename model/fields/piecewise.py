@@ -11,7 +11,7 @@ from model.fields.cells import Cells, Index
 from model.fields.stored import Stored
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class Piecewise(Stored):
     """Functions f(x, y) on the cells of a mesh.
 

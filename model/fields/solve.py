@@ -21,9 +21,9 @@ if TYPE_CHECKING:
 #: Water at 25 °C and 0.1 MPa, W/(m K), IAPWS R15-11.
 WATER = 0.6065
 #: Polynomial degrees: φ is differentiated twice, so it is the finest.
-FIELD_DEGREE, HEAT_DEGREE, FLOW_DEGREE = 7, 4, 4
-#: Quadrature order: |Ê|² of the field's own polynomials.
-ORDER = 2 * FIELD_DEGREE
+FIELD_DEGREE, HEAT_DEGREE, FLOW_DEGREE = 8, 4, 4
+#: Quadrature order of heat and forces; the field's own matrix takes twice its degree.
+ORDER = 12
 
 
 def solve_chip(
@@ -48,9 +48,9 @@ def solve_chip(
     section = chip.section(refinement)
     mesh = section.liquid()
     potential = solve_potential(
-        space(mesh, FIELD_DEGREE, ORDER, section.joined), section.potentials
+        space(mesh, FIELD_DEGREE, 2 * FIELD_DEGREE, section.joined), section.potentials
     )
-    field = potential.gradients()
+    field = space(mesh, FIELD_DEGREE, ORDER, section.joined).gradients(potential.solution)
     heat, slopes = _heat(section, field, thermal_conductivity)
     along = np.einsum("ckq,ckq->kq", slopes, field)
     pair = FlowSpace.on(mesh, FLOW_DEGREE, ORDER, section.joined)

@@ -31,7 +31,7 @@ def square(kind, count, skewed=True):
     mesh = mesh.with_boundaries(SIDES)
     if skewed:
         x, y = mesh.p
-        bump = 0.08 * np.sin(2 * np.pi * x) * np.sin(2 * np.pi * y)
+        bump = 0.04 * np.sin(2 * np.pi * x) * np.sin(2 * np.pi * y)
         mesh.p[:] = np.stack([x + bump, y - bump])
     return mesh
 
@@ -41,8 +41,12 @@ def grid():
     return np.stack([part.ravel() for part in np.meshgrid(line, line)])
 
 
+def size(miss):
+    return np.sqrt(np.mean(np.square(miss)))
+
+
 def orders(errors):
-    return np.log2(errors[0] / errors[1])
+    return np.log2(np.divide(errors[0], errors[1]))
 
 
 CASES = [("quadrilaterals", 2), ("quadrilaterals", 4), ("triangles", 2), ("triangles", 4)]
@@ -74,12 +78,12 @@ def test_harmonic_potential(kind, degree):
         curvature = np.stack([exact, slope[1]])
         errors.append(
             [
-                np.abs(found.values(*located)[0] - exact).max(),
-                np.abs(found.slopes(*located)[0] - slope).max(),
-                np.abs(found.harmonic_curvatures(*located)[0, 0] - curvature).max(),
+                size(found.values(*located)[0] - exact),
+                size(found.slopes(*located)[0] - slope),
+                size(found.harmonic_curvatures(*located)[0, 0] - curvature),
             ]
         )
-    assert np.all(orders(np.array(errors)) > np.array([degree + 1, degree, degree - 1]) - 0.5)
+    assert np.all(orders(errors) > np.array([degree + 1, degree, degree - 1]) - 0.5)
 
 
 @pytest.mark.parametrize("kind", ["quadrilaterals", "triangles"])
@@ -116,7 +120,7 @@ def test_temperature(kind, degree):
     """Θ = sin πx·sin πy with the source 2π²kΘ."""
     errors = []
     spots = grid()
-    for count in (4, 8):
+    for count in (6, 12):
         mesh = square(kind, count)
         functions = space(mesh, degree, 2 * degree + 4)
         wave = np.sin(np.pi * functions.points[0]) * np.sin(np.pi * functions.points[1])
@@ -128,7 +132,7 @@ def test_temperature(kind, degree):
         )
         found = Piecewise.of(functions, heat[None], Cells.of(mesh))
         exact = np.sin(np.pi * spots[0]) * np.sin(np.pi * spots[1])
-        errors.append(np.abs(found.values(*found.cells.locate(spots))[0] - exact).max())
+        errors.append(size(found.values(*found.cells.locate(spots))[0] - exact))
     assert orders(errors) > degree + 0.5
 
 
@@ -148,39 +152,37 @@ def whirl_force(x):
     return np.stack([along, up]) + pressure
 
 
-@pytest.mark.parametrize(
-    ("kind", "degree"),
-    [("quadrilaterals", 2), ("quadrilaterals", 4), ("triangles", 2), ("triangles", 4)],
-)
+@pytest.mark.parametrize(("kind", "degree"), CASES)
 def test_flow(kind, degree):
     errors = []
     spots = grid()
-    for count in (4, 8):
+    for count in (6, 12):
         mesh = square(kind, count)
         pair = FlowSpace.on(mesh, degree, 2 * degree + 4)
         (flow,) = solve_flow(pair, [whirl_force(pair.velocity.points)], {})
         found = Piecewise.of(pair.velocity, flow, Cells.of(mesh))
-        errors.append(np.abs(found.values(*found.cells.locate(spots)) - whirl(spots)).max())
+        errors.append(size(found.values(*found.cells.locate(spots)) - whirl(spots)))
     assert orders(errors) > degree + 0.3
 
 
 def test_flow_slips_along_mirror_planes_but_does_not_cross_them():
-    """Half of the whirl's square, cut where it mirrors, gives the same flow."""
-    mesh = MeshQuad.init_tensor(np.linspace(0, 0.5, 5), np.linspace(0, 1, 9))
-    mesh = mesh.with_boundaries({"cut": lambda x: x[0] == 0.5})
-    pair = FlowSpace.on(mesh, 4, 12)
-    # about x = 1/2 the whirl's u_x is even, so it is another, odd one that mirrors there
-    force = whirl_force(2 * pair.velocity.points * np.array([1.0, 0.5])[:, None, None])
-    force[0] = 0.0
-    force[1] = np.cos(2 * np.pi * pair.velocity.points[0])
-    (flow,) = solve_flow(pair, [force], {"cut": 0})
-    found = Piecewise.of(pair.velocity, flow, Cells.of(mesh))
-    y = np.linspace(0.05, 0.95, 19)
-    located = found.cells.locate(np.stack([np.full(19, 0.5), y]))
-    along, up = found.values(*located)
-    assert np.abs(along).max() < 1e-12
-    assert np.abs(up).max() > 1e-4
-    assert np.abs(found.slopes(*located)[1, 0]).max() < 1e-3 * np.abs(up).max() / 0.5 * 10
+    """Half a square, cut at its mirror plane, gives the flow of the whole one."""
+    found = []
+    for width in (1.0, 0.5):
+        mesh = MeshQuad.init_tensor(
+            np.linspace(0, width, round(8 * width) + 1), np.linspace(0, 1, 9)
+        )
+        mirrors = {"cut": 0} if width < 1 else {}
+        mesh = mesh.with_boundaries({"cut": lambda x: x[0] == 0.5})
+        pair = FlowSpace.on(mesh, 4, 12)
+        push = np.cos(2 * np.pi * pair.velocity.points[0])
+        (flow,) = solve_flow(pair, [np.stack([np.zeros_like(push), push])], mirrors)
+        function = Piecewise.of(pair.velocity, flow, Cells.of(mesh))
+        spots = grid() * np.array([[0.5], [1.0]])
+        found.append(function.values(*function.cells.locate(spots)))
+        along = function.values(*function.cells.locate(np.array([[0.5, 0.5], [0.3, 0.7]])))[0]
+        assert np.abs(along).max() < 1e-9
+    np.testing.assert_allclose(found[1], found[0], atol=1e-7 * np.abs(found[0]).max())
 
 
 def test_gradients_in_the_force_move_nothing():
@@ -236,15 +238,17 @@ def test_chip_converges():
         floor=Wall(material="glass", thickness=100e-6, outside="held"),
         lid=Wall(material="pdms", thickness=200e-6, outside="still-air"),
     )
-    coarse, fine, finest = (solve_chip(chip, refinement=level) for level in (0, 1, 2))
-    factors = [patterns.cell_factor for patterns in (coarse, fine, finest)]
+    coarse, fine = (solve_chip(chip, refinement=level) for level in (0, 1))
+    section = chip.section(2)
+    finest = solve_potential(space(section.liquid(), 8, 16), section.potentials)
+    factors = [coarse.cell_factor, fine.cell_factor, section.cells_per_gap * finest.energy]
     assert 1.8 < (factors[0] - factors[1]) / (factors[1] - factors[2]) < 2.2
     assert factors[0] == pytest.approx(factors[2], rel=1e-5)
-    assert coarse.peak_temperature == pytest.approx(finest.peak_temperature, rel=1e-4)
+    assert coarse.peak_temperature == pytest.approx(fine.peak_temperature, rel=1e-4)
     x, y = np.meshgrid(np.linspace(0, 40e-6, 21), np.array([1, 2, 5, 10, 20, 40, 59]) * 1e-6)
-    for pattern, limit in (("gradient_e2", 5e-4), ("electric_field", 1e-4), ("temperature", 1e-4)):
+    for pattern, limit in (("gradient_e2", 2e-3), ("electric_field", 1e-4), ("temperature", 1e-4)):
         one, two = (np.array(getattr(chip, pattern)(x, y)) for chip in (coarse, fine))
-        size = np.abs(two).max(axis=-1, keepdims=True)
-        assert np.max(np.abs(one - two) / size) < limit
+        largest = np.abs(two).max(axis=-1, keepdims=True)
+        assert np.max(np.abs(one - two) / largest) < limit
     for one, two in zip(coarse.electrothermal(x, y), fine.electrothermal(x, y), strict=True):
         assert np.max(np.abs(np.array(one) - np.array(two))) < 3e-3 * np.abs(two).max()

@@ -10,7 +10,6 @@
     displaylogo: false,
     displayModeBar: false,
     showSendToCloud: false,
-    showLink: false,
     responsive: true,
     doubleClick: false,
     scrollZoom: false,

@@ -9,6 +9,8 @@
   const marked = new Set(); // paths that carry an error now
   let profile = null;
   let addressTimer = 0;
+  let travelling = false;
+  let visits = 0;
 
   /* ---- opening ---- */
 
@@ -18,10 +20,18 @@
     appearance(wanted || system);
     props("dark", { checked: gate.theme === "dark" });
     page.knobs.make((path, text) => props(idOf(path), { value: text }));
-    window.addEventListener("popstate", () => props("address", { data: window.location.hash }));
+    window.addEventListener("popstate", travelled);
     document.addEventListener("click", clicked);
     for (const event of ["focusin", "mouseover"]) document.addEventListener(event, help);
-    return window.location.hash;
+    return { link: window.location.hash, visit: 0 };
+  }
+
+  /* Back or Forward: open what the address now holds, and write nothing over it meanwhile. */
+  function travelled() {
+    clearTimeout(addressTimer);
+    travelling = true;
+    visits += 1;
+    props("address", { data: { link: window.location.hash, visit: visits } });
   }
 
   /* ---- controls ---- */
@@ -31,6 +41,7 @@
     const fresh = opened !== profile;
     if (fresh) {
       profile = opened;
+      travelling = false;
       gate.profile = opened.profile;
       gate.values = {};
       gate.sent = "";
@@ -95,6 +106,9 @@
     items("cautions", answer.cautions);
     document.title = answer.title + " · Slackwater";
     keepAddress(answer.link);
+    // The framework's upload part comes late and names its field nothing.
+    const upload = document.querySelector("#upload input");
+    if (upload) upload.setAttribute("aria-label", "Open a profile file");
   }
 
   function mark(errors) {
@@ -170,6 +184,7 @@
 
   /* The address follows the design; it is written seldom, browsers refuse a flood of changes. */
   function keepAddress(link) {
+    if (travelling || gate.moving()) return;
     page.link = link;
     clearTimeout(addressTimer);
     addressTimer = setTimeout(() => history.replaceState(null, "", "#" + link), 350);

@@ -12,7 +12,7 @@ from model.evaluate import Evaluation
 from model.quantity import format_si
 from model.voltage import PEAK_TO_PEAK
 from webapp.figures.labels import Label, Wish, place_labels
-from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark, numbers
+from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark, numbers, plain
 
 #: A stretch where a ceiling does not bind gets a name if it spans this share of the axis.
 _WORTH_A_NAME = 0.15
@@ -97,10 +97,11 @@ def _edge(x: dict[str, str], y: dict[str, str], **more: Any) -> dict[str, Any]:
 def _ceiling(x: dict[str, str], volts: Real, bound: Bound, theme: Theme) -> dict[str, Any]:
     return {
         **_edge(x, numbers(volts)),
-        "name": bound.name,
+        "name": plain(bound.name),
         "line": {"color": limit_colour(theme, bound.id), "width": 1.2, "dash": "dash"},
         "hoverinfo": "all",
-        "hovertemplate": f"{bound.name}<br>at most %{{y:.3~g}} V at %{{x:.3~s}}Hz<extra></extra>",
+        "hovertemplate": f"{plain(bound.name)}<br>"
+        "at most %{y:.3~g} V at %{x:.3~s}Hz<extra></extra>",
     }
 
 
@@ -114,7 +115,7 @@ def _binding(
             numbers(np.concatenate([stub_x, stub_x[1:], frequency])),
             numbers(np.concatenate([stub_y, volts])),
         ),
-        "name": f"binding {bound.name}",
+        "name": f"binding {plain(bound.name)}",
         "line": {"color": limit_colour(theme, bound.id), "width": 3.5},
     }
 

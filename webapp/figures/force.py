@@ -14,6 +14,7 @@ from webapp.figures.theme import (
     log_axis,
     numbers,
     particle_line,
+    plain,
 )
 
 
@@ -29,9 +30,10 @@ def force_figure(result: Evaluation, theme: Theme) -> Figure:
             "mode": "lines",
             "x": x,
             "y": numbers(curve),
-            "name": particle.name,
+            "name": plain(particle.name),
             "line": particle_line(theme, index),
-            "hovertemplate": f"{particle.name}<br>%{{y:.3~g}} pN at %{{x:.3~s}}Hz<extra></extra>",
+            "hovertemplate": f"{plain(particle.name)}<br>"
+            "%{y:.3~g} pN at %{x:.3~s}Hz<extra></extra>",
         }
         for index, (particle, curve) in enumerate(zip(result.design.particles, curves, strict=True))
     ]

@@ -3,8 +3,7 @@
 from typing import Any
 
 from model.evaluate import Evaluation, LedgerRow
-from model.quantity import format_si
-from model.verdict import format_headroom, format_value
+from model.verdict import MOST_VOLTAGE, format_headroom, format_value, format_volts
 from webapp.figures.theme import Theme, limit_colour
 
 
@@ -38,9 +37,9 @@ def _bound(row: LedgerRow) -> str:
     sense = "at least" if row.rule.law.sense == "least" else "at most"
     if row.rule.law.power == 0:
         return "does not depend on voltage"
-    if row.bound_pp == float("inf"):
+    if row.bound_pp > MOST_VOLTAGE:
         return "no voltage is enough" if sense == "at least" else "any voltage"
-    return f"{sense} {format_si(row.bound_pp, 'V')} peak to peak"
+    return f"{sense} {format_volts(row.bound_pp)} peak to peak"
 
 
 def _fill(headroom: float) -> float:

@@ -43,7 +43,8 @@ def heating_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
 def electrothermal_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
     """Draw electrothermal speed over dielectrophoretic speed."""
     low = min(1e-4, 10.0 ** np.floor(np.log10(max(found.value, 1e-12))))
-    high = max(10.0, 10.0 ** np.ceil(np.log10(min(found.value, 1e6)) + 0.2))
+    most = max(found.allowed, min(found.value, 1e6))
+    high = max(10.0, 10.0 ** np.ceil(np.log10(most) + 0.2))
     title = "Electrothermal / DEP speed"
     return _figure(found, result, theme, log_axis(theme, title, low, high, ""))
 

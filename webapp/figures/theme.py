@@ -5,6 +5,7 @@ survives grey print and colour blindness. Every limit keeps one colour in every 
 """
 
 import base64
+import html
 from dataclasses import dataclass
 from typing import Any
 
@@ -68,6 +69,15 @@ def particle_line(theme: Theme, index: int) -> dict[str, Any]:
     """Line of the particle at `index` in the design."""
     colour = theme.particles[index % len(theme.particles)]
     return {"color": colour, "dash": DASHES[index % len(DASHES)], "width": 2.5}
+
+
+def plain(text: str) -> str:
+    """Write text that a person typed so that no figure reads markup or a template in it.
+
+    >>> plain("5 < d < 9 µm, %{x}")
+    '5 &lt; d &lt; 9 µm, %&#123;x}'
+    """
+    return html.escape(text, quote=False).replace("{", "&#123;")
 
 
 def numbers(values: ArrayLike) -> dict[str, str]:

@@ -31,8 +31,7 @@ def page(profiles: dict[str, Design]) -> Component:
         forceColorScheme="light",
         theme={
             "primaryColor": "teal",
-            "autoContrast": True,
-            "primaryShade": {"light": 6, "dark": 4},
+            "primaryShade": 6,
             "colors": {"teal": _TEAL, "dark": _SLATE},
             "fontFamily": "system-ui, 'Segoe UI', 'DejaVu Sans', sans-serif",
             "defaultRadius": "sm",

@@ -1,0 +1,1 @@
+"""Benchmarks: print figures as ratios of one run; they assert nothing."""

@@ -1,0 +1,166 @@
+"""What tests share: the demo designs, each chip solved once, and designs made at random."""
+
+import copy
+from pathlib import Path
+
+import pytest
+from hypothesis import strategies as st
+
+from model.declare import Choice, Count, Flag, Quantity, Text, declarations
+from model.design import Design, Drive, Flow
+from model.evaluate import evaluate
+from model.fields.solve import solve_chip
+from model.layouts import LAYOUTS
+from model.liquid.liquid import Liquid
+from model.particles import PARTICLES
+from model.profile import document, load_profile, parse_design
+from model.quantity import plain_text
+
+PROFILES = Path(__file__).resolve().parent.parent / "demo_profiles"
+
+
+@pytest.fixture(scope="session")
+def demos():
+    """Every demo design by the name of its file."""
+    return {path.stem: load_profile(path) for path in sorted(PROFILES.glob("*.toml"))}
+
+
+@pytest.fixture(scope="session")
+def yeast(demos):
+    return demos["rinse-water-yeast"]
+
+
+@pytest.fixture(scope="session")
+def solved():
+    """Patterns of a design's chip, each chip solved once in a session."""
+    kept = {}
+
+    def patterns_of(design):
+        key = (design.chip, design.liquid.heat_conductivity)
+        if key not in kept:
+            kept[key] = solve_chip(*key)
+        return kept[key]
+
+    return patterns_of
+
+
+@pytest.fixture(scope="session")
+def patterns(yeast, solved):
+    return solved(yeast)
+
+
+@pytest.fixture(scope="session")
+def results(demos, solved):
+    """Every demo evaluated."""
+    return {name: evaluate(design, solved(design)) for name, design in demos.items()}
+
+
+@pytest.fixture(scope="session")
+def vary():
+    """A design with a few fields changed, given by their places in the profile."""
+    return varied
+
+
+@pytest.fixture(scope="session")
+def designs():
+    """Strategy of designs whose every field is drawn at random."""
+    return random_designs()
+
+
+def varied(design, changes):
+    data = copy.deepcopy(document(design))
+    for path, value in changes.items():
+        *parents, last = path.split(".")
+        place = data
+        for key in parents:
+            place = place[int(key)] if key.isdecimal() else place.setdefault(key, {})
+        place[last] = value
+    return parse_design(data)
+
+
+LINE = st.text(st.characters(codec="utf-8", exclude_categories=["C", "Z"]), max_size=20)
+
+
+def value_of(declared):
+    """Strategy of everything that a declared field takes, as a profile has it."""
+    match declared:
+        case Quantity():
+            low, high = declared.range()
+            shown = st.floats(low, high).map(lambda value: declared.text(declared.read(value, 0)))
+            return st.sampled_from([declared.low, declared.high]) | shown
+        case Count():
+            return st.integers(declared.low, declared.high)
+        case Choice():
+            return st.sampled_from(sorted(declared.options))
+        case Flag():
+            return st.booleans()
+        case Text(needed=True):
+            return LINE.filter(bool)
+        case Text():
+            return LINE
+    raise TypeError(declared)
+
+
+def table_of(part, **fixed):
+    """Strategy of a table with every declared key of a part; `fixed` ones as given."""
+    needed = {key: value_of(found) for key, found in declarations(part) if not found.optional}
+    spare = {key: value_of(found) for key, found in declarations(part) if found.optional}
+    needed = {key: value for key, value in needed.items() if key not in fixed}
+    given = {key: st.just(value) for key, value in fixed.items()}
+    return st.fixed_dictionaries({**needed, **given}, optional=spare)
+
+
+@st.composite
+def random_designs(draw):
+    wall = LAYOUTS["coplanar-bars"].model_fields["floor"].annotation
+    chip = draw(table_of(LAYOUTS["coplanar-bars"], channel_height="200 um"))
+    chip |= {"layout": "coplanar-bars", "floor": draw(table_of(wall, outside="held"))}
+    chip["lid"] = draw(table_of(wall))
+    count = draw(st.integers(1, 12))
+    particles = [draw(random_particle(f"{index} ")) for index in range(count)]
+    particles[0]["role"] = "collect"
+    height = draw(st.floats(60e-6, 140e-6))
+    return parse_design(
+        {
+            "schema": 1,
+            "title": draw(LINE),
+            "question": draw(LINE),
+            "task": {
+                "kind": "hold",
+                "dielectrophoresis": draw(st.sampled_from(["positive", "negative"])),
+                "working_height": plain_text(height, "um"),
+            },
+            "chip": chip,
+            "liquid": draw(table_of(Liquid)),
+            "drive": draw(table_of(Drive)),
+            "flow": draw(table_of(Flow)),
+            "limits": draw(table_of(Design.model_fields["limits"].annotation)),
+            "particle": particles,
+        }
+    )
+
+
+def material():
+    return st.fixed_dictionaries(
+        {
+            "relative_permittivity": st.floats(1.0, 1000.0),
+            "conductivity": st.floats(0.0, 1e3).map(lambda value: plain_text(value, "S/m")),
+        }
+    )
+
+
+@st.composite
+def random_particle(draw, prefix):
+    kind = draw(st.sampled_from(["solid-sphere", "shelled-sphere"]))
+    radius = plain_text(draw(st.floats(5e-6, 50e-6)), "um")
+    table = draw(table_of(PARTICLES[kind], radius=radius))
+    table |= {"kind": kind, "name": prefix + draw(LINE)}
+    if kind == "shelled-sphere":
+        layers = st.builds(lambda found, nm: {**found, "thickness": f"{nm} nm"}, material(),
+                           st.integers(1, 1000))  # fmt: skip
+        membranes = st.just({"capacitance": "10 mF/m^2", "conductance": "0 S/m^2"})
+        table |= {
+            "core": draw(material()),
+            "layers": draw(st.lists(layers | membranes, min_size=1, max_size=4)),
+        }
+    return table

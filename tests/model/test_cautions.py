@@ -1,0 +1,70 @@
+"""Hazards and the edges of the model, each told when it is there and not otherwise."""
+
+import pytest
+
+from model.cautions import GENERAL, cautions, notes, rms_and_peak
+from model.evaluate import evaluate
+
+
+def told(tell, design, patterns, vary, changes):
+    return " ".join(tell(evaluate(vary(design, changes), patterns)))
+
+
+def test_the_general_caution_is_always_there_and_last(results):
+    for result in results.values():
+        assert cautions(result)[-1] == GENERAL
+    assert "Local laboratory safety rules" in GENERAL
+
+
+def test_every_caution_defers(yeast, patterns, vary):
+    changes = {"drive.voltage": "1000 V", "liquid.temperature": "90 degC"}
+    found = cautions(evaluate(vary(yeast, changes), patterns))
+    assert len(found) == 3
+    assert all("Local laboratory safety rules" in line for line in found)
+
+
+@pytest.mark.parametrize("field", ["drive.voltage", "drive.voltage_limit"])
+@pytest.mark.parametrize(("volts", "hazardous"), [("84 V", False), ("86 V", True)])
+def test_voltages_that_are_hazardous_to_touch(yeast, patterns, vary, field, volts, hazardous):
+    # 30 V rms, 42.4 V peak: 84.8 V peak to peak; common practice, from memory
+    found = told(cautions, yeast, patterns, vary, {field: volts})
+    assert ("hazardous to touch" in found) == hazardous
+
+
+@pytest.mark.parametrize(("stage", "hot"), [("58 degC", False), ("61 degC", True)])
+def test_hot_liquid(yeast, patterns, vary, stage, hot):
+    found = told(cautions, yeast, patterns, vary, {"liquid.temperature": stage})
+    assert ("can boil" in found) == hot
+
+
+@pytest.mark.parametrize(("frequency", "polarised"), [("19 kHz", True), ("21 kHz", False)])
+def test_electrodes_that_polarise(yeast, patterns, vary, frequency, polarised):
+    found = told(notes, yeast, patterns, vary, {"drive.frequency": frequency})
+    assert ("electrodes polarise" in found) == polarised
+
+
+def test_a_rise_that_the_linear_law_understates(yeast, patterns, vary):
+    for voltage, warm in (("20 V", False), ("40 V", True)):
+        result = evaluate(vary(yeast, {"drive.voltage": voltage}), patterns)
+        assert (result.temperature_rise > 5.0) == warm
+        assert ("understated" in " ".join(notes(result))) == warm
+
+
+def test_particles_too_large_for_the_point_dipole(yeast, patterns, vary):
+    assert not notes(evaluate(yeast, patterns))
+    found = told(notes, yeast, patterns, vary, {"particle.1.radius": "20 um"})
+    assert "dead yeast: its radius is" in found
+    assert "wider than the gap" not in found
+    found = told(notes, yeast, patterns, vary, {"particle.1.radius": "31 um"})
+    assert "dead yeast is wider than the gap" in found
+
+
+def test_a_particle_that_must_live_without_a_membrane(yeast, patterns, vary):
+    wall = {"thickness": "220 nm", "relative_permittivity": 60, "conductivity": "14 mS/m"}
+    found = told(notes, yeast, patterns, vary, {"particle.0.layers": [wall]})
+    assert "viable yeast must live but has no membrane" in found
+
+
+def test_voltages_for_other_meters():
+    # a sine: V rms = V peak to peak/(2√2)
+    assert rms_and_peak(20.0) == "7.07 V rms, 10 V peak"
