@@ -74,7 +74,16 @@ class Evaluation:
 
     design: Design
     patterns: ChipPatterns
-    frequency: Real
+    given_frequency: Real | None
+    points: int
+
+    @cached_property
+    def frequency(self) -> Real:
+        """Frequencies of corridor and spectra, Hz."""
+        if self.given_frequency is not None:
+            return self.given_frequency
+        own = self.design.drive.frequency
+        return np.geomspace(min(LOWEST, own), max(HIGHEST, own), self.points)
 
     @cached_property
     def point(self) -> Conditions:
@@ -223,7 +232,5 @@ def evaluate(
     """
     if patterns.chip != design.chip:
         raise ValueError("the patterns belong to another chip than the design's")
-    if frequency is None:
-        low, high = min(LOWEST, design.drive.frequency), max(HIGHEST, design.drive.frequency)
-        frequency = np.geomspace(low, high, points)
-    return Evaluation(design, patterns, np.asarray(frequency, dtype=float))
+    given = None if frequency is None else np.asarray(frequency, dtype=float)
+    return Evaluation(design, patterns, given, points)

@@ -145,12 +145,22 @@ def _calls(sent: Any, callbacks: Mapping[str, Mapping[str, Any]]) -> bool:
         return False
     changed, outputs = sent.get("changedPropIds", []), sent.get("outputs")
     outputs = outputs if isinstance(outputs, list) else [outputs]
+    names = sent["output"].strip(".").split("...")
     return (
         isinstance(changed, list)
         and all(isinstance(item, str) for item in changed)
         and all(_fits(sent.get(key, []), known[key]) for key in ("inputs", "state"))
-        and all(isinstance(item, dict | list) for item in outputs)
-        and len(outputs) == sent["output"].count("...") + 1
+        and len(outputs) == len(names)
+        and all(map(_goes_to, outputs, names))
+    )
+
+
+def _goes_to(place: Any, name: str) -> bool:
+    """Whether a place that a request wants filled can be the named one; a pattern has a list."""
+    if not name.startswith("{"):
+        return isinstance(place, dict) and isinstance(place.get("id"), str)
+    return isinstance(place, list) or (
+        isinstance(place, dict) and isinstance(place.get("id"), dict)
     )
 
 

@@ -1,11 +1,11 @@
 """Limit: the voltage that the field induces across the membranes of cells that must live."""
 
-import math
 from typing import TYPE_CHECKING
 
 from model.declare import Quantity
 from model.law import Law
 from model.limit import Limit
+from model.voltage import PEAK
 
 if TYPE_CHECKING:
     from model.conditions import Conditions
@@ -41,8 +41,8 @@ class MembraneVoltage(Limit):
         allowed = at.design.threshold(self.id)
         laws = []
         for particle in at.design.particles:
-            gain = at.membrane_gain(particle)
-            if particle.must_live and gain is not None:
-                peak = math.sqrt(2.0) * at.exposure(particle) * gain
+            gain = at.membrane_gain(particle) if particle.must_live else None
+            if gain is not None:
+                peak = PEAK * at.exposure(particle) * gain
                 laws.append(Law(peak, 1, allowed, subject=particle.name))
         return tuple(laws)

@@ -1,6 +1,7 @@
 """The liquid of a design: what a person enters, and its properties at the stage temperature."""
 
 from dataclasses import dataclass
+from functools import cached_property
 from typing import Annotated
 
 from scipy.constants import epsilon_0
@@ -101,7 +102,7 @@ class Liquid(Part):
             return self.thermal_conductivity
         return float(water.thermal_conductivity(298.15))
 
-    @property
+    @cached_property
     def state(self) -> "LiquidState":
         """Properties at the stage temperature, SI."""
         warm = self.temperature

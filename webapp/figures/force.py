@@ -68,7 +68,7 @@ def force_figure(result: Evaluation, theme: Theme) -> Figure:
             yaxis=y_axis,
             showlegend=True,
             legend=legend,
-            margin={"l": 64, "r": 14, "t": 30, "b": 48},
+            margin={"l": 64, "r": 30, "t": 30, "b": 48},
         ),
     }
 

@@ -124,7 +124,7 @@ def layout(theme: Theme, **more: Any) -> dict[str, Any]:
         "paper_bgcolor": theme.paper,
         "plot_bgcolor": theme.paper,
         "font": {"color": theme.text, "family": "system-ui, 'Segoe UI', 'DejaVu Sans', sans-serif"},
-        "margin": {"l": 64, "r": 14, "t": 10, "b": 48},
+        "margin": {"l": 64, "r": 30, "t": 10, "b": 48},
         "showlegend": False,
         "hovermode": "closest",
         "dragmode": False,
