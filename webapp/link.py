@@ -1,12 +1,13 @@
 """The address: a whole design in the part of a link behind ``#``.
 
 That part never leaves the browser with a request, so a design stays out of server logs and
-referrers. Layout: ``1.<fingerprint>.<payload>`` with the version of the codec, the design's
-fingerprint as a check, and the profile as ``path=value`` lines, deflated with a preset
-dictionary and in URL-safe base64. A link that was cut still yields its first lines.
+referrers. Layout: ``1.<check>.<payload>`` with the version of the codec, a check over all that the
+link says, and the profile as ``path=value`` lines, deflated with a preset dictionary and in
+URL-safe base64. A link that was cut still yields its first lines.
 """
 
 import base64
+import hashlib
 import json
 import re
 import zlib
@@ -14,7 +15,7 @@ from collections.abc import Iterator, Mapping
 from typing import Any
 
 from model.design import Design
-from model.profile import MOST_LEVELS, document, fingerprint
+from model.profile import MOST_LEVELS, document
 
 VERSION = "1"
 #: Longest address part that is read, characters, and most text it may unpack to, bytes.
@@ -83,18 +84,17 @@ class LinkError(ValueError):
 
 def encode(design: Design) -> str:
     """Write a design as the address part, without the ``#``."""
-    lines = "".join(f"{path}={json.dumps(value)}\n" for path, value in flatten(document(design)))
+    text = "".join(f"{path}={json.dumps(value)}\n" for path, value in flatten(document(design)))
     packer = zlib.compressobj(9, zlib.DEFLATED, -15, zdict=_DICTIONARY)
-    packed = packer.compress(lines.encode()) + packer.flush()
+    packed = packer.compress(text.encode()) + packer.flush()
     payload = base64.urlsafe_b64encode(packed).decode().rstrip("=")
-    return f"{VERSION}.{fingerprint(design)}.{payload}"
+    return f"{VERSION}.{_check(text)}.{payload}"
 
 
-def decode(address: str) -> tuple[dict[str, Any], str]:
-    """Read an address part into profile data and the fingerprint it was made with.
+def decode(address: str) -> tuple[dict[str, Any], bool]:
+    """Read an address part into profile data, and tell whether it arrived whole.
 
-    What a cut or damaged link still holds is returned; whether it is whole shows in the
-    fingerprint of the design that is made from it.
+    What a cut or damaged link still holds is returned too.
 
     Raises
     ------
@@ -109,10 +109,16 @@ def decode(address: str) -> tuple[dict[str, Any], str]:
     version, stated, payload = pieces
     if version != VERSION:
         raise LinkError(f"the link has version {version[:8]}, this program reads version {VERSION}")
-    values = dict(_lines(_unpack(_packed(payload))))
+    text = _unpack(_packed(payload))
+    values = dict(_lines(text))
     if not values:
         raise LinkError("the link is damaged; nothing in it can be read")
-    return unflatten(values), stated
+    return unflatten(values), stated == _check(text)
+
+
+def _check(text: str) -> str:
+    """Eight hexadecimal digits over everything that a link says."""
+    return hashlib.sha256(text.encode()).hexdigest()[:8]
 
 
 def _packed(payload: str) -> bytes:

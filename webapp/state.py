@@ -11,7 +11,7 @@ from typing import Any
 
 from model.design import Design
 from model.errors import DesignError, FieldError
-from model.profile import document, fingerprint, parse_design, read_document, too_deep
+from model.profile import document, parse_design, read_document, too_deep
 from webapp.link import LinkError, decode
 
 #: Most controls in a request and most characters in one; more is no browser of ours.
@@ -95,17 +95,17 @@ class Opened:
 def open_link(address: str, fallback: Design) -> Opened:
     """Open a link; what it lacks is taken from `fallback` and named."""
     try:
-        data, stated = decode(address)
+        data, whole = decode(address)
     except LinkError as problem:
         return Opened(fallback, (f"The link could not be opened: {problem}.",))
     opened = open_document(data, fallback)
-    if not opened.problems and fingerprint(opened.design) != stated:
-        warning = (
-            "The link's check does not fit its contents: it was damaged, or made by another "
-            "version. Compare the inputs before you trust the result."
-        )
-        return Opened(opened.design, (warning,))
-    return opened
+    if whole:
+        return opened
+    warning = (
+        "The link was cut or changed on its way: its check does not fit its contents. Compare the "
+        "inputs before you trust the result."
+    )
+    return Opened(opened.design, (warning, *opened.problems))
 
 
 def open_file(content: bytes, fallback: Design) -> Opened:

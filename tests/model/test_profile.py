@@ -18,7 +18,7 @@ from model.profile import (
     read_profile,
 )
 
-PATIENT = settings(max_examples=25, deadline=None, suppress_health_check=[HealthCheck.too_slow])
+PATIENT = settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 
 
 def errors_of(data):

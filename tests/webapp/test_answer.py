@@ -92,7 +92,7 @@ def test_knobs_show_the_units_of_the_bench(yeast):
     assert found["drive.frequency"]["note"] == "period 1 µs"
 
 
-@settings(max_examples=25, deadline=None, suppress_health_check=[HealthCheck.too_slow])
+@settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 @given(st.data())
 def test_opening_a_design_changes_nothing_in_it(designs, data):
     design = data.draw(designs)

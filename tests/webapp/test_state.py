@@ -58,7 +58,7 @@ def test_an_emptied_control_that_is_needed_is_missing(yeast):
     }
 
 
-@settings(max_examples=25, deadline=None, suppress_health_check=[HealthCheck.too_slow])
+@settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 @given(st.data())
 def test_every_control_shows_its_value_exactly(designs, data):
     design = data.draw(designs)
@@ -152,7 +152,7 @@ def test_any_data_is_a_request_or_refused(data):
         pytest.fail("no design stands in that")
 
 
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(path=PATHS, value=st.text(max_size=30) | st.booleans())
 def test_any_value_at_any_path_is_a_design_an_error_or_refused(yeast, path, value):
     try:
@@ -232,7 +232,7 @@ def test_an_uploaded_file(demos, yeast):
     assert empty.problems
 
 
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(
     place=st.sampled_from(["task", "chip", "chip.gap", "particle", "drive.voltage", "limits"]),
     value=PLAIN,

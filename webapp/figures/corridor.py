@@ -63,7 +63,10 @@ def corridor_sentence(result: Evaluation) -> str:
     room = np.where(open_at, corridor.ceiling / np.maximum(corridor.floor, 1e-9), 0.0)
     best = int(np.argmax(room))
     widest = format_si(float(corridor.frequency[best]), "Hz")
-    return f"A corridor exists from {' and from '.join(spans[:3])}; it is widest near {widest}."
+    more = f" and in {len(spans) - 3} more bands" if len(spans) > 3 else ""
+    return (
+        f"A corridor exists from {' and from '.join(spans[:3])}{more}; it is widest near {widest}."
+    )
 
 
 def voltage_range(result: Evaluation) -> tuple[float, float]:
