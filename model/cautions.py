@@ -1,5 +1,7 @@
 """What a person must know beside the numbers: hazards, and where the model does not hold."""
 
+from collections.abc import Iterator
+
 import numpy as np
 
 from model.evaluate import Evaluation
@@ -11,9 +13,11 @@ HAZARDOUS_PEAK = 42.4
 #: The point-dipole force is taken as good while radius/(E²/|∇E²|) stays below this; common
 #: practice, no source.
 DIPOLE_RATIO = 0.3
-#: Below this electrode polarisation usually takes a good part of the voltage; common practice,
-#: no source. It is not modelled.
-POLARISED_BELOW = 20e3
+#: Capacitance of an electrode's double layer with its Stern layer, F/m²; common practice for
+#: metal in dilute salt, no source.
+DOUBLE_LAYER = 0.1
+#: A share of the voltage lost to the double layers that is worth a note.
+NOTABLE_LOSS = 0.05
 
 DEFER = "Local laboratory safety rules and licensed practice come first."
 GENERAL = (
@@ -33,9 +37,11 @@ def cautions(result: Evaluation) -> tuple[str, ...]:
         )
     hottest = result.design.liquid.temperature + result.temperature_rise
     if hottest > 60.0 + 273.15:
+        boils = hottest > 100.0 + 273.15
+        heat = "boils" if boils else f"reaches {format_quantity(hottest, 'degC', 3)}"
         found.append(
-            f"The liquid reaches {format_quantity(hottest, 'degC', 3)} by the linear law, which is "
-            f"low when it is warm: it can boil and burst a bond. {DEFER}"
+            f"By the linear law the liquid {heat}. It can boil and burst a bond, and nothing "
+            f"here holds then. {DEFER}"
         )
     return (*found, GENERAL)
 
@@ -55,22 +61,51 @@ def notes(result: Evaluation) -> tuple[str, ...]:
                 f"E² changes; above {DIPOLE_RATIO} the point-dipole force is only a guide."
             )
         if 2.0 * radius > design.chip.narrowest:
-            found.append(f"{particle.name} is wider than the gap between electrodes.")
+            found.append(f"{particle.name} is wider than the narrowest gap between electrodes.")
         if particle.must_live and result.point.membrane_gain(particle) is None:
             found.append(
                 f"{particle.name} must live but has no membrane; no membrane voltage is checked."
             )
-    if design.drive.frequency < POLARISED_BELOW:
+    reaching = voltage_at_liquid(result)
+    if reaching < 1.0 - NOTABLE_LOSS:
         found.append(
-            "Below about 20 kHz the electrodes polarise and take part of the voltage; this is "
-            "not modelled, so that forces and flows are overstated there."
+            f"The electrodes polarise here: some {reaching:.0%} of the voltage reaches the liquid. "
+            "That loss is not in the numbers, so forces are overstated; electro-osmotic flow, gas "
+            "and electrode damage are not modelled and may decide at such frequencies."
         )
     if result.temperature_rise > 5.0:
         found.append(
             "Above a few kelvin the rise is understated: the conductivity grows as it warms, "
             "which the linear law leaves out."
         )
-    return tuple(found)
+    return (*found, *_passing(result))
+
+
+def voltage_at_liquid(result: Evaluation) -> float:
+    """Share of the voltage that the double layers leave to the liquid, roughly.
+
+    1/√(1 + (f_c/f)²) with f_c = σ·cell factor/(2π C_dl·width), the series of the liquid's
+    resistance and the capacitance of the double layers; C_dl is :data:`DOUBLE_LAYER`.
+    """
+    design = result.design
+    conductance = design.liquid.conductivity * result.patterns.cell_factor
+    corner = conductance / (2.0 * np.pi * DOUBLE_LAYER * design.chip.double_layer_width)
+    return float(1.0 / np.hypot(1.0, corner / design.drive.frequency))
+
+
+def _passing(result: Evaluation) -> Iterator[str]:
+    """Whether particles that are to pass would be caught as well."""
+    for particle in result.design.particles:
+        if particle.role == "pass":
+            held = result.design.task.catch(result.point, particle)
+            volts = float(held.bound().reshape(-1)[0]) * PEAK_TO_PEAK
+            if volts <= result.design.drive.voltage:
+                yield f"{particle.name} is to pass, but is caught from {format_si(volts, 'V')} on."
+            elif np.isfinite(volts):
+                yield (
+                    f"{particle.name} passes here; it would be caught from "
+                    f"{format_si(volts, 'V')} on. That it passes is no limit of this task."
+                )
 
 
 def rms_and_peak(voltage: float) -> str:

@@ -14,7 +14,7 @@ from model.design import Design
 from model.fields.lines import Line
 from model.fields.patterns import ChipPatterns
 from model.liquid.liquid import LiquidState
-from model.motion import drag_parallel
+from model.motion import drag_parallel, drag_perpendicular
 from model.particle import Particle
 
 
@@ -80,9 +80,15 @@ class Conditions:
         return particle.membrane_gain(self.omega, self.medium)
 
     def exposure(self, particle: Particle) -> float:
-        """Strongest field that a particle has to endure, 1/m per V rms."""
-        height = self.design.task.exposure_height(particle)
-        return float(np.hypot(*self.patterns.line(height).field).max())
+        """Strongest field that a particle has to endure, 1/m per V rms.
+
+        The field at its centre and the share of the gradient across it: at its pole an insulated
+        sphere of radius a adds 5/18·a|∇E²|/E² to the voltage of the uniform field (dipole 3/2·aE,
+        quadrupole 5/3·a²E′/2 with E′ = |∇E²|/(2E), from the multipoles of an insulating sphere).
+        """
+        radius = particle.equivalent_radius
+        heights = self.design.task.exposure_heights(particle, self.design.chip)
+        return max(_with_gradient(self.patterns.line(height), radius) for height in heights)
 
     def _force_scale(self, particle: Particle) -> Real:
         """Signed factor from a pattern of ∇|Ê|² to force: 2π ε a³ Re K · duty, F m²."""
@@ -96,13 +102,14 @@ class Conditions:
     def dielectrophoretic_speed(self, particle: Particle) -> Real:
         """Largest speed that the force gives at the force height, m/s per V².
 
-        Any direction; drag with the wall correction for motion parallel to the wall.
+        Each direction with its own wall correction of the drag.
         """
         radius = particle.equivalent_radius
+        along, away = self.line.gradient
+        relative = self.wall_distance / radius
+        eased = np.hypot(along / drag_parallel(relative), away / drag_perpendicular(relative))
         drag = 6.0 * np.pi * self.liquid.viscosity * radius
-        drag *= float(drag_parallel(self.wall_distance / radius))
-        steepest = float(np.hypot(*self.line.gradient).max())
-        return np.abs(self._force_scale(particle)) * steepest / drag
+        return np.abs(self._force_scale(particle)) * float(eased.max()) / drag
 
     @cached_property
     def electrothermal_speed(self) -> Real:
@@ -137,7 +144,7 @@ class Conditions:
 
     @cached_property
     def admittance(self) -> Complex:
-        """Admittance of all gaps in parallel, S: (σ + jωε) · cell factor · length."""
+        """Admittance of all that conducts in parallel, S: (σ + jωε) · cell factor · length."""
         length = self.patterns.cell_factor * self.design.chip.parallel_length
         return np.asarray((self.conductivity + 1j * self.omega * self.liquid.permittivity) * length)
 
@@ -147,3 +154,9 @@ class Conditions:
         return float(
             local_speed(self.design.flow.rate, chip.channel_height, chip.channel_width, height)
         )
+
+
+def _with_gradient(line: Line, radius: float) -> float:
+    """Largest |E| + 5/18·a|∇E²|/|E| along a line."""
+    field = np.hypot(*line.field)
+    return float((field + 5.0 / 18.0 * radius * np.hypot(*line.gradient) / field).max())

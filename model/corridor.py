@@ -24,6 +24,7 @@ class Rule:
     remedy: str
     unit: str
     law: Law
+    symbol: str = ""
 
     @property
     def name(self) -> str:
@@ -79,10 +80,8 @@ def rules(at: Conditions) -> tuple[Rule, ...]:
         for law in task.laws(at)
     ]
     for limit in LIMITS.values():
-        found += [
-            Rule(limit.id, limit.label, limit.why, limit.source, limit.remedy, limit.unit, law)
-            for law in limit.laws(at)
-        ]
+        words = (limit.id, limit.label, limit.why, limit.source, limit.remedy, limit.unit)
+        found += [Rule(*words, law, limit.symbol) for law in limit.laws(at)]
     return tuple(found)
 
 

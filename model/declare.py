@@ -5,6 +5,7 @@ the annotation come the validation (this module), the profile keys, the control 
 its help and the wording of the report. A new part therefore declares fields and nothing else.
 """
 
+import re
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import lru_cache
@@ -85,9 +86,13 @@ class Quantity(Declared):
     unit: str = field(kw_only=True)
     low: str = field(kw_only=True)
     high: str = field(kw_only=True)
+    #: A voltage taken peak to peak: ``8 Vpp`` is understood, ``8 Vrms`` refused with the factor.
+    peak_to_peak: bool = field(default=False, kw_only=True)
 
     def read(self, value: Any, from_person: bool) -> float:
         """Parse, round as typed, and check the range."""
+        if self.peak_to_peak and isinstance(value, str):
+            value = _without_measure(value)
         if isinstance(value, str) or (from_person and isinstance(value, int | float)):
             number = parse_quantity(value, self.unit)
         elif isinstance(value, int | float) and not isinstance(value, bool):
@@ -115,6 +120,22 @@ class Quantity(Declared):
         if self.unit and low.endswith(pretty_unit(self.unit)):
             low = low.removesuffix(pretty_unit(self.unit)).strip()
         return f"from {low} to {high}"
+
+
+_MEASURE = re.compile(r"(.*[0-9 ][kmu]?V)\s*(pp|p-p|rms|pk|peak)", re.IGNORECASE)
+_FACTORS = {"rms": "2.83", "pk": "2", "peak": "2"}
+
+
+def _without_measure(text: str) -> str:
+    """Take ``pp`` off a voltage; refuse the other measures and say how to turn them."""
+    match = _MEASURE.fullmatch(text.strip())
+    if match is None:
+        return text
+    voltage, measure = match.groups()
+    factor = _FACTORS.get(measure.lower())
+    if factor is not None:
+        raise QuantityError(f"is wanted peak to peak: type {factor} times as much, in V")
+    return voltage
 
 
 @lru_cache(maxsize=512)  # declarations are few and never change

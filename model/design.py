@@ -33,10 +33,11 @@ class Drive(Part):
         float,
         Quantity(
             "Voltage",
-            "Peak to peak between neighbouring electrodes.",
+            "Peak to peak between electrodes of opposite phase.",
             unit="V",
             low="0.001 V",
             high="1000 V",
+            peak_to_peak=True,
         ),
     ]
     frequency: Annotated[
@@ -61,6 +62,7 @@ class Drive(Part):
             unit="V",
             low="0.01 V",
             high="2000 V",
+            peak_to_peak=True,
         ),
     ] = 20.0
     current_limit: Annotated[

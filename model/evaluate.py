@@ -102,7 +102,7 @@ class Evaluation:
 
     @property
     def rms_voltage(self) -> float:
-        """Voltage between neighbouring electrodes, rms."""
+        """Voltage between electrodes of opposite phase, rms."""
         return self.design.drive.voltage / PEAK_TO_PEAK
 
     @cached_property

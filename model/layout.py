@@ -1,11 +1,14 @@
 """What every electrode layout provides; the layouts themselves stand in ``model/layouts/``."""
 
 from abc import ABC, abstractmethod
-from typing import Annotated
+from typing import Annotated, ClassVar, Literal
 
 from model.declare import Part, Quantity
 from model.fields.section import Section
 from model.walls import Wall
+
+#: A face of the channel.
+Face = Literal["floor", "lid"]
 
 
 class Layout(Part, ABC):
@@ -16,6 +19,8 @@ class Layout(Part, ABC):
     """
 
     layout: str
+    #: Faces of the channel that carry electrodes.
+    electrode_faces: ClassVar[tuple[Face, ...]]
     channel_height: Annotated[
         float,
         Quantity(
@@ -49,9 +54,29 @@ class Layout(Part, ABC):
     @property
     @abstractmethod
     def parallel_length(self) -> float:
-        """Total length of the gaps that carry current in parallel, m."""
+        """Total length of what carries current in parallel, m.
+
+        Of the gaps if neighbours are opposite, of the pitches if floor and lid are.
+        """
 
     @property
     @abstractmethod
     def narrowest(self) -> float:
         """Smallest opening that a particle meets between electrodes, m."""
+
+    @property
+    @abstractmethod
+    def double_layer_width(self) -> float:
+        """Width of the two double layers that the current crosses, in series, m.
+
+        Times their capacitance per area it is the capacitance per metre of `parallel_length`.
+        """
+
+    def contact_heights(self, radius: float) -> tuple[float, ...]:
+        """Heights of the centre of a sphere that touches a face with electrodes, m.
+
+        A sphere that does not fit between floor and lid counts as half-way.
+        """
+        low = min(radius, 0.5 * self.channel_height)
+        heights: dict[Face, float] = {"floor": low, "lid": self.channel_height - low}
+        return tuple(heights[face] for face in self.electrode_faces)

@@ -18,6 +18,8 @@ class Limit(ABC):
 
     id: ClassVar[str]
     label: ClassVar[str]
+    #: What the value is called where the label does not say it.
+    symbol: ClassVar[str] = ""
     #: Why it matters, one sentence.
     why: ClassVar[str]
     source: ClassVar[str]

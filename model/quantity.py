@@ -112,20 +112,26 @@ def format_quantity(value: float, unit: str, digits: int = DIGITS) -> str:
 def format_si(value: float, unit: str, digits: int = 3) -> str:
     """Write an SI value with an SI prefix, e.g. for results.
 
+    What is below a thousandth of the smallest prefix reads 0. Conductivities stop at mS/m: µS/m
+    would be taken for the µS/cm of bench meters.
+
     >>> format_si(2.2387e6, "Hz"), format_si(0.03, "S/m"), format_si(0.0, "V")
     ('2.24 MHz', '30 mS/m', '0 V')
-    >>> format_si(-4e-12, "N")
-    '−4 pN'
+    >>> format_si(-4e-12, "N"), format_si(2e-5, "S/m"), format_si(1e-20, "N")
+    ('−4 pN', '0.02 mS/m', '0 N')
     """
     if not math.isfinite(value):
         return "none" if math.isnan(value) else ("no limit" if value > 0 else "−∞")
-    if value == 0:
+    least = _SMALLEST.get(unit, -15)
+    if abs(value) < 10.0 ** (least - 3):
         return f"0 {unit}"
     size = float(f"{abs(value):.{digits}g}")
-    power = max(-15, min(12, 3 * math.floor(math.log10(size) / 3)))
+    power = max(least, min(12, 3 * math.floor(math.log10(size) / 3)))
     return f"{_round(value / 10.0**power, digits)} {_PREFIXES[power]}{unit}"
 
 
+#: Smallest prefix of units that are never written smaller, as a power of ten.
+_SMALLEST = {"S/m": -3}
 _PREFIXES = {
     -15: "f", -12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G", 12: "T",
 }  # fmt: skip

@@ -15,7 +15,7 @@ from model.evaluate import Evaluation, LedgerRow, ParticleResult
 from model.polarisation import complex_permittivity
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
-from model.verdict import format_headroom, format_value, format_volts, verdict
+from model.verdict import format_value, format_volts, row_headroom, row_value, verdict
 from model.version import VERSION
 
 
@@ -103,10 +103,10 @@ def check_text(result: Evaluation) -> str:
             [
                 (
                     row.rule.name,
-                    format_value(row.value, row.rule.unit),
+                    row_value(row),
                     ("≥ " if row.rule.law.sense == "least" else "≤ ")
                     + format_value(row.allowed, row.rule.unit),
-                    format_headroom(row.headroom) if row.headroom else "broken",
+                    row_headroom(row),
                 )
                 for row in result.ledger
             ],

@@ -8,6 +8,7 @@ from model.law import Law
 
 if TYPE_CHECKING:
     from model.conditions import Conditions
+    from model.layout import Layout
     from model.particle import Particle
 
 
@@ -29,14 +30,18 @@ class Task(Part, ABC):
         """Floors: one law of sense ``least`` for each particle that must succeed."""
 
     @abstractmethod
+    def catch(self, at: "Conditions", particle: "Particle") -> Law:
+        """Law of sense ``least``: the voltage from which this particle would be caught too."""
+
+    @abstractmethod
     def wanted_sign(self, particle: "Particle") -> int:
         """+1 if the task needs Re K > 0 of this particle, −1 if Re K < 0, 0 if either will do."""
 
     @property
     @abstractmethod
     def force_height(self) -> float:
-        """Height of particle centres above the electrode plane at which forces are taken, m."""
+        """Height of particle centres above the floor at which forces are taken, m."""
 
     @abstractmethod
-    def exposure_height(self, particle: "Particle") -> float:
-        """Height at which the particle meets the strongest field it has to endure, m."""
+    def exposure_heights(self, particle: "Particle", chip: "Layout") -> tuple[float, ...]:
+        """Heights at one of which the particle meets the strongest field it has to endure, m."""

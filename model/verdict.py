@@ -75,6 +75,18 @@ def format_value(value: float, unit: str) -> str:
     return format_quantity(value, unit, 3)
 
 
+def row_value(row: LedgerRow) -> str:
+    """Write a row's value, with what it is where its label does not say so."""
+    return f"{row.rule.symbol} {format_value(row.value, row.rule.unit)}".strip()
+
+
+def row_headroom(row: LedgerRow) -> str:
+    """Write a row's headroom; of what no voltage changes only whether it is kept."""
+    if row.rule.law.power == 0 or row.headroom == 0.0:
+        return "kept" if row.kept else "broken"
+    return format_headroom(row.headroom)
+
+
 #: Peak-to-peak voltages beyond these are none that is ever made: any, or nothing.
 LEAST_VOLTAGE, MOST_VOLTAGE = 1e-6, 1e6
 

@@ -53,7 +53,11 @@ class Wall(Part):
             "Outside",
             "Held: kept at the stage temperature. Still air: cooled by the room, taken to be at "
             "the stage temperature. Insulated: no heat leaves.",
-            options={"held": "held", "still-air": "still air", "insulated": "insulated"},
+            options={
+                "held": "held at stage temperature",
+                "still-air": "still air",
+                "insulated": "insulated",
+            },
             source="still air: 10 W/(m² K), common practice, no source",
         ),
     ]

@@ -1,5 +1,6 @@
 """Answers to the page: state, figures and words, as plain data for the browser."""
 
+import math
 from collections.abc import Callable, Mapping
 from typing import Any
 
@@ -73,11 +74,12 @@ def error_answer(number: int, problem: DesignError) -> dict[str, Any]:
 def knobs(design: Design) -> dict[str, dict[str, Any]]:
     """Value, text and side note of each knob of the operating strip, by field."""
     drive, conductivity = design.drive, design.liquid.conductivity
+    relaxation = conductivity / (2.0 * math.pi * design.liquid.state.permittivity)
     return {
         "drive.frequency": {
             "value": drive.frequency,
             "text": format_si(drive.frequency, "Hz", DIGITS),
-            "note": f"period {format_si(1.0 / drive.frequency, 's')}",
+            "note": f"liquid relaxes at {format_si(relaxation, 'Hz')}",
         },
         "drive.voltage": {
             "value": drive.voltage,

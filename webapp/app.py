@@ -65,6 +65,7 @@ def make_app(chosen: Settings | None = None) -> Dash:
         "slackwater",
         server=cast(Any, server),  # the parameter's type forgets the servers that it takes
         title="Slackwater",
+        suppress_callback_exceptions=True,  # controls come and go with the design
         update_title="",
         assets_folder=str(Path(__file__).parent / "assets"),
         serve_locally=True,

@@ -17,10 +17,7 @@ from filelock import FileLock
 from flask_caching import Cache
 from threadpoolctl import threadpool_limits
 
-import model.fields
-import model.layout
-import model.layouts
-import model.walls
+import model
 from model.design import Design
 from model.fields.patterns import ChipPatterns
 from model.fields.solve import solve_chip
@@ -109,12 +106,9 @@ _NEAR = 32
 
 
 def _solver_digest() -> str:
-    """Digest of the code that makes the patterns, so that changed code never meets old entries."""
+    """Digest of the model's code, so that changed code never meets old entries."""
     digest = hashlib.sha256()
-    paths = [Path(module.__file__) for module in (model.layout, model.walls) if module.__file__]
-    for package in (model.fields, model.layouts):
-        paths += sorted(Path(package.__path__[0]).glob("*.py"))
-    for path in paths:
+    for path in sorted(Path(model.__path__[0]).rglob("*.py")):
         digest.update(path.read_bytes())
     return digest.hexdigest()
 

@@ -6,17 +6,25 @@ import re
 from typing import Any
 
 from dash import ALL, ClientsideFunction, Dash, Input, Output, State, ctx, no_update
+from dash.exceptions import PreventUpdate
 
 from model.errors import DesignError
 from model.profile import document, profile_text
 from webapp.answer import knobs
 from webapp.controls import control_id, inputs_panel
 from webapp.services import Services
-from webapp.state import Opened, design_of, open_file, open_link, read_request
+from webapp.state import (
+    Opened,
+    design_of,
+    open_file,
+    open_layout,
+    open_link,
+    read_request,
+)
 
 
 def register(app: Dash, services: Services) -> None:
-    """Register the page's callbacks; each view registers its own."""
+    """Register the page's callbacks."""
 
     @app.callback(
         Output("inputs", "children"),
@@ -25,14 +33,23 @@ def register(app: Dash, services: Services) -> None:
         Output(control_id("drive.frequency"), "value"),
         Output(control_id("drive.voltage"), "value"),
         Output(control_id("liquid.conductivity"), "value"),
+        Output("upload", "contents"),
+        Output("profile", "value"),
         Input("address", "data"),
         Input("upload", "contents"),
         Input("profile", "value"),
+        Input("layout-request", "data"),
         prevent_initial_call=True,
     )
-    def open_design(address: Any, upload: Any, profile: Any) -> tuple[Any, ...]:
-        opened = opened_from(services, str(ctx.triggered_id), address, upload, profile)
-        return hydrated(opened)
+    def open_design(address: Any, upload: Any, profile: Any, layout: Any) -> tuple[Any, ...]:
+        source = str(ctx.triggered_id)
+        if (source == "upload" and not upload) or (source == "profile" and not profile):
+            raise PreventUpdate  # only emptied, so that the same one can be picked again
+        if source == "layout-request":
+            opened = open_layout(layout, services.first)
+        else:
+            opened = opened_from(services, source, address, upload, profile)
+        return (*hydrated(opened), None, None)
 
     @app.callback(
         Output("download", "data"),
@@ -65,6 +82,7 @@ def _browser_side(app: Dash) -> None:
         State({"flag": ALL}, "id"),
     )
     wire("save", Output("save-request", "data"), Input("save", "n_clicks"))
+    wire("layout", Output("layout-request", "data"), Input("layout", "value"))
     wire("share", Input("share", "n_clicks"))
     wire("dark", Input("dark", "checked"))
 

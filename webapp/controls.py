@@ -12,12 +12,15 @@ from pydantic import BaseModel
 from model.declare import Choice, Count, Declared, Flag, Quantity, declarations
 from model.design import Design
 from model.layout import Layout
+from model.layouts import LAYOUTS
 from model.quantity import format_quantity
 from webapp.figures.theme import DASHES
 
 #: Fields that live in the operating strip and the header instead.
 ELSEWHERE = {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
 
+#: Longest option, in letters, that a control of half the width shows whole.
+_FITS = 12
 #: Attributes of what only decorates.
 HIDDEN: dict[str, Any] = {"aria-hidden": "true"}
 
@@ -80,7 +83,7 @@ def inputs_panel(design: Design) -> list[Component]:
     """Every section of the inputs, folded by part."""
     sections = [
         ("task", "Task", [*_question(design), *part_controls(design.task, "task")]),
-        ("chip", "Chip", part_controls(design.chip, "chip")),
+        ("chip", "Chip", [_layout(design), *part_controls(design.chip, "chip")]),
         ("liquid", "Liquid", part_controls(design.liquid, "liquid")),
         ("particles", "Particles", _particles(design)),
         ("drive", "Drive", part_controls(design.drive, "drive")),
@@ -108,7 +111,7 @@ def summaries(design: Design) -> dict[str, str]:
         "particles": str(len(design.particles)),
         "drive": f"{format_quantity(drive.source_resistance, 'ohm')} source",
         "flow": format_quantity(design.flow.rate, "uL/min", 4),
-        "limits": f"{changed} changed" if changed else "as usual",
+        "limits": f"{changed} changed" if changed else "defaults",
     }
 
 
@@ -142,8 +145,14 @@ def control(field: Field) -> Component:
         return dmc.Switch(**base, checked=bool(field.text), className="wide")
     if isinstance(declared, Choice):
         options = [{"value": key, "label": label} for key, label in declared.options.items()]
+        longest = max(len(label) for label in declared.options.values())
         return dmc.Select(
-            **base, data=options, value=field.text, allowDeselect=False, checkIconPosition="right"
+            **base,
+            data=options,
+            value=field.text,
+            allowDeselect=False,
+            checkIconPosition="right",
+            className="wide" if longest > _FITS else "",
         )
     wide = "" if isinstance(declared, Quantity | Count) else "wide"
     placeholder = "usual value" if declared.optional else ""
@@ -174,6 +183,24 @@ def help_text(declared: Declared) -> str:
 def _question(design: Design) -> list[Component]:
     questions = [field for field in fields(design, "") if field.path == "question"]
     return [html.Div([control(field) for field in questions], className="fields")]
+
+
+def _layout(design: Design) -> Component:
+    """Choice of the electrode layout; another one has other fields, so it opens anew."""
+    options = [{"value": name, "label": name.replace("-", " ")} for name in LAYOUTS]
+    return html.Div(
+        dmc.Select(
+            id="layout",
+            label="Layout",
+            description="How the electrodes lie. Fields that both layouts have keep their values.",
+            data=options,
+            value=design.chip.layout,
+            allowDeselect=False,
+            size="sm",
+            className="wide",
+        ),
+        className="fields",
+    )
 
 
 def _particles(design: Design) -> list[Component]:

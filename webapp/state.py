@@ -11,6 +11,7 @@ from typing import Any
 
 from model.design import Design
 from model.errors import DesignError, FieldError
+from model.layouts import LAYOUTS
 from model.profile import document, parse_design, read_document, too_deep
 from webapp.link import LinkError, decode
 
@@ -56,10 +57,15 @@ def read_request(data: Any) -> Request:
 
 def design_of(request: Request) -> Design:
     """Put the controls' values into the document and read it; raises :class:`DesignError`."""
+    return parse_design(_filled(request))
+
+
+def _filled(request: Request) -> dict[str, Any]:
+    """The document with the controls' values in it."""
     data = copy.deepcopy(dict(request.document))
     for path, value in request.values.items():
         put(data, path, value)
-    return parse_design(data)
+    return data
 
 
 def put(data: Any, path: str, value: str | bool) -> None:
@@ -108,6 +114,23 @@ def open_link(address: str, fallback: Design) -> Opened:
     return Opened(opened.design, (warning, *opened.problems))
 
 
+def open_layout(data: Any, fallback: Design) -> Opened:
+    """Turn the page's design to another electrode layout, keeping every key that both have.
+
+    Raises
+    ------
+    BadRequestError
+        If no page of ours could have sent `data`.
+    """
+    document = _filled(read_request(data))
+    chip, layout = document.get("chip"), data.get("layout")
+    if not (isinstance(chip, dict) and isinstance(layout, str) and layout in LAYOUTS):
+        raise BadRequestError("no such layout")
+    known = LAYOUTS[layout].model_fields
+    kept = {key: value for key, value in chip.items() if key in known}
+    return open_document({**document, "chip": {**kept, "layout": layout}}, fallback)
+
+
 def open_file(content: bytes, fallback: Design) -> Opened:
     """Open an uploaded profile; what cannot be used is named."""
     try:
@@ -127,15 +150,21 @@ def open_document(data: Mapping[str, Any], fallback: Design) -> Opened:
     mended: Any = copy.deepcopy(dict(data))
     for error in errors:
         _replace(mended, spare, error.path.split(".") if error.path else [])
-    told = tuple(_told(error) for error in errors)
+    told = tuple(_told(error, mended) for error in errors)
     try:
         return Opened(parse_design(mended), told)
     except DesignError:
         return Opened(fallback, (*told, "Too much of it is unusable; the last good design stays."))
 
 
-def _told(error: FieldError) -> str:
-    return f"{error}; another value stands in its place."
+def _told(error: FieldError, mended: Any) -> str:
+    """Say what was wrong and what stands there now."""
+    place = mended
+    for key in error.path.split("."):
+        place = _step(place, key)
+    if isinstance(place, dict | list):
+        return f"{error}; the usual ones stand in its place."
+    return f"{error}; " + ("it is left out." if place is None else f"{place} stands in its place.")
 
 
 def _replace(data: Any, spare: Any, keys: list[str]) -> None:

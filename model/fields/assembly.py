@@ -1,6 +1,7 @@
 """Finite-element spaces and cell matrices that the three solves share."""
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from skfem import (
@@ -47,8 +48,10 @@ class Space:
         Quadrature points (2, n_cell, n_point), m, and weights (n_cell, n_point), m².
     values
         Local functions at the points of any cell, (n_local, n_point).
-    slopes
-        Their gradients in each cell, (n_cell, n_local, 2, n_point), 1/m.
+    steep
+        Their gradients by the reference coordinates, (n_local, 2, n_point).
+    inverse
+        ∂(reference)/∂(x, y) at the points, (2, 2, n_cell, n_point), 1/m.
     joined
         Names of the two sides that are one and the same.
     same
@@ -63,7 +66,8 @@ class Space:
     points: Real
     weights: Real
     values: Real
-    slopes: Real
+    steep: Real
+    inverse: Real
     joined: tuple[str, str] | None
     same: Index
 
@@ -91,10 +95,27 @@ class Space:
 
     def gradients(self, solution: Real) -> Real:
         """Gradient at the quadrature points, (2, n_cell, n_point)."""
-        count = self.slopes.shape
-        local = solution[self.dofs].T[:, None, :]  # (cell, 1, i)
-        summed = local @ self.slopes.reshape(count[0], count[1], -1)
-        return np.ascontiguousarray(summed.reshape(count[0], 2, -1).transpose(1, 0, 2))
+        local = solution[self.dofs].T @ self.steep.reshape(len(self.steep), -1)
+        steep = local.reshape(local.shape[0], 2, -1).transpose(1, 0, 2)  # (reference axis, …)
+        return np.asarray((self.inverse * steep[:, None]).sum(axis=0))
+
+    @cached_property
+    def slopes(self) -> Real:
+        """Gradients of the local functions in each cell, (n_cell, n_local, 2, n_point), 1/m."""
+        return np.stack(
+            [
+                self.inverse[0, axis][:, None] * self.steep[:, 0]
+                + self.inverse[1, axis][:, None] * self.steep[:, 1]
+                for axis in (0, 1)
+            ],
+            axis=2,
+        )
+
+    @cached_property
+    def straight(self) -> bool:
+        """Whether every cell is a triangle or parallelogram, so that `inverse` is one per cell."""
+        largest = np.abs(self.inverse).max(axis=(0, 1, 3), keepdims=True)
+        return bool(np.all(np.abs(self.inverse - self.inverse[..., :1]) <= 1e-12 * largest))
 
     def constant(self) -> Real:
         """Coefficients of the function that is 1 everywhere."""
@@ -127,16 +148,8 @@ def space(
     dofs = same[table.element_dofs]
     places, weights = get_quadrature(mesh.refdom, order)
     mapping = mesh.mapping()
-    inverse = mapping.invDF(places)  # (reference axis, axis, cell, point)
+    inverse = mapping.invDF(places)
     local = [kind.lbasis(places, i) for i in range(len(dofs))]
-    steep = np.stack([slope for _, slope in local])  # (i, reference axis, point)
-    slopes = np.stack(
-        [
-            inverse[0, axis][:, None] * steep[:, 0] + inverse[1, axis][:, None] * steep[:, 1]
-            for axis in (0, 1)
-        ],
-        axis=2,
-    )
     return Space(
         mesh,
         kind,
@@ -146,7 +159,8 @@ def space(
         mapping.F(places),
         np.abs(mapping.detDF(places)) * weights,
         np.stack([np.broadcast_to(value, weights.shape) for value, _ in local]),
-        slopes,
+        np.stack([slope for _, slope in local]),
+        inverse,
         joined,
         same,
     )
@@ -175,13 +189,26 @@ def _upward(mesh: Mesh, facets: Index) -> Index:
 
 def stiffness(functions: Space, coefficient: Real | None = None) -> Real:
     """Cell matrices of ∫ c ∇u·∇v, (n_cell, n_local, n_local); c one per cell, 1 if None."""
-    slopes = functions.slopes
-    flat = slopes.reshape(slopes.shape[0], slopes.shape[1], -1)
     weights = functions.weights
     if coefficient is not None:
         weights = weights * coefficient[:, None]
+    if functions.straight:
+        return _straight_stiffness(functions, weights)
+    slopes = functions.slopes
+    flat = slopes.reshape(slopes.shape[0], slopes.shape[1], -1)
     weighted = (slopes * weights[:, None, None, :]).reshape(flat.shape)
     return flat @ weighted.transpose(0, 2, 1)
+
+
+def _straight_stiffness(functions: Space, weights: Real) -> Real:
+    """Cell matrices as sums of four of the reference cell, each times a number of the cell."""
+    steep, inverse = functions.steep, functions.inverse[..., 0]
+    share = functions.weights[0] / functions.weights[0].sum()  # of each point, in any cell
+    first, second = (steep * share).transpose(1, 0, 2), steep.transpose(1, 2, 0)
+    reference = first[:, None] @ second  # (reference axis, reference axis, i, j)
+    metric = np.einsum("ack,bck,k->kab", inverse, inverse, weights.sum(axis=1))
+    blocks = metric.reshape(-1, 4) @ reference.reshape(4, -1)
+    return np.asarray(blocks.reshape(-1, len(steep), len(steep)))
 
 
 def load(functions: Space, density: Real) -> Real:

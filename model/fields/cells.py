@@ -10,8 +10,9 @@ from skfem import Mesh
 from model.arrays import Real
 from model.fields.stored import Stored
 
-#: Points this far outside a cell, in units of the cell, still count as in it.
-TOLERANCE = 1e-9
+#: Points this far outside a cell, in units of the cell, still count as in it: rounding of a
+#: place that is far from 0, in the smallest cells.
+TOLERANCE = 1e-7
 #: Most intervals per axis of the search grid.
 MOST_INTERVALS = 96
 

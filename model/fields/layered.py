@@ -18,8 +18,14 @@ WALL_REACH = 2.0
 #: First cell at an electrode edge over the narrower half width; the error of the capacitance,
 #: and of |E|² far from the edge, is about a hundredth of it.
 EDGE_CELL = 6e-4
+#: The same where no mirror plane halves the piece, with four edges on a grid of lines from all:
+#: with the finer cells a solve would take many seconds.
+WHOLE_EDGE_CELL = 6e-3
 #: Longest cell over the pitch, near the electrodes.
 LONGEST = 0.15
+#: Edges of floor and lid nearer than this, over the first cell, share a grid line; moving an edge
+#: so little changes less than the cells there do.
+SAME = 0.02
 
 
 @dataclass(frozen=True)
@@ -34,7 +40,11 @@ class Span:
 
 @dataclass(frozen=True)
 class Channel:
-    """A stretch of channel, `ends` its two x, with electrode `spans` on its faces."""
+    """A stretch of channel, `ends` its two x, with electrode `spans` on its faces.
+
+    Spans may reach beyond the ends: of a periodic channel, what leaves at one end comes in at
+    the other.
+    """
 
     ends: tuple[float, float]
     height: float
@@ -86,32 +96,50 @@ def layered(channel: Channel, refinement: int = 0) -> Layered:
 
 def _narrowest(channel: Channel) -> float:
     """Half the shortest stretch between neighbouring edges on one face."""
+    low, high = channel.ends
     shortest = channel.height
     for on_lid in (False, True):
-        edges = _edges(channel, on_lid)
-        if edges:
-            stops = np.unique([*channel.ends, *edges])
-            # a stretch that ends on a mirror plane is itself half of one
-            lengths = np.diff(stops) * (0.5 if channel.periodic else 1.0)
+        edges = np.unique(_edges(channel, on_lid))
+        if edges.size and channel.periodic:
+            lengths = 0.5 * np.diff([*edges, edges[0] + high - low])
             shortest = min(shortest, float(lengths.min()))
+        elif edges.size:
+            # a stretch that ends on a mirror plane is itself half of one
+            shortest = min(shortest, float(np.diff([low, *edges, high]).min()))
     return shortest
 
 
 def _edges(channel: Channel, on_lid: bool) -> list[float]:
+    """Where metal ends on one face; at a mirror plane it goes on."""
     low, high = channel.ends
-    return [
-        x
-        for span in channel.spans
-        if span.on_lid == on_lid
-        for x in (span.start, span.end)
-        if low < x < high
-    ]
+    every = [x for span in channel.spans if span.on_lid == on_lid for x in (span.start, span.end)]
+    if channel.periodic:
+        return [low + (x - low) % (high - low) for x in every]
+    return [x for x in every if low < x < high]
+
+
+def _stops(channel: Channel, apart: float) -> tuple[Real, set[float]]:
+    """Ends and edges from left to right, no two nearer than `apart`, and which are edges."""
+    found = np.array([*_edges(channel, False), *_edges(channel, True)])
+    low, high = channel.ends
+    stops = [low]
+    for x in np.sort(found):
+        if x - stops[-1] > apart and high - x > apart:
+            stops.append(float(x))
+    stops.append(high)
+    turns = (0.0, high - low, low - high) if channel.periodic else (0.0,)
+    met = {x for x in stops if any(np.any(np.abs(found + turn - x) <= apart) for turn in turns)}
+    return np.array(stops), met
+
+
+def _first(channel: Channel) -> float:
+    """Cell at an electrode edge."""
+    return (WHOLE_EDGE_CELL if channel.periodic else EDGE_CELL) * _narrowest(channel)
 
 
 def _columns(channel: Channel) -> Real:
-    first = EDGE_CELL * _narrowest(channel)
-    edges = {*_edges(channel, False), *_edges(channel, True)}
-    stops = np.unique([*channel.ends, *edges])
+    first = _first(channel)
+    stops, edges = _stops(channel, SAME * first)
     longest = LONGEST * channel.pitch
     pieces = []
     for start, end in pairwise(stops):
@@ -128,16 +156,17 @@ def _columns(channel: Channel) -> Real:
 
 
 def _liquid_rows(channel: Channel) -> Real:
-    first = EDGE_CELL * _narrowest(channel)
+    first = _first(channel)
     pitch = channel.pitch
 
     def limit(distance: float) -> float:
         """Grow again where the field has decayed."""
         return LONGEST * max(pitch, min(distance, 2 * pitch), 4 * (distance - 2.5 * pitch))
 
-    if not any(span.on_lid for span in channel.spans):
+    # a face that is metal throughout, or bare, has no edge to crowd toward
+    if not _edges(channel, True):
         return march(channel.height, first, limit)
-    if not any(not span.on_lid for span in channel.spans):
+    if not _edges(channel, False):
         return channel.height - march(channel.height, first, limit)[::-1]
     return between(0.0, channel.height, (first, first), limit)
 
@@ -180,7 +209,9 @@ def _named(mesh: Mesh, channel: Channel) -> Mesh:
     }
     for span in channel.spans:
         level = channel.height if span.on_lid else 0.0
-        within = (middles[0] > span.start) & (middles[0] < span.end)
+        ahead = middles[0] - span.start
+        ahead = ahead % (high - low) if channel.periodic else ahead
+        within = (ahead > 0) & (ahead < span.end - span.start)
         found = np.flatnonzero(~upright & (middles[1] == level) & within)
         boundaries[span.name] = np.union1d(boundaries.get(span.name, found), found)
     centre = mesh.p[1, mesh.t].mean(axis=0)

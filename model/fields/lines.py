@@ -44,8 +44,8 @@ class Line(Stored):
 class LineTable(Stored):
     """Cubic splines in ln y of all patterns at the places of one half period.
 
-    Field and gradient are divided by their root mean square over the line, whose logarithm is
-    kept apart, so that they stay as exact far above the array as near it.
+    Field and gradient are divided by their root mean square over the line, whose smoothed logarithm
+    is kept apart, so that they stay as exact far above the array as near it.
 
     Parameters
     ----------
@@ -123,9 +123,10 @@ def line_table(
     for part in (0, 1):
         block = samples[:, 2 * part : 2 * part + 2]
         size = np.sqrt((block**2).sum(axis=1).mean(axis=1))
-        size = np.maximum(size, np.finfo(float).tiny ** 0.5)
-        block /= size[:, None, None]
-        levels[:, part] = np.log(size)
+        levels[:, part] = np.log(np.maximum(size, np.finfo(float).tiny ** 0.5))
+        if part == 1:
+            levels[:, part] = _smooth(levels[:, part])
+        block /= np.exp(levels[:, part])[:, None, None]
     place = np.log(heights)
     shapes = CubicSpline(place, samples.reshape(rows, -1)).c
     return LineTable(
@@ -139,3 +140,12 @@ def line_table(
         float(heights[0]),
         float(heights[-1]),
     )
+
+
+def _smooth(levels: Real) -> Real:
+    """Weighted mean of each row and its two neighbours on either side.
+
+    Half-way between facing bars most of the gradient changes sign, which leaves a cusp.
+    """
+    padded = np.pad(levels, 2, mode="reflect", reflect_type="odd")  # goes on as it ends
+    return np.asarray(np.convolve(padded, np.array([1, 2, 3, 2, 1]) / 9, mode="valid"))

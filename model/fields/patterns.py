@@ -18,7 +18,7 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, eq=False, repr=False)
 class ChipPatterns(Stored):
-    r"""Field, heat and flow of a chip per 1 V rms between neighbouring electrodes.
+    r"""Field, heat and flow of a chip per 1 V rms between electrodes of opposite phase.
 
     With the liquid's permittivity ε, conductivity σ, thermal conductivity k and viscosity η, the
     angular frequency ω, α = d ln ε/dT, β = d ln σ/dT and the rms voltage V:
@@ -27,10 +27,10 @@ class ChipPatterns(Stored):
     - temperature rise ΔT = (σV²/k)·Θ, Θ from :meth:`temperature`;
     - electrothermal velocity u = (εσV⁴/(kηL))·[(α − β)/(1 + (ωε/σ)²)·U₁ − (α/2)·U₂], U from
       :meth:`electrothermal`, L the attribute `length`;
-    - capacitance of one gap per metre of bar C = ε·`cell_factor`, its conductance
-      σ·`cell_factor`.
+    - capacitance of one gap (of one pitch, if floor and lid are opposite) per metre of bar
+      C = ε·`cell_factor`, its conductance σ·`cell_factor`.
 
-    Coordinates in m: x from a bar's centre along the flow, any x; y from the electrode plane.
+    Coordinates in m: x from a bar's centre along the flow, any x; y from the floor.
     Ohmic heat alone is counted, and its change of σ, ε and η is not fed back: right for rises of
     a few kelvin.
 
@@ -41,7 +41,7 @@ class ChipPatterns(Stored):
     thermal_conductivity
         k of the liquid that was used, W/(m K).
     cell_factor
-        C/ε per metre of bar and gap.
+        C/ε per metre of bar and gap or pitch.
     length
         The pitch L, m.
     period
@@ -71,7 +71,7 @@ class ChipPatterns(Stored):
         return self.fold.period
 
     def electric_field(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
-        """Field Ê = −∇φ in 1/m, that is V/m per volt; it changes sign from bar to bar.
+        """Field Ê = −∇φ in 1/m, that is V/m per volt; `fold` tells how it repeats.
 
         Parameters
         ----------

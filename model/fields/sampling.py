@@ -21,7 +21,8 @@ def sample_lines(
     section: Section, potential: Piecewise, heat: Piecewise, flows: Piecewise
 ) -> LineTable:
     """Table all patterns of a section over one period and all heights."""
-    stops = _stops(section)
+    edges = _edges(section)
+    stops = np.unique([*_ends(section), *edges[0]])
     columns = np.unique(np.concatenate([_crowded(a, b) for a, b in pairwise(stops)]))
 
     def evaluate(x: Real, y: Real) -> Real:
@@ -32,19 +33,43 @@ def sample_lines(
         warm = heat.values(*heat.cells.locate(points))
         return np.concatenate([field, gradient, warm, flows.values(cell, place)])
 
-    heights = _heights(section, float(np.diff(stops).min()))
+    heights = _heights(section, edges)
     return line_table(heights, columns, _unfold(section, columns), evaluate)
 
 
-def _stops(section: Section) -> Real:
-    """Find the ends of the piece and of the electrodes, along x."""
+def _ends(section: Section) -> tuple[float, float]:
+    """Ends of the piece along x."""
+    x = section.liquid().p[0]
+    return float(x.min()), float(x.max())
+
+
+def _edges(section: Section) -> Real:
+    """Places (2, n) where an electrode ends; at the ends of the piece it may go on."""
     mesh = section.mesh
-    liquid = section.liquid().p[0]
-    ends = [liquid.min(), liquid.max()]
+    low, high = _ends(section)
+    found = [np.zeros((2, 0))]
     for name in section.electrodes:
-        x = mesh.p[0, mesh.facets[:, mesh.boundaries[name]]]
-        ends += [x.min(), x.max()]
-    return np.unique(ends)
+        nodes = mesh.p[:, mesh.facets[:, mesh.boundaries[name]].ravel()]
+        if section.joined:
+            nodes = np.where([[True], [False]] & (nodes == high), low, nodes)
+        places, counts = np.unique(nodes, axis=1, return_counts=True)
+        found.append(places[:, counts == 1])
+    edges = np.concatenate(found, axis=1)
+    inside = (edges[0] > low) & (edges[0] < high)
+    return edges if section.joined else edges[:, inside]
+
+
+def _shortest(section: Section, edges: Real) -> float:
+    """Half the shortest stretch between neighbouring edges on one face."""
+    low, high = _ends(section)
+    upper = edges[1] > 0.5 * section.height
+    shortest = high - low
+    for x in (np.unique(edges[0, upper]), np.unique(edges[0, ~upper])):
+        if x.size and section.joined:
+            shortest = min(shortest, 0.5 * float(np.diff([*x, x[0] + high - low]).min()))
+        elif x.size:
+            shortest = min(shortest, float(np.diff([low, *x, high]).min()))
+    return shortest
 
 
 def _crowded(start: float, end: float) -> Real:
@@ -52,23 +77,20 @@ def _crowded(start: float, end: float) -> Real:
     return start + (end - start) * 0.5 * (1 - np.cos(np.pi * np.arange(PLACES + 1) / PLACES))
 
 
-def _heights(section: Section, shortest: float) -> Real:
+def _heights(section: Section, edges: Real) -> Real:
     """Rows from just above the floor to the lid, crowding toward both.
 
-    Toward a lid without electrodes, where nothing is singular, they need not crowd as much.
+    Toward a lid without electrode edges, where nothing is singular, they need not crowd as much.
     """
     top = section.height
-    lowest = min(LOWEST * shortest, 0.01 * top)
-    mesh = section.mesh
-    bare = all(
-        mesh.p[1, mesh.facets[:, mesh.boundaries[name]]].max() < 0.5 * top
-        for name in section.electrodes
-    )
-    finest = 0.005 * top if bare else lowest
+    lowest = min(LOWEST * _shortest(section, edges), 0.01 * top)
+    bare = not np.any(edges[1] > 0.5 * top)
+    finest = 0.005 * top if bare else STEP * lowest
     rows = [lowest]
     while rows[-1] < top:
-        y = rows[-1]
-        rows.append(y + min(STEP * y, max((0.25 if bare else STEP) * (top - y), finest)))
+        up, down = STEP * rows[-1], (0.25 if bare else STEP) * (top - rows[-1])
+        # smooth from the one to the other: where steps change abruptly a spline is at its worst
+        rows.append(rows[-1] + 1 / (1 / up + 1 / max(down, finest)))
     rows[-1] = top
     return np.array(rows)
 

@@ -24,7 +24,7 @@ class Fold:
         The piece is one half, 0 ≤ x ≤ period/2, with mirror planes at both ends; the other half
         is its mirror image about x = 0. A piece without a period is mirrored about x = 0 alone.
     alternation
-        φ(x + period)/φ(x): −1 if neighbouring electrodes are opposite, else 1.
+        φ(x + period)/φ(x): −1 if neighbours are opposite, else 1.
     parity
         φ(−x)/φ(x) of a mirrored piece: 1 or −1.
     """
@@ -76,7 +76,7 @@ class Rest:
 class Section:
     """Smallest piece of a chip that symmetry leaves, ready for the solves.
 
-    Lengths in m, x along the flow from a bar's centre, y upward from the electrode plane.
+    Lengths in m, x along the flow from a bar's centre, y upward from the floor.
 
     Parameters
     ----------
@@ -85,8 +85,9 @@ class Section:
         subdomain ``liquid`` must be named; every other subdomain is a wall. Sides are named as
         boundaries.
     potentials
-        Potential of each named side that is held, in V per volt between neighbours: electrodes,
-        and mirror planes about which φ is odd. All other sides of the liquid are insulating.
+        Potential of each named side that is held, in V per volt between opposite phases:
+        electrodes, and mirror planes about which φ is odd. All other sides of the liquid are
+        insulating.
     electrodes
         Which of `potentials` are metal.
     length
@@ -94,7 +95,8 @@ class Section:
     height
         Of the liquid.
     cells_per_gap
-        How many of these pieces carry the energy of one gap (2 if the piece is half a gap).
+        How many of these pieces carry the energy of one gap, or of one pitch if floor and lid
+        are opposite (2 if the piece is half of it).
     fold
         How the piece repeats.
     mirrors

@@ -1,50 +1,26 @@
 """Interdigitated bars on the floor."""
 
-from typing import Annotated, Literal
+from typing import ClassVar, Literal
 
-from model.declare import Count, Quantity
+from model.bars import Bars
 from model.fields.layered import Channel, Span, layered
 from model.fields.section import Fold, Section
-from model.layout import Layout
+from model.layout import Face
 
 
-class CoplanarBars(Layout):
+class CoplanarBars(Bars):
     """Bars across the flow on the floor, neighbours at opposite voltages."""
 
     layout: Literal["coplanar-bars"] = "coplanar-bars"
-    bar_width: Annotated[
-        float,
-        Quantity(
-            "Bar width",
-            "Of each electrode, along the flow.",
-            unit="um",
-            low="0.5 um",
-            high="2 mm",
-        ),
-    ]
-    gap: Annotated[
-        float,
-        Quantity(
-            "Gap",
-            "Between neighbouring bars, edge to edge.",
-            unit="um",
-            low="0.5 um",
-            high="2 mm",
-        ),
-    ]
-    bar_count: Annotated[
-        int,
-        Count("Bars", "Across the flow; there is one gap less than bars.", low=2, high=1000),
-    ]
+    electrode_faces: ClassVar[tuple[Face, ...]] = ("floor",)
 
     def section(self, refinement: int = 0) -> Section:
         """Half a pitch, from a bar's centre to the middle of the gap, where φ is 0."""
-        pitch = self.bar_width + self.gap
         piece = layered(
             Channel(
-                ends=(0.0, 0.5 * pitch),
+                ends=(0.0, 0.5 * self.pitch),
                 height=self.channel_height,
-                pitch=pitch,
+                pitch=self.pitch,
                 spans=(Span("bar", 0.0, 0.5 * self.bar_width),),
                 floor=self.floor,
                 lid=self.lid,
@@ -55,10 +31,10 @@ class CoplanarBars(Layout):
             mesh=piece.mesh,
             potentials={"bar": 0.5, "right": 0.0},
             electrodes=("bar",),
-            length=pitch,
+            length=self.pitch,
             height=self.channel_height,
             cells_per_gap=2.0,
-            fold=Fold(period=pitch, mirrored=True, alternation=-1, parity=1),
+            fold=Fold(period=self.pitch, mirrored=True, alternation=-1, parity=1),
             mirrors={"left": 0, "right": 0},
             wall_conductivities=piece.wall_conductivities,
             outsides=piece.outsides,
@@ -67,10 +43,15 @@ class CoplanarBars(Layout):
 
     @property
     def parallel_length(self) -> float:
-        """Length of all gaps together, m."""
+        """Length of all gaps together, one less than bars, m."""
         return (self.bar_count - 1) * self.channel_width
 
     @property
     def narrowest(self) -> float:
         """The gap, m."""
         return self.gap
+
+    @property
+    def double_layer_width(self) -> float:
+        """Half a bar at either end of each gap, in series, m."""
+        return self.bar_width / 4.0

@@ -2,7 +2,7 @@
 
 from typing import TYPE_CHECKING
 
-from model.law import Law
+from model.law import Law, Sense
 from model.limit import Limit
 
 if TYPE_CHECKING:
@@ -10,10 +10,11 @@ if TYPE_CHECKING:
 
 
 class ForceSign(Limit):
-    """Re K, counted positive the way the task wants it, must be above zero at any voltage."""
+    """Re K must lie on the side of zero that the task wants, at any voltage."""
 
     id = "force_sign"
     label = "sign of the force"
+    symbol = "Re K"
     why = "With the wrong sign the particle is pushed away from where it should be collected."
     source = "sign of the Clausius–Mossotti factor, Jones 1995, Electromechanics of Particles"
     remedy = "Move the frequency or the conductivity to the other side of the crossover."
@@ -25,6 +26,7 @@ class ForceSign(Limit):
         for particle in at.design.collected:
             sign = at.design.task.wanted_sign(particle)
             if sign:
-                value = sign * at.polarisation(particle).real
-                laws.append(Law(value, 0, 0.0, sense="least", subject=particle.name))
+                value = at.polarisation(particle).real
+                sense: Sense = "least" if sign > 0 else "most"
+                laws.append(Law(value, 0, 0.0, sense=sense, subject=particle.name))
         return tuple(laws)

@@ -14,6 +14,8 @@ if TYPE_CHECKING:
 class MembraneVoltage(Limit):
     """Peak induced voltage at the pole, at the strongest field that the cell has to endure.
 
+    The field counts with its growth across the cell (see ``Conditions.exposure``).
+
     That is the worst place that the task brings it to, e.g. an electrode edge that it touches.
     """
 

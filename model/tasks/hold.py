@@ -4,6 +4,7 @@ from typing import TYPE_CHECKING, Annotated, Literal
 
 import numpy as np
 
+from model.arrays import Real
 from model.declare import Choice, Quantity
 from model.law import Law
 from model.motion import drag_held, stokes_drag
@@ -11,6 +12,7 @@ from model.task import Task
 
 if TYPE_CHECKING:
     from model.conditions import Conditions
+    from model.layout import Layout
     from model.particle import Particle
 
 
@@ -44,7 +46,7 @@ class Hold(Task):
         float,
         Quantity(
             "Working height",
-            "Of particle centres above the electrode plane, where force and drag are compared.",
+            "Of particle centres above the floor, where force and drag are compared.",
             unit="um",
             low="0.2 um",
             high="2 mm",
@@ -53,16 +55,24 @@ class Hold(Task):
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
         """One law of power 2 for each particle to be collected; force in N."""
-        height = self.working_height
         laws = []
         for particle in at.design.collected:
-            radius = particle.equivalent_radius
-            drag = stokes_drag(radius, at.liquid.viscosity, at.flow_speed(height)) * drag_held(
-                at.wall_distance / radius
-            )
-            pull = np.maximum(self.wanted_sign(particle) * at.force_along_flow(particle), 0.0)
-            laws.append(Law(pull, 2, float(drag), sense="least", subject=particle.name))
+            pull = self.wanted_sign(particle) * at.force_along_flow(particle)
+            laws.append(self._against_drag(at, particle, np.maximum(pull, 0.0)))
         return tuple(laws)
+
+    def catch(self, at: "Conditions", particle: "Particle") -> Law:
+        """The same balance for a force of either sign: weak field between bars holds too."""
+        return self._against_drag(at, particle, np.abs(at.force_along_flow(particle)))
+
+    def _against_drag(self, at: "Conditions", particle: "Particle", pull: Real) -> Law:
+        """Pull per V² against the drag on the particle at rest in the flow."""
+        radius = particle.equivalent_radius
+        speed = at.flow_speed(self.working_height)
+        free = stokes_drag(radius, at.liquid.viscosity, speed)
+        relative = max(at.wall_distance / radius, 1.0)  # one too large to pass there touches
+        drag = float(free * drag_held(relative))
+        return Law(pull, 2, drag, sense="least", subject=particle.name)
 
     def wanted_sign(self, particle: "Particle") -> int:
         """The same for every particle."""
@@ -73,12 +83,12 @@ class Hold(Task):
         """The working height."""
         return self.working_height
 
-    def exposure_height(self, particle: "Particle") -> float:
-        """Touching the floor if the task draws to the electrodes, else the working height.
+    def exposure_heights(self, particle: "Particle", chip: "Layout") -> tuple[float, ...]:
+        """The working height and, if the task draws to the electrodes, touching any of them.
 
-        The first is the worst place, also for a particle that is pushed away: it meets it only
+        Touching is the worst place, also for a particle that is pushed away: it meets it only
         if it settles there.
         """
         if self.dielectrophoresis == "positive":
-            return min(particle.equivalent_radius, self.working_height)
-        return self.working_height
+            return (self.working_height, *chip.contact_heights(particle.equivalent_radius))
+        return (self.working_height,)

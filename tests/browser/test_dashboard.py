@@ -1,7 +1,7 @@
 """The dashboard as a person uses it, in a real Chromium."""
 
+import json
 import re
-import time
 from pathlib import Path
 from xml.etree import ElementTree
 
@@ -47,9 +47,12 @@ def drag(page, path: str, pixels: float, steps: int = 12) -> None:
 
 
 def type_into(page, label: str, text: str) -> None:
+    """Type and press Enter, and wait until the page has taken it (or written it its own way)."""
     field = page.get_by_label(label, exact=True).first
     field.fill(text)
     field.press("Enter")
+    found = f"Object.values(window.slackwater.gate.values).includes({json.dumps(text)})"
+    until(page, f"() => {found} || document.activeElement.value !== {json.dumps(text)}")
 
 
 def curve(page, figure: str, trace: str) -> list[float]:
@@ -204,6 +207,20 @@ def test_every_demo_opens_from_the_list(page):
         settled(page)
 
 
+def test_another_layout_keeps_what_both_have(page):
+    type_into(page, "Gap", "52 um")
+    settled(page)
+    before = shown_fingerprint(page)
+    for layout in ("facing bars", "bars under plate", "coplanar bars"):
+        page.locator("#layout").click()
+        page.get_by_role("option", name=layout).click()
+        until(page, f"() => document.getElementById('summary-chip').textContent === '{layout}'")
+        settled(page)
+        assert page.get_by_label("Gap", exact=True).input_value() == "52 µm"
+        assert "orridor" in verdict(page) or "No voltage" in verdict(page)
+    assert shown_fingerprint(page) == before
+
+
 def test_saved_file_opens_again(page, tmp_path):
     drag(page, "drive.voltage", 20)
     with page.expect_download() as download:
@@ -338,13 +355,12 @@ def drag_without_answer(page) -> None:
 
 
 def test_chip_change_shows_that_it_is_busy(page):
-    def slow(route) -> None:
-        time.sleep(0.8)
-        route.continue_()
-
-    page.route("**/answer/**", slow)
+    network = page.context.new_cdp_session(page)
+    slow = {"offline": False, "latency": 900, "downloadThroughput": -1, "uploadThroughput": -1}
+    network.send("Network.enable")
+    network.send("Network.emulateNetworkConditions", slow)
     type_into(page, "Gap", "47 um")
     until(page, "() => document.body.classList.contains('busy')")
-    page.unroute("**/answer/**")
+    network.send("Network.emulateNetworkConditions", {**slow, "latency": 0})
     settled(page)
     assert not page.evaluate("() => document.body.classList.contains('busy')")

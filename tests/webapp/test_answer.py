@@ -89,7 +89,8 @@ def test_knobs_show_the_units_of_the_bench(yeast):
     found = knobs(yeast)
     assert found["liquid.conductivity"]["note"] == "200 µS/cm"  # 20 mS/m, 1 mS/m = 10 µS/cm
     assert found["drive.voltage"]["note"] == "3.54 V rms, 5 V peak"
-    assert found["drive.frequency"]["note"] == "period 1 µs"
+    # σ/(2πε) of 20 mS/m and ε = 79.5 ε0 at 22 °C: 4.52 MHz
+    assert found["drive.frequency"]["note"] == "liquid relaxes at 4.52 MHz"
 
 
 @settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.too_slow])

@@ -194,13 +194,28 @@ def call_of(callback, values, changed=None):
 
 def test_the_page_can_call_its_callbacks(client, good):
     opening, saving = (callback for callback in callbacks_of(client))
-    found = client.post(CALLBACK, json=call_of(opening, [{"link": ""}, None, None],
+    found = client.post(CALLBACK, json=call_of(opening, [{"link": ""}, None, None, None],
                                                ["address.data"]))  # fmt: skip
     assert found.status_code == 200
     assert found.json["response"]["document"]["data"]["problems"] == []
     found = client.post(CALLBACK, json=call_of(saving, [good], ["save-request.data"]))
     assert found.status_code == 200
     assert "[[particle]]" in found.json["response"]["download"]["data"]["content"]
+
+
+def test_another_layout_keeps_what_both_have(client, good):
+    opening, _ = callbacks_of(client)
+
+    def ask(layout):
+        values = [None, None, None, {**good, "layout": layout}]
+        return client.post(CALLBACK, json=call_of(opening, values, ["layout-request.data"]))
+
+    document = ask("facing-bars").json["response"]["document"]["data"]
+    before, after = good["document"]["chip"], document["profile"]["chip"]
+    assert document["problems"] == []
+    assert after == {**before, "layout": "facing-bars", "offset": "0 um"}
+    for layout in ("no-such-layout", None, 3, ["facing-bars"]):
+        assert ask(layout).status_code == 400
 
 
 STRANGE = [None, 3, "x", [1], {"a": 1}, True, "data:,%%%", {"link": "1.a.é"}, {"link": [3]},
@@ -306,7 +321,7 @@ def test_ids_of_the_layout_are_unique(client):
 def test_an_opened_design_adds_no_id_twice(client):
     page = list(ids_in(client.get("/_dash-layout").json))
     opening = callbacks_of(client)[0]
-    body = call_of(opening, [{"link": ""}, None, None], ["address.data"])
+    body = call_of(opening, [{"link": ""}, None, None, None], ["address.data"])
     panel = list(ids_in(client.post(CALLBACK, json=body).json["response"]["inputs"]["children"]))
     assert panel
     assert len(page + panel) == len({*page, *panel})

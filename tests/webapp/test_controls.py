@@ -92,7 +92,7 @@ def test_help_names_range_and_source(yeast):
 
 def test_summaries_follow_the_design(yeast, vary):
     assert summaries(yeast)["limits"] == "1 changed"  # yeast is kept below 30 °C
-    assert summaries(vary(yeast, {"limits.highest_temperature": "37 degC"}))["limits"] == "as usual"
+    assert summaries(vary(yeast, {"limits.highest_temperature": "37 degC"}))["limits"] == "defaults"
     assert summaries(yeast)["particles"] == "2"
     assert summaries(yeast)["flow"] == "3 µL/min"
 

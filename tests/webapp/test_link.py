@@ -87,7 +87,7 @@ def test_a_cut_link_says_what_it_lacks(demos):
     opened = open_link(link[: len(link) // 2], yeast)
     assert opened.design.title == beads.title
     assert opened.problems
-    assert any("another value stands in its place" in problem for problem in opened.problems)
+    assert any("in its place" in problem for problem in opened.problems)
 
 
 @settings(max_examples=120, deadline=None)

@@ -89,7 +89,7 @@
     const kept = drawn[name];
     if (!place || !kept) return;
     const width = Math.max(760, place.clientWidth);
-    const height = Math.max(420, place.clientHeight) + 70;
+    const height = Math.max(420, place.clientHeight) + 84;
     const layout = JSON.parse(kept.layout);
     const margin = layout.margin;
     layout.title = {
@@ -100,15 +100,17 @@
       yanchor: "top",
       font: { size: 16 },
     };
-    layout.margin = { ...margin, t: margin.t + 34, b: margin.b + 36 };
+    layout.margin = { ...margin, t: margin.t + 34, b: margin.b + 50 };
     layout.annotations = [
       {
-        text: escape(page.caption),
+        text: folded(page.caption, width / 6.2).map(escape).join("<br>"),
+        align: "left",
         showarrow: false,
         xref: "paper",
         yref: "paper",
         x: 0,
         xanchor: "left",
+        xshift: 8 - margin.l,
         y: 0,
         yanchor: "top",
         yshift: -(margin.b + 8),
@@ -125,6 +127,17 @@
     link.download = "slackwater-" + name + "." + format;
     link.click();
   };
+
+  /* Break a line between words so that no piece is longer than `most` letters. */
+  function folded(line, most) {
+    const lines = [""];
+    for (const word of line.split(" ")) {
+      const last = lines[lines.length - 1];
+      if (last && last.length + word.length >= most) lines.push(word);
+      else lines[lines.length - 1] = last ? last + " " + word : word;
+    }
+    return lines;
+  }
 
   /* Figure text reads a little markup; a title that a person typed must stay plain. */
   function escape(text) {

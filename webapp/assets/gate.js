@@ -25,8 +25,8 @@
     pump();
   };
 
-  /* Whether newer values wait than those that are being answered. */
-  gate.moving = () => dirty;
+  /* Whether newer values wait or are under way than those that were answered last. */
+  gate.moving = () => dirty || waiting;
 
   /* What a request carries. */
   gate.body = function () {

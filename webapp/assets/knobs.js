@@ -66,6 +66,7 @@
 
   function prefixed(value, unit) {
     const steps = [[1e9, "G"], [1e6, "M"], [1e3, "k"], [1, ""], [1e-3, "m"], [1e-6, "µ"]];
+    if (unit === "S/m") steps.splice(5); // µS/m would be taken for the µS/cm of bench meters
     const rounded = Number(value.toPrecision(3));
     const [size, letter] = steps.find(([least]) => rounded >= least) || steps[steps.length - 1];
     return Number((rounded / size).toPrecision(3)) + " " + letter + unit;

@@ -53,6 +53,7 @@
 
   function set(row, selector, text) {
     const place = row.querySelector(selector);
+    text = page.bound(text);
     if (place.textContent !== text) place.textContent = text;
   }
 })();

@@ -10,6 +10,7 @@
   let profile = null;
   let addressTimer = 0;
   let travelling = false;
+  let leaving = false; // whether the next address is another design's, opened over this one
   let visits = 0;
 
   /* ---- opening ---- */
@@ -40,6 +41,11 @@
     if (!opened) return none();
     const fresh = opened !== profile;
     if (fresh) {
+      if (profile && !travelling && page.link) {
+        clearTimeout(addressTimer);
+        history.replaceState(null, "", "#" + page.link);
+        leaving = true;
+      }
       profile = opened;
       travelling = false;
       gate.profile = opened.profile;
@@ -93,7 +99,7 @@
   }
 
   function show(answer) {
-    text("fingerprint", answer.fingerprint);
+    byId("fingerprint").textContent = answer.fingerprint;
     text("verdict-headline", answer.verdict.headline);
     text("verdict-sentence", answer.verdict.sentence);
     byId("verdict").className = answer.verdict.inside ? "inside" : "outside";
@@ -104,11 +110,20 @@
     tidy(answer.texts);
     items("notes", answer.notes);
     items("cautions", answer.cautions);
+    heed(answer.notes.length, answer.cautions.length - 1); // the last is there always
     document.title = answer.title + " · Slackwater";
     keepAddress(answer.link);
     // The framework's upload part comes late and names its field nothing.
     const upload = document.querySelector("#upload input");
     if (upload) upload.setAttribute("aria-label", "Open a profile file");
+  }
+
+  /* Say beside the verdict that something below belongs to it. */
+  function heed(notes, hazards) {
+    const count = notes + hazards;
+    byId("heed").hidden = count === 0;
+    byId("heed").className = hazards ? "hazard" : "";
+    text("heed", count + (hazards ? " warning" : " note") + (count > 1 ? "s" : ""));
   }
 
   function mark(errors) {
@@ -166,8 +181,13 @@
     }
   }
 
+  /* A number and its unit stay on one line. */
+  const bound = (words) => words.replace(/(\d) (?=[A-Za-zµΩ°%])/g, "$1\u00a0");
+  page.bound = bound;
+
   function text(id, words) {
     const place = byId(id);
+    words = bound(words);
     if (place && place.textContent !== words) place.textContent = words;
   }
 
@@ -187,6 +207,11 @@
     if (travelling || gate.moving()) return;
     page.link = link;
     clearTimeout(addressTimer);
+    if (leaving) {
+      leaving = false;
+      if (window.location.hash !== "#" + link) history.pushState(null, "", "#" + link);
+      return;
+    }
     addressTimer = setTimeout(() => history.replaceState(null, "", "#" + link), 350);
   }
 
@@ -210,6 +235,12 @@
     place.textContent = words;
     place.classList.add("shown");
     setTimeout(() => place.classList.remove("shown"), 4000);
+  }
+
+  /* Another electrode layout: the server keeps what both have and opens the design anew. */
+  function layout(wanted) {
+    if (!wanted || !gate.profile || wanted === gate.profile.chip.layout) return none();
+    return { ...gate.body(), layout: wanted };
   }
 
   function save(clicks) {
@@ -246,6 +277,7 @@
   function clicked(event) {
     const button = event.target.closest && event.target.closest("button.export");
     if (button) page.save(button.dataset.figure, button.dataset.format);
+    if (event.target.id === "heed") document.querySelector("#view > footer").scrollIntoView();
     const figure = event.target.closest && event.target.closest("#figure-corridor");
     if (figure) {
       const place = page.valueAt(figure, event);
@@ -260,6 +292,7 @@
     slackwater: {
       start,
       controls,
+      layout,
       save,
       share,
       dark,

@@ -10,12 +10,26 @@ from model.arrays import Real
 from model.corridor import Bound
 from model.evaluate import Evaluation
 from model.quantity import format_si
+from model.verdict import format_volts
 from model.voltage import PEAK_TO_PEAK
-from webapp.figures.labels import Label, Wish, place_labels
-from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark, numbers, plain
+from webapp.figures.labels import HEIGHT, WIDTH, Label, Wish, place_labels
+from webapp.figures.theme import (
+    Figure,
+    Theme,
+    layout,
+    limit_colour,
+    log_axis,
+    mark,
+    nice_ceiling,
+    numbers,
+    plain,
+)
 
-#: A stretch where a ceiling does not bind gets a name if it spans this share of the axis.
+#: A stretch gets a name of its own if it spans this share of the axis; a shorter one only where
+#: the limit would have no name at all.
 _WORTH_A_NAME = 0.15
+#: Points on the operating mark's ring in pixels, many enough that no name covers it.
+_RING = 8.0 * np.array([np.cos(np.arange(40) * np.pi / 20), np.sin(np.arange(40) * np.pi / 20)])
 #: Text of an empty slot: a word joiner, which is drawn as nothing.
 _NOTHING = "\u2060"
 #: Values far off the axis are drawn this many times beyond its end, never as gaps.
@@ -53,11 +67,14 @@ def corridor_sentence(result: Evaluation) -> str:
     """Say what the corridor shows now, in one sentence."""
     corridor = result.corridor
     open_at = corridor.floor <= corridor.ceiling
+    last = corridor.frequency.size
     if not open_at.any():
         return "No frequency has a corridor: everywhere the floor lies above the lowest ceiling."
     spans = [
-        f"{format_si(float(corridor.frequency[start]), 'Hz')} to "
+        f"{format_si(float(corridor.frequency[start]), 'Hz')}"
+        f"{'' if start else ' (lowest shown)'} to "
         f"{format_si(float(corridor.frequency[stop - 1]), 'Hz')}"
+        f"{'' if stop < last else ' (highest shown)'}"
         for start, stop in _runs(open_at)
     ]
     room = np.where(open_at, corridor.ceiling / np.maximum(corridor.floor, 1e-9), 0.0)
@@ -65,14 +82,27 @@ def corridor_sentence(result: Evaluation) -> str:
     widest = format_si(float(corridor.frequency[best]), "Hz")
     more = f" and in {len(spans) - 3} more bands" if len(spans) > 3 else ""
     return (
-        f"A corridor exists from {' and from '.join(spans[:3])}{more}; it is widest near {widest}."
+        f"A corridor exists from {' and from '.join(spans[:3])}{more}, widest near {widest}; "
+        f"{_here(result)}."
     )
+
+
+def _here(result: Evaluation) -> str:
+    """Say how far the corridor reaches at the present frequency."""
+    frequency = format_si(result.design.drive.frequency, "Hz")
+    if result.floor_pp > result.ceiling_pp:
+        return f"at {frequency} there is none"
+    low, high = format_volts(result.floor_pp), format_volts(result.ceiling_pp)
+    return f"at {frequency} it reaches from {low} to {high} peak to peak"
 
 
 def voltage_range(result: Evaluation) -> tuple[float, float]:
     """Ends of the voltage axis; they follow the generator, so that they rest while knobs move."""
     drive = result.design.drive
     low, high = drive.voltage_limit / 30.0, drive.voltage_limit * 2.5
+    ceiling = result.ceiling_pp
+    if 0.0 < ceiling < 1.5 * low:  # in steps, so that it rests here too
+        low = nice_ceiling(ceiling) / 5.0
     return min(low, drive.voltage / 2.0), max(high, drive.voltage * 1.5)
 
 
@@ -97,11 +127,16 @@ def _edge(x: dict[str, str], y: dict[str, str], **more: Any) -> dict[str, Any]:
     }
 
 
+def _line(colour: str, width: float, **more: Any) -> dict[str, Any]:
+    """Line through every point; the library's thinning would show corners in a smooth curve."""
+    return {"color": colour, "width": width, "simplify": False, **more}
+
+
 def _ceiling(x: dict[str, str], volts: Real, bound: Bound, theme: Theme) -> dict[str, Any]:
     return {
         **_edge(x, numbers(volts)),
         "name": plain(bound.name),
-        "line": {"color": limit_colour(theme, bound.id), "width": 1.2, "dash": "dash"},
+        "line": _line(limit_colour(theme, bound.id), 1.2, dash="dash"),
         "hoverinfo": "all",
         "hovertemplate": f"{plain(bound.name)}<br>"
         "at most %{y:.3~g} V at %{x:.3~s}Hz<extra></extra>",
@@ -119,7 +154,7 @@ def _binding(
             numbers(np.concatenate([stub_y, volts])),
         ),
         "name": f"binding {plain(bound.name)}",
-        "line": {"color": limit_colour(theme, bound.id), "width": 3.5},
+        "line": _line(limit_colour(theme, bound.id), 3.5),
     }
 
 
@@ -128,7 +163,7 @@ def _floor(x: dict[str, str], floor: Real, result: Evaluation, theme: Theme) -> 
     return {
         **_edge(x, numbers(floor)),
         "name": f"floor: {label}",
-        "line": {"color": theme.accent, "width": 3.5},
+        "line": _line(theme.accent, 3.5),
         "hoverinfo": "all",
         "hovertemplate": f"floor: {label}<br>"
         "at least %{y:.3~g} V at %{x:.3~s}Hz<extra></extra>",
@@ -140,24 +175,39 @@ def _labels(
 ) -> list[Label]:
     """Name the floor, and every ceiling where it binds or else where it is longest in sight."""
     corridor, (low, high) = result.corridor, ends
-    x = _fraction(corridor.frequency, float(corridor.frequency[0]), float(corridor.frequency[-1]))
+    span = float(corridor.frequency[0]), float(corridor.frequency[-1])
+    x = _fraction(corridor.frequency, *span)
     heights = [_fraction(volts, low, high) for volts in (floor, *ceilings)]
     binding, task = corridor.binding_ceiling(), result.design.task
     wishes = [
         Wish(f"floor: {task.label}", task.kind, x[run], heights[0][run], above=False)
         for run in _longest((heights[0] > 0.0) & (heights[0] < 1.0))
     ]
+    binds, idle = [], []
     for index, bound in enumerate(corridor.ceilings):
         height = heights[index + 1]
-        visible = (binding == index) & (height > 0.0) & (height < 1.0)
-        runs = _slices(visible) or _longest((height > 0.0) & (height < 1.0))
-        wishes += [
-            Wish(bound.label, bound.id, x[run], height[run])
-            for run in runs
-            if visible.any() or x[run][-1] - x[run][0] > _WORTH_A_NAME
-        ]
+        seen = (height > 0.0) & (height < 1.0)
+        lowest = _slices(seen & (binding == index))
+        binds += [Wish(bound.label, bound.id, x[run], height[run]) for run in lowest]
+        if not lowest:
+            idle += [Wish(bound.label, bound.id, x[run], height[run]) for run in _longest(seen)]
+    # What binds is named first; a limit of many particles is not named again for each.
+    for wish in sorted(binds, key=_span, reverse=True):
+        if _span(wish) > _WORTH_A_NAME or wish.key not in {other.key for other in wishes}:
+            wishes.append(wish)
+    for wish in sorted(idle, key=_span, reverse=True):
+        if _span(wish) > _WORTH_A_NAME and wish.key not in {other.key for other in wishes}:
+            wishes.append(wish)
     wishes.sort(key=lambda wish: -wish.x.size)
-    return place_labels(wishes, [(x, height) for height in heights])
+    drive = result.design.drive
+    ring = _fraction(np.array([drive.frequency]), *span) + _RING[0] / WIDTH
+    level = _fraction(np.array([drive.voltage]), low, high) + _RING[1] / HEIGHT
+    return place_labels(wishes, [(ring, level), *((x, height) for height in heights)])
+
+
+def _span(wish: Wish) -> float:
+    """Share of the axis that a stretch covers."""
+    return float(wish.x[-1] - wish.x[0])
 
 
 def _label_trace(labels: list[Label], result: Evaluation, theme: Theme) -> dict[str, Any]:
@@ -174,7 +224,11 @@ def _label_trace(labels: list[Label], result: Evaluation, theme: Theme) -> dict[
         "y": [low * (high / low) ** label.y for label in slots],
         "text": [label.text for label in slots],
         "textposition": "middle center",
-        "textfont": {"size": 13, "color": [limit_colour(theme, label.key) for label in slots]},
+        "textfont": {
+            "size": 13,
+            "color": [limit_colour(theme, label.key) for label in slots],
+            "shadow": ", ".join([f"0 0 3px {theme.paper}"] * 4),  # keeps lines off the letters
+        },
         "hoverinfo": "skip",
         "cliponaxis": False,
         "name": "labels",

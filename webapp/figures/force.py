@@ -6,12 +6,14 @@ import numpy as np
 
 from model.evaluate import Evaluation
 from model.quantity import format_quantity, format_si
+from model.verdict import format_value
 from webapp.figures.theme import (
     Figure,
     Theme,
     axis,
     layout,
     log_axis,
+    nice_ceiling,
     numbers,
     particle_line,
     plain,
@@ -20,23 +22,27 @@ from webapp.figures.theme import (
 
 def force_figure(result: Evaluation, theme: Theme) -> Figure:
     """Draw the largest force along the flow, positive towards strong field."""
-    at, scale = result.spectrum, result.rms_voltage**2 * 1e12
+    at, scale = result.spectrum, result.rms_voltage**2
     x = numbers(at.frequency)
-    curves = [scale * at.force_along_flow(particle) for particle in result.design.particles]
-    top = nice_ceiling(max(float(np.abs(curve).max()) for curve in curves))
+    forces = [scale * at.force_along_flow(particle) for particle in result.design.particles]
+    most = nice_ceiling(max(float(np.abs(force).max()) for force in forces) * 1e12) * 1e-12
+    size, unit = next(item for item in _UNITS if most >= 0.999 * item[0] or item is _UNITS[-1])
+    curves, top = [force / size for force in forces], most / size
+    few = len(curves) <= _MOST_IN_A_ROW
     data: list[dict[str, Any]] = [
         {
             "type": "scatter",
             "mode": "lines",
             "x": x,
             "y": numbers(curve),
-            "name": plain(particle.name),
-            "line": particle_line(theme, index),
+            "name": plain(particle.name if few else _short(particle.name)),
+            "line": {**particle_line(theme, index), "simplify": False},
             "hovertemplate": f"{plain(particle.name)}<br>"
-            "%{y:.3~g} pN at %{x:.3~s}Hz<extra></extra>",
+            f"%{{y:.3~g}} {unit} at %{{x:.3~s}}Hz<extra></extra>",
         }
         for index, (particle, curve) in enumerate(zip(result.design.particles, curves, strict=True))
     ]
+    data += _needs(result, theme, size)
     frequency = result.design.drive.frequency
     data.append(
         {
@@ -54,12 +60,15 @@ def force_figure(result: Evaluation, theme: Theme) -> Figure:
     x_axis = log_axis(theme, "Frequency", float(at.frequency[0]), float(at.frequency[-1]), "Hz")
     y_axis = axis(
         theme,
-        f"Force at {height} (pN)",
+        f"Force at {height} ({unit})",
         range=[-1.05 * top, 1.05 * top],
         zeroline=True,
         zerolinecolor=theme.quiet,
+        tickformat="~g",
     )
-    legend = {"orientation": "h", "x": 0, "y": 1.0, "yanchor": "bottom", "font": {"size": 12}}
+    legend: dict[str, Any] = {"x": 1.01, "y": 1.0, "yanchor": "top", "font": {"size": 11}}
+    if few:
+        legend = {"orientation": "h", "x": 0, "y": 1.0, "yanchor": "bottom", "font": {"size": 12}}
     return {
         "data": data,
         "layout": layout(
@@ -68,9 +77,56 @@ def force_figure(result: Evaluation, theme: Theme) -> Figure:
             yaxis=y_axis,
             showlegend=True,
             legend=legend,
-            margin={"l": 64, "r": 30, "t": 30, "b": 48},
+            margin={"l": 64, "r": 36, "t": 30 if few else 10, "b": 48},
         ),
     }
+
+
+#: Names of more particles than these stand beside the figure, shortened, instead of above it.
+_MOST_IN_A_ROW = 4
+_LONGEST_BESIDE = 18
+
+
+def _short(name: str) -> str:
+    """Name for a legend beside the figure; hover text has it in full."""
+    return name if len(name) <= _LONGEST_BESIDE else name[: _LONGEST_BESIDE - 1].rstrip() + "…"
+
+
+#: Units of force, the largest first, each with its size in N.
+_UNITS = ((1e-6, "µN"), (1e-9, "nN"), (1e-12, "pN"), (1e-15, "fN"))
+
+
+def _needs(result: Evaluation, theme: Theme, size: float) -> list[dict[str, Any]]:
+    """Thin dotted level, for each particle that the task is about, of the force that it needs."""
+    ends = [float(result.frequency[0]), float(result.frequency[-1])]
+    needed = {
+        row.rule.law.subject: row
+        for row in result.ledger
+        if row.rule.id == result.design.task.kind and row.rule.law.power
+    }
+    found = []
+    for index, particle in enumerate(result.design.particles):
+        if (row := needed.get(particle.name)) is None:
+            continue
+        level = (result.design.task.wanted_sign(particle) or 1) * row.allowed / size
+        found.append(
+            {
+                "type": "scatter",
+                "mode": "lines",
+                "x": ends,
+                "y": [level, level],
+                "line": {
+                    "color": particle_line(theme, index)["color"],
+                    "width": 1.5,
+                    "dash": "dot",
+                },
+                "name": f"needed: {plain(particle.name)}",
+                "hovertemplate": f"{plain(particle.name)}<br>needs "
+                f"{format_value(row.allowed, row.rule.unit)}<extra></extra>",
+                "showlegend": False,
+            }
+        )
+    return found
 
 
 def force_sentence(result: Evaluation) -> str:
@@ -78,18 +134,6 @@ def force_sentence(result: Evaluation) -> str:
     pieces = []
     for found in result.particles:
         way = "towards strong field" if found.force > 0 else "towards weak field"
-        size = format_si(abs(found.force), "N")
-        pieces.append(f"{found.particle.name} {size} {way}")
-    return "Now: " + "; ".join(pieces) + "."
-
-
-def nice_ceiling(value: float) -> float:
-    """Round up to 1, 2 or 5 times a power of ten, so that an axis rests while knobs move.
-
-    >>> nice_ceiling(3.2), nice_ceiling(0.0)
-    (5.0, 1.0)
-    """
-    if value <= 0 or not np.isfinite(value):
-        return 1.0
-    power = 10.0 ** np.floor(np.log10(value))
-    return float(next(step * power for step in (1.0, 2.0, 5.0, 10.0) if value <= step * power))
+        size = f"{format_si(abs(found.force), 'N')} {way}" if found.force else "no force"
+        pieces.append(f"{found.particle.name}: {size}")
+    return "Largest along the flow now, dotted what is needed. " + "; ".join(pieces) + "."

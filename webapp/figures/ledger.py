@@ -3,7 +3,7 @@
 from typing import Any
 
 from model.evaluate import Evaluation, LedgerRow
-from model.verdict import MOST_VOLTAGE, format_headroom, format_value, format_volts
+from model.verdict import MOST_VOLTAGE, format_value, format_volts, row_headroom, row_value
 from webapp.figures.theme import Theme, limit_colour
 
 
@@ -18,11 +18,11 @@ def _row(row: LedgerRow, theme: Theme) -> dict[str, Any]:
         "key": f"{row.rule.id}/{row.rule.law.subject}",
         "label": row.rule.label,
         "subject": row.rule.law.subject,
-        "value": format_value(row.value, row.rule.unit),
+        "value": row_value(row),
         "allowed": ("at least " if least else "at most ")
         + format_value(row.allowed, row.rule.unit),
         "bound": _bound(row),
-        "headroom": format_headroom(row.headroom),
+        "headroom": row_headroom(row),
         "fill": _fill(row.headroom),
         "state": "broken" if not row.kept else ("tight" if row.headroom < 1.2 else "kept"),
         "colour": limit_colour(theme, row.rule.id),

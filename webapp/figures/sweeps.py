@@ -7,10 +7,9 @@ import numpy as np
 from model.arrays import Real
 from model.evaluate import Evaluation
 from model.limits import LIMITS
-from model.quantity import format_si
+from model.quantity import format_quantity, format_si
 from model.sweeps import Sweep, sweep
 from model.verdict import format_value
-from webapp.figures.force import nice_ceiling
 from webapp.figures.theme import (
     Figure,
     Theme,
@@ -19,6 +18,7 @@ from webapp.figures.theme import (
     limit_colour,
     log_axis,
     mark,
+    nice_ceiling,
     numbers,
 )
 
@@ -37,12 +37,13 @@ def sweep_of(result: Evaluation, limit: str) -> Sweep:
 def heating_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
     """Draw the temperature rise of the hottest liquid."""
     top = nice_ceiling(1.6 * max(found.value, found.allowed))
-    return _figure(found, result, theme, axis(theme, "Temperature rise (K)", range=[0.0, top]))
+    y_axis = axis(theme, "Temperature rise (K)", range=[0.0, top], tickformat="~g")
+    return _figure(found, result, theme, y_axis)
 
 
 def electrothermal_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
     """Draw electrothermal speed over dielectrophoretic speed."""
-    low = min(1e-4, 10.0 ** np.floor(np.log10(max(found.value, 1e-12))))
+    low = min(1e-4, 10.0 ** np.floor(np.log10(max(found.value, 1e-6))))
     most = max(found.allowed, min(found.value, 1e6))
     high = max(10.0, 10.0 ** np.ceil(np.log10(most) + 0.2))
     title = "Electrothermal / DEP speed"
@@ -53,8 +54,8 @@ def heating_sentence(found: Sweep, result: Evaluation) -> str:
     """Say how warm it gets and what that allows."""
     rise = result.design.liquid.temperature + found.value
     return (
-        f"The hottest liquid is {format_si(found.value, 'K')} above the stage, at "
-        f"{format_value(rise, 'degC')}; {format_si(found.allowed, 'K')} is allowed."
+        f"The hottest liquid is {format_value(found.value, 'K')} above the stage, at "
+        f"{format_value(rise, 'degC')}; a rise of {format_value(found.allowed, 'K')} is allowed."
     )
 
 
@@ -62,7 +63,11 @@ def electrothermal_sentence(found: Sweep, result: Evaluation) -> str:
     """Say whether the liquid or the force wins at the working height."""
     liquid = format_si(result.electrothermal_speed, "m/s")
     force = format_si(result.dielectrophoretic_speed, "m/s")
-    return f"The liquid stirs at up to {liquid} while the force moves particles at up to {force}."
+    height = format_quantity(result.design.task.force_height, "um", 3)
+    return (
+        f"At {height} the liquid stirs at up to {liquid}, while the force moves the slowest "
+        f"particle to be collected at up to {force}."
+    )
 
 
 def _figure(found: Sweep, result: Evaluation, theme: Theme, y_axis: dict[str, Any]) -> Figure:
@@ -79,9 +84,10 @@ def _figure(found: Sweep, result: Evaluation, theme: Theme, y_axis: dict[str, An
         ("x2", conductivity, found.by_conductivity, present * 1e3, "mS/m"),
     )
     for name, at, values, here, unit in panels:
-        hover = f"%{{y:.3~g}} {limit.unit} at %{{x:.3~g}} {unit}<extra></extra>"
+        shown = f"{{y:.3~g}} {limit.unit}" if limit.unit else "{y:.3~g} of the DEP speed"
+        hover = f"%{shown} at %{{x:.3~g}} {unit}<extra></extra>"
         curve = {"type": "scatter", "mode": "lines", "xaxis": name, "hovertemplate": hover}
-        line = {"color": colour, "width": 2.5}
+        line = {"color": colour, "width": 2.5, "simplify": False}
         visible = np.clip(values, low / 30.0, high * 30.0)
         data.append({**curve, "x": numbers(at), "y": numbers(visible), "line": line})
         data.append({**curve, **_threshold(at, found.allowed, limit.unit, colour)})

@@ -106,6 +106,7 @@ def log_axis(theme: Theme, title: str, low: float, high: float, unit: str) -> di
     span = np.log10(high / low)
     steps = (1.0, 2.0, 5.0) if span < 3.0 else (1.0,)
     powers = np.arange(np.floor(np.log10(low)), np.ceil(np.log10(high)) + 1)
+    powers = powers[powers % (1 if span < 7.0 else 2) == 0]
     ticks = [step * 10.0**power for power in powers for step in steps]
     ticks = [tick for tick in ticks if low * 0.999 <= tick <= high * 1.001]
     return axis(
@@ -114,8 +115,23 @@ def log_axis(theme: Theme, title: str, low: float, high: float, unit: str) -> di
         type="log",
         range=[float(np.log10(low)), float(np.log10(high))],
         tickvals=ticks,
-        ticktext=[format_si(tick, unit) if unit else f"{tick:g}" for tick in ticks],
+        ticktext=[format_si(tick, unit) if unit else _plain_tick(tick) for tick in ticks],
     )
+
+
+_RAISED = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
+
+
+def _plain_tick(value: float) -> str:
+    """Tick of a pure number, a power of ten where zeros would have to be counted.
+
+    >>> _plain_tick(0.01), _plain_tick(1e-5), _plain_tick(2000.0)
+    ('0.01', '10⁻⁵', '2000')
+    """
+    power = round(np.log10(value))
+    if 1e-3 <= value < 1e5 or not np.isclose(value, 10.0**power):
+        return f"{value:g}"
+    return "10" + str(power).translate(_RAISED)
 
 
 def layout(theme: Theme, **more: Any) -> dict[str, Any]:
@@ -124,7 +140,7 @@ def layout(theme: Theme, **more: Any) -> dict[str, Any]:
         "paper_bgcolor": theme.paper,
         "plot_bgcolor": theme.paper,
         "font": {"color": theme.text, "family": "system-ui, 'Segoe UI', 'DejaVu Sans', sans-serif"},
-        "margin": {"l": 64, "r": 30, "t": 10, "b": 48},
+        "margin": {"l": 64, "r": 36, "t": 10, "b": 48},
         "showlegend": False,
         "hovermode": "closest",
         "dragmode": False,
@@ -156,3 +172,15 @@ def mark(theme: Theme, x: float, y: float, **more: Any) -> dict[str, Any]:
         "name": "operating point",
         **more,
     }
+
+
+def nice_ceiling(value: float) -> float:
+    """Round up to 1, 2 or 5 times a power of ten, so that an axis rests while knobs move.
+
+    >>> nice_ceiling(3.2), nice_ceiling(0.0)
+    (5.0, 1.0)
+    """
+    if value <= 0 or not np.isfinite(value):
+        return 1.0
+    power = 10.0 ** np.floor(np.log10(value))
+    return float(next(step * power for step in (1.0, 2.0, 5.0, 10.0) if value <= step * power))

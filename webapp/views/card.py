@@ -8,7 +8,11 @@ from dash.development.base_component import Component
 
 def card(name: str, heading: str) -> Component:
     """Place for the figure `name`; the browser draws into it."""
-    place: dict[str, Any] = {"role": "img", "aria-label": heading}
+    place: dict[str, Any] = {
+        "role": "img",
+        "aria-label": heading,
+        "aria-describedby": f"sentence-{name}",
+    }
     exports = [_export(name, heading, kind) for kind in ("png", "svg")]
     return html.Section(
         [

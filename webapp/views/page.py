@@ -25,7 +25,9 @@ _SLATE = [
 
 def page(profiles: dict[str, Design]) -> Component:
     """The whole page, empty of results; the browser then asks for what its address holds."""
-    stores = [dcc.Store(id=name) for name in ("address", "document", "save-request")]
+    stores = [
+        dcc.Store(id=name) for name in ("address", "document", "save-request", "layout-request")
+    ]
     return dmc.MantineProvider(
         id="appearance",
         forceColorScheme="light",
@@ -95,6 +97,7 @@ def _header(profiles: dict[str, Design]) -> Component:
                 **{"aria-label": "Open a demo profile"},
                 size="sm",
                 className="demo",
+                allowDeselect=False,
                 comboboxProps={"width": 320, "position": "bottom-end"},
             ),
             dcc.Upload(
@@ -117,9 +120,15 @@ def _strip() -> Component:
             _knob("Voltage, peak to peak", "drive.voltage", "V", (0.0, 30.0, 0.05), "linear"),
             _knob("Medium conductivity", "liquid.conductivity", "S/m", (-4.0, 0.5, 0.005), "log"),
             html.Div(
-                [html.Strong(id="verdict-headline"), html.Span(id="verdict-sentence")],
-                id="verdict",
-                role="status",
+                [
+                    html.Div(
+                        [html.Strong(id="verdict-headline"), html.Span(id="verdict-sentence")],
+                        id="verdict",
+                        role="status",
+                    ),
+                    html.Button(id="heed", hidden=True, title="Read them below the figures"),
+                ],
+                className="verdict-place",
             ),
         ],
         className="strip",

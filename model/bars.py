@@ -1,0 +1,40 @@
+"""What the layouts of parallel bars share: the bars themselves."""
+
+from typing import Annotated
+
+from model.declare import Count, Quantity
+from model.layout import Layout
+
+
+class Bars(Layout):
+    """Bars across the flow, one after another along it, all of one width and one gap."""
+
+    bar_width: Annotated[
+        float,
+        Quantity(
+            "Bar width",
+            "Of each electrode, along the flow.",
+            unit="um",
+            low="0.5 um",
+            high="2 mm",
+        ),
+    ]
+    gap: Annotated[
+        float,
+        Quantity(
+            "Gap",
+            "Between neighbouring bars, edge to edge.",
+            unit="um",
+            low="0.5 um",
+            high="2 mm",
+        ),
+    ]
+    bar_count: Annotated[
+        int,
+        Count("Bars", "Across the flow, on each face that carries bars.", low=2, high=1000),
+    ]
+
+    @property
+    def pitch(self) -> float:
+        """From the centre of a bar to that of the next, m."""
+        return self.bar_width + self.gap
