@@ -6,6 +6,7 @@ its help and the wording of the report. A new part therefore declares fields and
 """
 
 import re
+from abc import ABC, abstractmethod
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import lru_cache
@@ -34,7 +35,7 @@ class Part(BaseModel):
 
 
 @dataclass(frozen=True)
-class Declared:
+class Declared(ABC):
     """What every declaration tells: how a field is named and explained to a person."""
 
     label: str
@@ -45,9 +46,9 @@ class Declared:
     #: None is a value: "take the usual one", explained by the help.
     optional: bool = field(default=False, kw_only=True)
 
+    @abstractmethod
     def read(self, value: Any, from_person: bool) -> Any:
         """Turn what was given into the field's value or raise :class:`QuantityError`."""
-        raise NotImplementedError
 
     def text(self, value: Any) -> Any:
         """Write a value as it stands in a profile."""
