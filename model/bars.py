@@ -1,9 +1,9 @@
 """What the layouts of parallel bars share: the bars themselves."""
 
-from typing import Annotated
+from typing import Annotated, ClassVar
 
 from model.declare import Count, Quantity
-from model.layout import Layout
+from model.layout import Face, Layout
 
 
 class Bars(Layout):
@@ -38,3 +38,19 @@ class Bars(Layout):
     def pitch(self) -> float:
         """From the centre of a bar to that of the next, m."""
         return self.bar_width + self.gap
+
+
+class OpposedBars(Bars):
+    """Bars whose opposite electrodes lie on the other face of the channel."""
+
+    electrode_faces: ClassVar[tuple[Face, ...]] = ("floor", "lid")
+
+    @property
+    def parallel_length(self) -> float:
+        """Length of all pitches together, m."""
+        return self.bar_count * self.channel_width
+
+    @property
+    def narrowest(self) -> float:
+        """The gap between bars or the height between faces, whichever is less, m."""
+        return min(self.gap, self.channel_height)

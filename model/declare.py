@@ -7,7 +7,7 @@ its help and the wording of the report. A new part therefore declares fields and
 
 import re
 from abc import ABC, abstractmethod
-from collections.abc import Iterator, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from functools import lru_cache
 from typing import Any
@@ -225,9 +225,12 @@ class Text(Declared):
         return f"text of at most {self.longest} characters"
 
 
-def declarations(part: type[BaseModel]) -> Iterator[tuple[str, Declared]]:
+@lru_cache(maxsize=256)  # a class never changes its declarations
+def declarations(part: type[BaseModel]) -> tuple[tuple[str, Declared], ...]:
     """Profile key and declaration of each declared field of `part`, in order."""
-    for name, info in part.model_fields.items():
-        for extra in info.metadata:
-            if isinstance(extra, Declared):
-                yield info.alias or name, extra
+    return tuple(
+        (info.alias or name, extra)
+        for name, info in part.model_fields.items()
+        for extra in info.metadata
+        if isinstance(extra, Declared)
+    )

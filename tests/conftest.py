@@ -1,9 +1,11 @@
 """What tests share: the demo designs, each chip solved once, and designs made at random."""
 
 import copy
+import os
 from pathlib import Path
 
 import pytest
+from hypothesis import settings
 from hypothesis import strategies as st
 
 from model.declare import Choice, Count, Flag, Quantity, Text, declarations
@@ -15,6 +17,12 @@ from model.liquid.liquid import Liquid
 from model.particles import PARTICLES
 from model.profile import document, load_profile, parse_design
 from model.quantity import plain_text
+
+# The same examples in every run, so that a change and not chance decides what passes. To search
+# on with new ones: HYPOTHESIS_PROFILE=search python -m pytest -m "not browser"
+settings.register_profile("steady", derandomize=True)
+settings.register_profile("search", max_examples=300)
+settings.load_profile(os.environ.get("HYPOTHESIS_PROFILE", "steady"))
 
 PROFILES = Path(__file__).resolve().parent.parent / "demo_profiles"
 

@@ -13,7 +13,7 @@ from model.quantity import DIGITS, format_quantity, format_si
 from model.verdict import verdict
 from model.version import VERSION
 from webapp.controls import all_fields, summaries
-from webapp.figures.theme import THEMES, Theme
+from webapp.figures.theme import THEMES, Theme, particle_line
 from webapp.link import encode
 from webapp.services import Services
 from webapp.state import design_of, read_request
@@ -35,11 +35,12 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
         design = design_of(request)
     except DesignError as problem:
         return error_answer(request.number, problem)
-    result = services.evaluate(design)
+    result, theme = services.evaluate(design), THEMES[request.theme]
     return {
         **state_answer(request.number, result),
         "texts": tidied(design, request.values),
-        **view(result, THEMES[request.theme]),
+        "colours": [particle_line(theme, index)["color"] for index in range(len(design.particles))],
+        **view(result, theme),
     }
 
 

@@ -1,6 +1,7 @@
 """The command line: check a profile, write spectra, serve the dashboard."""
 
 import argparse
+import gc
 import io
 import json
 import os
@@ -91,6 +92,9 @@ def _serve(options: argparse.Namespace) -> int:
     print(f"Slackwater {VERSION} is at {address} (stop with Ctrl-C)", flush=True)
     if options.open:
         threading.Timer(0.8, webbrowser.open, [address]).start()
+    # What start-up made stays for good; the collector need not look at it at every answer.
+    gc.collect()
+    gc.freeze()
     serve(app.server, host=options.host, port=options.port, threads=8, ident=None)
     return INSIDE
 

@@ -206,9 +206,7 @@ def _layout(design: Design) -> Component:
 def _particles(design: Design) -> list[Component]:
     found: list[Component] = []
     for index, particle in enumerate(design.particles):
-        swatch = html.Span(
-            className=f"swatch swatch-{index % 7} dash-{DASHES[index % len(DASHES)]}", **HIDDEN
-        )
+        swatch = html.Span(className=f"swatch dash-{DASHES[index % len(DASHES)]}", **HIDDEN)
         name = html.Span(particle.name, id=f"particle-name-{index}")
         kind = html.Span(particle.kind.replace("-", " "), className="section-note")
         found.append(

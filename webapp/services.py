@@ -14,7 +14,7 @@ DEMO_PROFILES = Path(__file__).resolve().parent.parent / "demo_profiles"
 #: The one that a visitor without a link sees.
 FIRST_PROFILE = "rinse-water-yeast"
 #: Points of the frequency axis on screen.
-SCREEN_POINTS = 240
+SCREEN_POINTS = 200
 
 
 @dataclass(frozen=True)

@@ -48,6 +48,8 @@ class Fold:
         if self.period is not None:
             turns = np.round(x / self.period) if self.mirrored else np.floor(x / self.period)
             place = x - turns * self.period
+            if not self.mirrored:
+                place = np.clip(place, 0.0, self.period)  # rounding must not lead outside
             if self.alternation < 0:
                 sign = np.where(turns % 2 == 0, 1.0, -1.0)
         if self.mirrored:

@@ -1,18 +1,16 @@
 """Bars on the floor under a lid that is one electrode."""
 
-from typing import ClassVar, Literal
+from typing import Literal
 
-from model.bars import Bars
+from model.bars import OpposedBars
 from model.fields.layered import Channel, Span, layered
 from model.fields.section import Fold, Section
-from model.layout import Face
 
 
-class BarsUnderPlate(Bars):
+class BarsUnderPlate(OpposedBars):
     """All bars at one voltage, the whole ceiling at the opposite one."""
 
     layout: Literal["bars-under-plate"] = "bars-under-plate"
-    electrode_faces: ClassVar[tuple[Face, ...]] = ("floor", "lid")
 
     def section(self, refinement: int = 0) -> Section:
         """Half a pitch, from a bar's centre to the middle of the gap."""
@@ -42,16 +40,6 @@ class BarsUnderPlate(Bars):
             outsides=piece.outsides,
             rests=piece.rests,
         )
-
-    @property
-    def parallel_length(self) -> float:
-        """Length of all pitches together, m."""
-        return self.bar_count * self.channel_width
-
-    @property
-    def narrowest(self) -> float:
-        """The gap between bars or the height below the plate, whichever is less, m."""
-        return min(self.gap, self.channel_height)
 
     @property
     def double_layer_width(self) -> float:

@@ -1,26 +1,24 @@
 """Bars on the floor that face bars on the lid."""
 
-from typing import Annotated, ClassVar, Literal
+from typing import Annotated, Literal
 
 from pydantic import model_validator
 from pydantic_core import PydanticCustomError
 
-from model.bars import Bars
+from model.bars import OpposedBars
 from model.declare import Quantity
 from model.fields.layered import Channel, Span, layered
 from model.fields.section import Fold, Section
-from model.layout import Face
 from model.quantity import format_quantity
 
 #: Share of half a pitch by which rounding may move an offset.
 _ROUNDING = 1e-9
 
 
-class FacingBars(Bars):
+class FacingBars(OpposedBars):
     """All bars of the floor at one voltage, all bars of the lid at the opposite one."""
 
     layout: Literal["facing-bars"] = "facing-bars"
-    electrode_faces: ClassVar[tuple[Face, ...]] = ("floor", "lid")
     offset: Annotated[
         float,
         Quantity(
@@ -76,16 +74,6 @@ class FacingBars(Bars):
             rests=piece.rests,
             joined=None if mirrored else ("left", "right"),
         )
-
-    @property
-    def parallel_length(self) -> float:
-        """Length of all pitches together, m."""
-        return self.bar_count * self.channel_width
-
-    @property
-    def narrowest(self) -> float:
-        """The gap between bars or the height between faces, whichever is less, m."""
-        return min(self.gap, self.channel_height)
 
     @property
     def double_layer_width(self) -> float:

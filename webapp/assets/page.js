@@ -106,7 +106,11 @@
     page.caption = answer.caption;
     for (const [path, found] of Object.entries(answer.knobs)) page.knobs.place(path, found);
     for (const [key, words] of Object.entries(answer.summaries)) text("summary-" + key, words);
-    answer.names.forEach((name, index) => text("particle-name-" + index, name));
+    answer.names.forEach((name, index) => {
+      text("particle-name-" + index, name);
+      const label = byId("particle-name-" + index);
+      if (label) label.previousElementSibling.style.color = answer.colours[index];
+    });
     tidy(answer.texts);
     items("notes", answer.notes);
     items("cautions", answer.cautions);
