@@ -7,7 +7,7 @@ its help and the wording of the report. A new part therefore declares fields and
 
 import re
 from abc import ABC, abstractmethod
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from functools import lru_cache
 from typing import Any
@@ -234,3 +234,30 @@ def declarations(part: type[BaseModel]) -> tuple[tuple[str, Declared], ...]:
         for extra in info.metadata
         if isinstance(extra, Declared)
     )
+
+
+def counted(one: str, most: int, form: str) -> Callable[[Any], Any]:
+    """Make a check that refuses what is no list, or of a wrong length, before its items are read.
+
+    Parameters
+    ----------
+    one
+        Word for one item.
+    most
+        Most items.
+    form
+        How the list is to be written.
+    """
+
+    def check(value: Any) -> Any:
+        if not isinstance(value, list | tuple):
+            problem = f"must be a list of {form}"
+        elif not value:
+            problem = f"needs at least one {one}"
+        elif len(value) > most:
+            problem = f"has {len(value)} {one}s; at most {most} {one}s can be used"
+        else:
+            return value
+        raise PydanticCustomError("declared", "{problem}", {"problem": problem})
+
+    return check

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Annotated, Any
 from pydantic import BeforeValidator, ConfigDict, Field, create_model, model_validator
 from pydantic_core import PydanticCustomError
 
-from model.declare import Part, Quantity, Text
+from model.declare import Part, Quantity, Text, counted
 from model.layout import Layout
 from model.layouts import LAYOUTS
 from model.limits import LIMITS
@@ -116,19 +116,6 @@ else:
     Limits = create_model("Limits", __base__=Part, **_thresholds)
 
 
-def _counted(value: Any) -> Any:
-    """Refuse what is no list, or of the wrong length, before any particle is looked at."""
-    if not isinstance(value, list | tuple):
-        problem = "must be a list of tables, one for each particle"
-    elif not value:
-        problem = "needs at least one particle"
-    elif len(value) > MOST_PARTICLES:
-        problem = f"has {len(value)} particles; at most {MOST_PARTICLES} can be used"
-    else:
-        return value
-    raise PydanticCustomError("declared", "{problem}", {"problem": problem})
-
-
 class Design(Part):
     """A whole design: task, chip, liquid, drive, flow, particles and limits."""
 
@@ -145,7 +132,7 @@ class Design(Part):
     flow: Flow = Flow()
     particles: Annotated[
         tuple[Annotated[Particle, OneOf(PARTICLES, "kind")], ...],
-        BeforeValidator(_counted),
+        BeforeValidator(counted("particle", MOST_PARTICLES, "tables, one for each particle")),
         Field(alias="particle"),
     ]
     limits: Limits = Limits()

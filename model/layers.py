@@ -4,11 +4,10 @@ from collections.abc import Mapping
 from typing import Annotated, Any
 
 from pydantic import BeforeValidator, Discriminator, Tag
-from pydantic_core import PydanticCustomError
 from scipy.constants import epsilon_0
 
 from model.arrays import Complex, Real
-from model.declare import Part, Quantity, Text
+from model.declare import Part, Quantity, Text, counted
 from model.polarisation import complex_permittivity
 
 #: Most layers around one core.
@@ -108,19 +107,6 @@ def _tag(value: Any) -> str | None:
     return "layer" if isinstance(value, Layer) else None
 
 
-def _counted(value: Any) -> Any:
-    """Refuse what is no list, and more layers than are read, before each is looked at."""
-    if not isinstance(value, list | tuple):
-        problem = "must be a list of layers, core outward"
-    elif not value:
-        problem = "needs at least one layer"
-    elif len(value) > MOST_LAYERS:
-        problem = f"has {len(value)} layers; at most {MOST_LAYERS} layers can be used"
-    else:
-        return value
-    raise PydanticCustomError("declared", "{problem}", {"problem": problem})
-
-
 #: One layer: with a thickness, or a membrane by capacitance and conductance.
 AnyLayer = Annotated[
     Annotated[Layer, Tag("layer")] | Annotated[Membrane, Tag("membrane")],
@@ -131,4 +117,6 @@ AnyLayer = Annotated[
     ),
 ]
 #: Layers around a core, outward.
-Layers = Annotated[tuple[AnyLayer, ...], BeforeValidator(_counted)]
+Layers = Annotated[
+    tuple[AnyLayer, ...], BeforeValidator(counted("layer", MOST_LAYERS, "layers, core outward"))
+]

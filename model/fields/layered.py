@@ -20,7 +20,7 @@ WALL_REACH = 2.0
 EDGE_CELL = 6e-4
 #: The same where no mirror plane halves the piece, with four edges on a grid of lines from all:
 #: with the finer cells a solve would take many seconds.
-WHOLE_EDGE_CELL = 6e-3
+WHOLE_EDGE_CELL = 1.5e-3
 #: Longest cell over the pitch, near the electrodes.
 LONGEST = 0.15
 #: Edges of floor and lid nearer than this, over the first cell, share a grid line; moving an edge
