@@ -5,6 +5,8 @@ from numpy.typing import NDArray
 
 Real = NDArray[np.float64]
 Complex = NDArray[np.complex128]
+#: Real where all is in phase, else complex.
+Phasor = Real | Complex
 
 
 def read_only(array: Real) -> Real:

@@ -3,10 +3,10 @@
 from typing import Annotated, ClassVar
 
 from model.declare import Count, Quantity
-from model.layout import Face, Layout
+from model.layout import Face, FlatChannel
 
 
-class Bars(Layout):
+class Bars(FlatChannel):
     """Bars across the flow, one after another along it, all of one width and one gap."""
 
     bar_width: Annotated[

@@ -51,7 +51,7 @@ def notes(result: Evaluation) -> tuple[str, ...]:
     found = []
     line, design = result.point.line, result.design
     steepest = int(np.abs(line.gradient[0]).argmax())  # where the force along the flow is taken
-    square = float((line.field[:, steepest] ** 2).sum())
+    square = float(line.square[steepest])
     length = square / float(np.hypot(*line.gradient[:, steepest]))
     for particle in design.particles:
         radius = particle.equivalent_radius

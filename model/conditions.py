@@ -3,6 +3,7 @@
 Everything here is a coefficient of a power of the voltage; nothing depends on the voltage itself.
 """
 
+from collections.abc import Sequence
 from dataclasses import dataclass, field
 from functools import cached_property
 
@@ -62,7 +63,7 @@ class Conditions:
     def wall_distance(self) -> float:
         """From particle centres at the force height to the nearer of floor and lid, m."""
         height = self.design.task.force_height
-        return min(height, self.design.chip.channel_height - height)
+        return min(height, self.design.chip.height - height)
 
     @cached_property
     def line(self) -> Line:
@@ -90,14 +91,35 @@ class Conditions:
         heights = self.design.task.exposure_heights(particle, self.design.chip)
         return max(_with_gradient(self.patterns.line(height), radius) for height in heights)
 
-    def _force_scale(self, particle: Particle) -> Real:
-        """Signed factor from a pattern of ∇|Ê|² to force: 2π ε a³ Re K · duty, F m²."""
+    def _force_scale(self, particle: Particle) -> float:
+        """From Re K times a force pattern to force: 2π ε a³ · duty, F m²."""
         size = 2.0 * np.pi * self.liquid.permittivity * particle.equivalent_radius**3
-        return np.asarray(size * self.design.drive.duty * self.polarisation(particle).real)
+        return float(size * self.design.drive.duty)
+
+    def _force_weights(self, particle: Particle) -> tuple[Real, ...]:
+        """Factors of the force patterns: Re K of ∇|Ê|² and Im K of a travelling field."""
+        factor = self.polarisation(particle)
+        return (factor.real, factor.imag)[: 1 if self.line.travelling is None else 2]
+
+    @cached_property
+    def _force_patterns(self) -> tuple[Real, ...]:
+        """∇|Ê|² and, of a travelling field, its own pattern along the line, (2, n) each."""
+        moving = self.line.travelling
+        return (self.line.gradient,) if moving is None else (self.line.gradient, moving)
 
     def force_along_flow(self, particle: Particle) -> Real:
-        """Largest force along the flow over one period, N/V², with the sign of Re K."""
-        return np.asarray(self._force_scale(particle) * np.abs(self.line.gradient[0]).max())
+        """Largest force against the flow over one period, N/V², with the sign of Re K.
+
+        Where the field does not travel it is the largest along the flow as well.
+        """
+        weights = self._force_weights(particle)
+        if len(weights) == 1:
+            pull = weights[0] * np.abs(self.line.gradient[0]).max()
+        else:
+            along = np.stack([pattern[0] for pattern in self._force_patterns])
+            most = (-np.stack(weights, axis=-1) @ along).max(axis=-1)
+            pull = np.copysign(np.maximum(most, 0.0), weights[0])
+        return np.asarray(self._force_scale(particle) * pull)
 
     def dielectrophoretic_speed(self, particle: Particle) -> Real:
         """Largest speed that the force gives at the force height, m/s per V².
@@ -105,36 +127,43 @@ class Conditions:
         Each direction with its own wall correction of the drag.
         """
         radius = particle.equivalent_radius
-        along, away = self.line.gradient
         relative = self.wall_distance / radius
-        eased = np.hypot(along / drag_parallel(relative), away / drag_perpendicular(relative))
+        slowed = np.array([drag_parallel(relative), drag_perpendicular(relative)])[:, None]
+        patterns = [pattern / slowed for pattern in self._force_patterns]
         drag = 6.0 * np.pi * self.liquid.viscosity * radius
-        return np.abs(self._force_scale(particle)) * float(eased.max()) / drag
+        return (
+            self._force_scale(particle) / drag * _largest(self._force_weights(particle), patterns)
+        )
+
+    def electrothermal_weights(self) -> tuple[Real, ...]:
+        """Factors of U₁, U₂ and, of a travelling field, U₃ in the electrothermal velocity.
+
+        With s = ωε/σ: (α − β)/(1 + s²), −α/2 and s(α − β)/(1 + s²), 1/K, from
+        <f> = Re[ε(α − β)(∇T·E)E*/(1 + js)] − ½εα|E|²∇T in rms fields, Ramos et al. 1998
+        J. Phys. D 31:2338. They broadcast over frequency and conductivity.
+        """
+        liquid = self.liquid
+        relaxation = self.omega * liquid.permittivity / self.conductivity
+        first = (liquid.permittivity_slope - liquid.conductivity_slope) / (1.0 + relaxation**2)
+        weights = (first, np.full_like(first, -0.5 * liquid.permittivity_slope))
+        return weights if self.line.flow_3 is None else (*weights, relaxation * first)
+
+    @property
+    def electrothermal_scale(self) -> Real:
+        """From weighted flow patterns to speed: εσ·duty²/(kηL), K m/s per V⁴."""
+        liquid = self.liquid
+        scale = liquid.permittivity * self.conductivity * self.design.drive.duty**2
+        scale = scale / (self.patterns.thermal_conductivity * liquid.viscosity)
+        return np.asarray(scale / self.patterns.length)
 
     @cached_property
     def electrothermal_speed(self) -> Real:
-        """Largest electrothermal speed at the force height, m/s per V⁴.
-
-        u = (εσV⁴/(kηL))·[(α − β)/(1 + (ωε/σ)²)·U₁ − (α/2)·U₂], Ramos et al. 1998
-        J. Phys. D 31:2338, rms fields.
-        """
-        liquid, line = self.liquid, self.line
-        relaxation = self.omega * liquid.permittivity / self.conductivity
-        first = (liquid.permittivity_slope - liquid.conductivity_slope) / (1.0 + relaxation**2)
-        second = -0.5 * liquid.permittivity_slope
-        # |a U₁ + b U₂|² at every x, as one product over the three sums that the lines give.
-        sums = np.stack(
-            [
-                (line.flow_1**2).sum(axis=0),
-                2.0 * (line.flow_1 * line.flow_2).sum(axis=0),
-                (line.flow_2**2).sum(axis=0),
-            ]
+        """Largest electrothermal speed at the force height, m/s per V⁴."""
+        line = self.line
+        flows = [flow for flow in (line.flow_1, line.flow_2, line.flow_3) if flow is not None]
+        return np.asarray(
+            self.electrothermal_scale * _largest(self.electrothermal_weights(), flows)
         )
-        weights = np.stack([first**2, first * second, np.full_like(first, second**2)], axis=-1)
-        fastest = np.sqrt(np.maximum((weights @ sums).max(axis=-1), 0.0))
-        scale = liquid.permittivity * self.conductivity * self.design.drive.duty**2
-        scale = scale / (self.patterns.thermal_conductivity * liquid.viscosity)
-        return np.asarray(scale * fastest / self.patterns.length)
 
     @cached_property
     def heating(self) -> Real:
@@ -144,19 +173,47 @@ class Conditions:
 
     @cached_property
     def admittance(self) -> Complex:
-        """Admittance of all that conducts in parallel, S: (σ + jωε) · cell factor · length."""
+        """Admittance of all that conducts in parallel, S: (σ + jωε) · cell factor · length.
+
+        Its real part times V_rms² is the power of all phases together.
+        """
         length = self.patterns.cell_factor * self.design.chip.parallel_length
         return np.asarray((self.conductivity + 1j * self.omega * self.liquid.permittivity) * length)
+
+    @property
+    def terminal_admittance(self) -> Complex:
+        """Current into one terminal over the voltage between opposite phases, S.
+
+        2/N of the whole of N phases, each fed at half that voltage: the power of all is the same.
+        """
+        return np.asarray(2.0 / self.design.chip.terminals * self.admittance)
 
     def flow_speed(self, height: float) -> float:
         """Speed of the undisturbed flow at a height, mid-width, m/s."""
         chip = self.design.chip
-        return float(
-            local_speed(self.design.flow.rate, chip.channel_height, chip.channel_width, height)
-        )
+        return float(local_speed(self.design.flow.rate, chip.height, chip.channel_width, height))
+
+
+def _largest(weights: Sequence[Real], patterns: Sequence[Real]) -> Real:
+    """Largest |Σ wᵢ pᵢ| along a line, of patterns (2, n) and factors (…, n_frequency).
+
+    The square at every place is one product over the sums pᵢ·pⱼ that the patterns give.
+    """
+    pairs = [(i, j) for i in range(len(patterns)) for j in range(i, len(patterns))]
+    sums = np.stack(
+        [(1 if i == j else 2) * (patterns[i] * patterns[j]).sum(axis=0) for i, j in pairs]
+    )
+    products = np.stack([weights[i] * weights[j] for i, j in pairs], axis=-1)
+    return np.asarray(np.sqrt(np.maximum((products @ sums).max(axis=-1), 0.0)))
 
 
 def _with_gradient(line: Line, radius: float) -> float:
-    """Largest |E| + 5/18·a|∇E²|/|E| along a line."""
-    field = np.hypot(*line.field)
-    return float((field + 5.0 / 18.0 * radius * np.hypot(*line.gradient) / field).max())
+    """Largest |E| + 5/18·a|∇E²|/|E| along a line, |E| the longest that the field gets in a period.
+
+    The tip of a field of two components runs along an ellipse; its longer half axis is
+    √(½(|E₀|² + |E₁|² + |(E₀ + jE₁)²|)).
+    """
+    square = line.square
+    longest = np.sqrt(0.5 * (square + np.abs((line.field**2).sum(axis=0))))
+    spread = 5.0 / 18.0 * radius * np.hypot(*line.gradient) / np.sqrt(square)
+    return float((longest + spread).max())

@@ -167,7 +167,7 @@ def _misfits(design: Design) -> Iterable[tuple[str, str]]:
         yield "particle.0.role", "at least one particle must have the role collect"
     if design.chip.floor.outside == design.chip.lid.outside == "insulated":
         yield "chip.lid.outside", "must let heat out when the floor is insulated"
-    height, channel = design.task.force_height, design.chip.channel_height
+    height, channel = design.task.force_height, design.chip.height
     for particle in design.collected:
         clear = CLEARANCE * particle.equivalent_radius
         slack = 1e-9 * height  # so that the told bounds themselves can be typed

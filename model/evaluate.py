@@ -57,7 +57,7 @@ class ParticleResult:
 
 @dataclass(frozen=True)
 class ChipLoad:
-    """The chip as the generator sees it, SI."""
+    """The chip as the generator sees it, SI; the current is that into one terminal."""
 
     resistance: float
     capacitance: float
@@ -200,7 +200,7 @@ class Evaluation:
         return ChipLoad(
             1.0 / admittance.real,
             admittance.imag / omega,
-            abs(admittance) * self.rms_voltage,
+            abs(self.point.terminal_admittance[0]) * self.rms_voltage,
             power,
         )
 

@@ -19,18 +19,9 @@ class Layout(Part, ABC):
     """
 
     layout: str
-    #: Faces of the channel that carry electrodes.
-    electrode_faces: ClassVar[tuple[Face, ...]]
-    channel_height: Annotated[
-        float,
-        Quantity(
-            "Channel height",
-            "Liquid depth between floor and lid.",
-            unit="um",
-            low="5 um",
-            high="2 mm",
-        ),
-    ]
+    #: Whether x and y span the cross-section, y up from the floor, or the plan, y across the
+    #: channel and everything uniform over its depth.
+    view: ClassVar[Literal["section", "plan"]] = "section"
     channel_width: Annotated[
         float,
         Quantity(
@@ -53,6 +44,16 @@ class Layout(Part, ABC):
 
     @property
     @abstractmethod
+    def height(self) -> float:
+        """Depth of the liquid between floor and lid, m."""
+
+    @property
+    def terminals(self) -> int:
+        """Number of phases, each fed by a terminal of its own."""
+        return 2
+
+    @property
+    @abstractmethod
     def parallel_length(self) -> float:
         """Total length of what carries current in parallel, m.
 
@@ -71,6 +72,32 @@ class Layout(Part, ABC):
 
         Times their capacitance per area it is the capacitance per metre of `parallel_length`.
         """
+
+    @abstractmethod
+    def contact_heights(self, radius: float) -> tuple[float, ...]:
+        """Heights of the centre of a sphere that touches a face with electrodes, m."""
+
+
+class FlatChannel(Layout):
+    """Electrodes on floor or lid of a flat channel, seen in cross-section."""
+
+    #: Faces of the channel that carry electrodes.
+    electrode_faces: ClassVar[tuple[Face, ...]]
+    channel_height: Annotated[
+        float,
+        Quantity(
+            "Channel height",
+            "Liquid depth between floor and lid.",
+            unit="um",
+            low="5 um",
+            high="2 mm",
+        ),
+    ]
+
+    @property
+    def height(self) -> float:
+        """The channel height, m."""
+        return self.channel_height
 
     def contact_heights(self, radius: float) -> tuple[float, ...]:
         """Heights of the centre of a sphere that touches a face with electrodes, m.

@@ -11,7 +11,7 @@ from pydantic import BaseModel
 
 from model.declare import Choice, Count, Declared, Flag, Quantity, declarations
 from model.design import Design
-from model.layout import Layout
+from model.layout import FlatChannel, Layout
 from model.layouts import LAYOUTS
 from model.quantity import format_quantity
 from webapp.figures.theme import DASHES
@@ -49,7 +49,7 @@ def fields(part: BaseModel, path: str) -> Iterator[Field]:
     """Declared fields of one part, not of the parts within it; a layout's own before the shared."""
     found = list(declarations(type(part)))
     if isinstance(part, Layout):
-        found.sort(key=lambda item: item[0] in Layout.model_fields)
+        found.sort(key=lambda item: item[0] in FlatChannel.model_fields)
     for key, declared in found:
         place = _join(path, key)
         if place not in ELSEWHERE:

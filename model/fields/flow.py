@@ -42,11 +42,14 @@ def solve_flow(
     forces: Sequence[Real],
     mirrors: Mapping[str, int],
     moving: Mapping[str, Callable[[Real], Real]] | None = None,
+    *,
+    odd: bool = False,
 ) -> list[Real]:
     """Solve −∇²u + ∇p = f, ∇·u = 0 for several forces with one factorisation.
 
-    No slip holds on every side of the mesh but the mirror planes, which the flow does not cross
-    and along which it slips freely. Joined sides are no sides.
+    No slip holds on every side of the mesh but the mirror planes. A flow like its mirror image
+    does not cross them and slips freely along them; an odd one crosses them at right angles,
+    with no pressure there. Joined sides are no sides.
 
     Parameters
     ----------
@@ -56,6 +59,8 @@ def solve_flow(
         Named straight mirror planes and the axis (0 for x, 1 for y) they stand across.
     moving
         Velocity of named sides, x (2, n…) ↦ (2, n…), instead of rest.
+    odd
+        Whether forces and flow are the reverse of their mirror images.
 
     Returns
     -------
@@ -66,7 +71,7 @@ def solve_flow(
     velocity = pair.velocity
     size = velocity.size
     system, scale = _system(pair)
-    held = _held(velocity, mirrors)
+    held = _held(velocity, mirrors, odd)
     factor = factorise(system, np.concatenate([held[0], size + held[1]]))
     sides = [_side_velocity(velocity, moving or {}, axis) for axis in (0, 1)]
     rest = np.concatenate([*sides, np.zeros(scale.size)])
@@ -114,7 +119,7 @@ def _system(pair: FlowSpace) -> tuple[CellSystem, Real]:
     return CellSystem(blocks, numbers[order], count, 2 * velocity.size + pressure.size), scale
 
 
-def _held(velocity: Space, mirrors: Mapping[str, int]) -> list[Index]:
+def _held(velocity: Space, mirrors: Mapping[str, int], odd: bool) -> list[Index]:
     """Unknowns of each component that stand still (or move with a side)."""
     mesh = velocity.mesh
     free_sides = [mesh.boundaries[name] for name in mirrors]
@@ -123,7 +128,7 @@ def _held(velocity: Space, mirrors: Mapping[str, int]) -> list[Index]:
     walls = np.setdiff1d(mesh.boundary_facets(), np.concatenate([*free_sides, []]))
     still = velocity.on_facets(walls.astype(int))
     across = [
-        velocity.on(*(name for name, normal in mirrors.items() if normal == axis))
+        velocity.on(*(name for name, normal in mirrors.items() if (normal == axis) != odd))
         for axis in (0, 1)
     ]
     return [np.union1d(still, part) for part in across]

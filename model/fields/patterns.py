@@ -1,16 +1,18 @@
 """A solved chip: patterns that any voltage, liquid and frequency merely scale."""
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
 import numpy as np
-from numpy.typing import ArrayLike
+from numpy.typing import ArrayLike, NDArray
 
-from model.arrays import Real
+from model.arrays import Complex, Phasor, Real
 from model.fields.lines import Line, LineTable
 from model.fields.piecewise import Piecewise
 from model.fields.section import Fold, Rest
 from model.fields.stored import Stored
+
+Values = TypeVar("Values", Real, Complex, Phasor)
 
 if TYPE_CHECKING:
     from model.layout import Layout
@@ -25,10 +27,16 @@ class ChipPatterns(Stored):
 
     - field E = V·Ê, with Ê from :meth:`electric_field` in 1/m;
     - temperature rise ΔT = (σV²/k)·Θ, Θ from :meth:`temperature`;
-    - electrothermal velocity u = (εσV⁴/(kηL))·[(α − β)/(1 + (ωε/σ)²)·U₁ − (α/2)·U₂], U from
-      :meth:`electrothermal`, L the attribute `length`;
+    - force on a small sphere of radius a and polarisation factor K
+      F = 2πεa³V²·(Re K·∇|Ê|² + Im K·S), with :meth:`gradient_e2` and S from :meth:`travelling`;
+    - electrothermal velocity, with s = ωε/σ,
+      u = (εσV⁴/(kηL))·[(α − β)/(1 + s²)·(U₁ + s·U₃) − (α/2)·U₂], U from
+      :meth:`electrothermal` and :meth:`electrothermal_travelling`, L the attribute `length`;
     - capacitance of one gap (of one pitch, if floor and lid are opposite) per metre of bar
       C = ε·`cell_factor`, its conductance σ·`cell_factor`.
+
+    A drive of several phases gives a complex Ê = Ê₀ + jÊ₁; S and U₃ are what its two components
+    add together, and vanish for a drive of one phase.
 
     Coordinates in m: x from a bar's centre along the flow, any x; y from the floor.
     Ohmic heat alone is counted, and its change of σ, ε and η is not fed back: right for rises of
@@ -70,8 +78,10 @@ class ChipPatterns(Stored):
         """Repeat of the quadratic patterns along x, m."""
         return self.fold.period
 
-    def electric_field(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
+    def electric_field(self, x: ArrayLike, y: ArrayLike) -> tuple[Phasor, Phasor]:
         """Field Ê = −∇φ in 1/m, that is V/m per volt; `fold` tells how it repeats.
+
+        Complex if the drive has two components.
 
         Parameters
         ----------
@@ -84,19 +94,38 @@ class ChipPatterns(Stored):
             If a place is not in the liquid.
         """
         spots = _spots(x, y)
-        place, side, sign = self.fold.fold(spots.x)
-        slopes = self.potential.slopes(*_within(self.potential, place, spots.y))[0]
-        flip = side if self.fold.parity == 1 else np.ones_like(side)
-        lift = np.ones_like(side) if self.fold.parity == 1 else side
-        return spots.shaped(-slopes[0] * sign * flip), spots.shaped(-slopes[1] * sign * lift)
+        place, side, signs = self.fold.fold(spots.x)
+        field = -self.potential.slopes(*_within(self.potential, place, spots.y))
+        field = field * signs[:, None]
+        field[:, 0] *= side
+        return spots.shaped(_phasor(field[:, 0])), spots.shaped(_phasor(field[:, 1]))
 
     def gradient_e2(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
-        """∇|Ê|² = 2(Ê·∇)Ê in 1/m³; arguments and errors as :meth:`electric_field`."""
+        """∇|Ê|² = 2 Re (Ê*·∇)Ê in 1/m³; arguments and errors as :meth:`electric_field`."""
+        return self._force_pattern(x, y, 0)
+
+    def travelling(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
+        """S = 2(Ê₀·∂ᵢÊ₁ − Ê₁·∂ᵢÊ₀) in 1/m³, what a travelling or turning field adds.
+
+        −2k|Ê|² along a wave exp(j(ωt − kx)). Arguments and errors as :meth:`electric_field`.
+        """
+        return self._force_pattern(x, y, 1)
+
+    def _force_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
         spots = _spots(x, y)
-        place, side, _ = self.fold.fold(spots.x)
-        located = _within(self.potential, place, spots.y)
-        gradient = self.potential.square_gradients(*located)[0]
-        return spots.shaped(gradient[0] * side), spots.shaped(gradient[1])
+        place, side, signs = self.fold.fold(spots.x)
+        found = self.potential.force_patterns(*_within(self.potential, place, spots.y))
+        if which == len(found):
+            return np.zeros(spots.shape), np.zeros(spots.shape)
+        lift = signs.prod(axis=0) if which else 1.0
+        return spots.shaped(found[which][0] * side * lift), spots.shaped(found[which][1] * lift)
+
+    def inside(self, x: ArrayLike, y: ArrayLike) -> NDArray[np.bool_]:
+        """Whether places are in the liquid."""
+        spots = _spots(x, y)
+        place, _, _ = self.fold.fold(spots.x)
+        cell, _ = self.potential.cells.locate(np.stack([place, spots.y]))
+        return (cell >= 0).reshape(spots.shape)
 
     def temperature(self, x: ArrayLike, y: ArrayLike) -> Real:
         """Temperature rise Θ = ΔT·k/(σV²) in liquid and walls.
@@ -125,13 +154,22 @@ class ChipPatterns(Stored):
         Arguments and errors as :meth:`electric_field`. The liquid as a whole is not pumped:
         without a pressure difference no net flow is driven along a symmetric array.
         """
+        first, second = (self._flow_pattern(x, y, which) for which in (0, 1))
+        return first, second
+
+    def electrothermal_travelling(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
+        """U₃ of the force (∇Θ·Ê₁)Ê₀ − (∇Θ·Ê₀)Ê₁, which pumps along a travelling wave."""
+        return self._flow_pattern(x, y, 2)
+
+    def _flow_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
         spots = _spots(x, y)
-        place, side, _ = self.fold.fold(spots.x)
+        place, side, signs = self.fold.fold(spots.x)
         u = self.flows.values(*_within(self.flows, place, spots.y))
-        return (
-            (spots.shaped(u[0] * side), spots.shaped(u[1])),
-            (spots.shaped(u[2] * side), spots.shaped(u[3])),
-        )
+        if 2 * which == len(u):
+            return np.zeros(spots.shape), np.zeros(spots.shape)
+        lift = signs.prod(axis=0) if which == 2 else 1.0
+        along, up = u[2 * which : 2 * which + 2]
+        return spots.shaped(along * side * lift), spots.shaped(up * lift)
 
     def line(self, y: float) -> Line:
         """All patterns along one period at the height `y`, in tens of microseconds.
@@ -152,8 +190,15 @@ class _Spots:
     y: Real
     shape: tuple[int, ...]
 
-    def shaped(self, values: Real) -> Real:
+    def shaped(self, values: Values) -> Values:
         return values.reshape(self.shape)
+
+
+def _phasor(components: Real) -> Phasor:
+    """Real field of one component (1, n), complex of two."""
+    if len(components) == 1:
+        return np.asarray(components[0])
+    return np.asarray(components[0] + 1j * components[1])
 
 
 def _spots(x: ArrayLike, y: ArrayLike) -> _Spots:

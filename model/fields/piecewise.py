@@ -80,12 +80,17 @@ class Piecewise(Stored):
             axis=1,
         )
 
-    def square_gradients(self, cell: Index, place: Real) -> Real:
-        """∇|∇f|² of harmonic functions at located points, (n_function, 2, n), 1/m³."""
-        slopes = self.slopes(cell, place)
-        return np.asarray(
-            2 * np.einsum("fcn,fcdn->fdn", slopes, self.harmonic_curvatures(cell, place))
-        )
+    def force_patterns(self, cell: Index, place: Real) -> list[Real]:
+        """What dielectrophoretic forces follow, of one or two harmonic functions φ, Ê = −∇φ.
+
+        ∇|Ê|² of all functions together and, of two, 2(Ê₀·∂ᵢÊ₁ − Ê₁·∂ᵢÊ₀), each (2, n), 1/m³.
+        """
+        slopes, curvatures = self.slopes(cell, place), self.harmonic_curvatures(cell, place)
+        found = [np.asarray(2 * np.einsum("fcn,fcdn->dn", slopes, curvatures))]
+        if len(slopes) == 2:
+            across = np.einsum("fcn,fcdn->fdn", slopes, curvatures[::-1])
+            found.append(2 * (across[0] - across[1]))
+        return found
 
     def highest(self, cells: Index, steps: int = 13) -> Real:
         """Greatest value of each function (n_function,) on a grid of places in the given cells."""

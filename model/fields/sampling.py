@@ -5,7 +5,7 @@ from itertools import pairwise
 import numpy as np
 
 from model.arrays import Real
-from model.fields.lines import COUNT, LineTable, line_table
+from model.fields.lines import LineTable, Rows, line_table
 from model.fields.piecewise import Piecewise
 from model.fields.section import Section
 
@@ -21,6 +21,7 @@ def sample_lines(
     section: Section, potential: Piecewise, heat: Piecewise, flows: Piecewise
 ) -> LineTable:
     """Table all patterns of a section over one period and all heights."""
+    rows = Rows(len(section.potentials))
     edges = _edges(section)
     stops = np.unique([*_ends(section), *edges[0]])
     columns = np.unique(np.concatenate([_crowded(a, b) for a, b in pairwise(stops)]))
@@ -28,13 +29,18 @@ def sample_lines(
     def evaluate(x: Real, y: Real) -> Real:
         points = np.stack([x, y])
         cell, place = potential.cells.locate(points)
-        field = -potential.slopes(cell, place)[0]
-        gradient = potential.square_gradients(cell, place)[0]
         warm = heat.values(*heat.cells.locate(points))
-        return np.concatenate([field, gradient, warm, flows.values(cell, place)])
+        return np.concatenate(
+            [
+                *-potential.slopes(cell, place),
+                *potential.force_patterns(cell, place),
+                warm,
+                flows.values(cell, place),
+            ]
+        )
 
     heights = _heights(section, edges)
-    return line_table(heights, columns, _unfold(section, columns), evaluate)
+    return line_table(rows, heights, columns, _unfold(section, columns, rows), evaluate)
 
 
 def _ends(section: Section) -> tuple[float, float]:
@@ -95,20 +101,15 @@ def _heights(section: Section, edges: Real) -> Real:
     return np.array(rows)
 
 
-def _unfold(section: Section, columns: Real) -> tuple[Real, np.ndarray, Real]:
+def _unfold(section: Section, columns: Real, rows: Rows) -> tuple[Real, np.ndarray, Real]:
     """Places of a line over one period, the column of each and the factors of the patterns."""
     fold = section.fold
     if not fold.mirrored:
-        return columns, np.arange(columns.size), np.ones((COUNT, columns.size))
+        return columns, np.arange(columns.size), np.ones((rows.count, columns.size))
     if fold.period is None:
         x = np.concatenate([-columns[:0:-1], columns])
     else:
         x = np.concatenate([columns, fold.period - columns[-2::-1]])
-    place, side, sign = fold.fold(x)
+    place, side, signs = fold.fold(x)
     source = np.abs(place[:, None] - columns).argmin(axis=1)
-    signs = np.ones((COUNT, x.size))
-    even = fold.parity == 1
-    signs[0] = sign * (side if even else 1)
-    signs[1] = sign * (1 if even else side)
-    signs[[2, 5, 7]] = side
-    return x, source, signs
+    return x, source, rows.signs(side, signs)

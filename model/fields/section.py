@@ -14,7 +14,8 @@ class Fold:
     """How the solved piece stands for every x.
 
     Quadratic patterns (|Ê|², heat, flow) repeat with `period`; the field itself comes back
-    multiplied by `alternation`.
+    multiplied by `alternation`. A drive of several phases has two components, in phase and a
+    quarter of a period behind, each with a parity of its own.
 
     Parameters
     ----------
@@ -25,25 +26,26 @@ class Fold:
         is its mirror image about x = 0. A piece without a period is mirrored about x = 0 alone.
     alternation
         φ(x + period)/φ(x): −1 if neighbours are opposite, else 1.
-    parity
-        φ(−x)/φ(x) of a mirrored piece: 1 or −1.
+    parities
+        φ(−x)/φ(x) of a mirrored piece, 1 or −1, for each component.
     """
 
     period: float | None = None
     mirrored: bool = False
     alternation: int = 1
-    parity: int = 1
+    parities: tuple[int, ...] = (1,)
 
     def fold(self, x: Real) -> tuple[Real, Real, Real]:
         """Place any x into the piece.
 
         Returns
         -------
-        place, side, sign
+        place, side, signs
             `place` lies in the piece. An x component of a force or velocity is multiplied by
-            `side` (±1), φ by `sign` (±1); all have the shape of `x`.
+            `side` (±1), φ of each component by its row of `signs` (±1); `place` and `side` have
+            the shape of `x`, `signs` is (n_component, …).
         """
-        side, sign = np.ones_like(x), np.ones_like(x)
+        side, turned = np.ones_like(x), np.ones_like(x)
         place = x
         if self.period is not None:
             turns = np.round(x / self.period) if self.mirrored else np.floor(x / self.period)
@@ -51,14 +53,16 @@ class Fold:
             if not self.mirrored:
                 place = np.clip(place, 0.0, self.period)  # rounding must not lead outside
             if self.alternation < 0:
-                sign = np.where(turns % 2 == 0, 1.0, -1.0)
+                turned = np.where(turns % 2 == 0, 1.0, -1.0)
+        signs = np.stack([turned for _ in self.parities])
         if self.mirrored:
             side = np.where(place < 0, -1.0, 1.0)
-            sign = sign * (np.where(place < 0, self.parity, 1.0))
+            parities = np.array(self.parities, dtype=float).reshape(-1, *[1] * x.ndim)
+            signs = signs * np.where(place < 0, parities, 1.0)
             place = np.abs(place)
             if self.period is not None:
                 place = np.minimum(place, 0.5 * self.period)  # rounding must not lead outside
-        return place, side, sign
+        return place, side, signs
 
 
 @dataclass(frozen=True)
@@ -87,9 +91,10 @@ class Section:
         subdomain ``liquid`` must be named; every other subdomain is a wall. Sides are named as
         boundaries.
     potentials
-        Potential of each named side that is held, in V per volt between opposite phases:
-        electrodes, and mirror planes about which φ is odd. All other sides of the liquid are
-        insulating.
+        For each component of the drive, the potential of each named side that is held, in V per
+        volt between opposite phases: electrodes, and mirror planes about which φ is odd. All
+        other sides of the liquid are insulating. One component, or two: in phase, and a quarter
+        of a period behind or, if negative, ahead, so that the phasor is φ₀ + jφ₁.
     electrodes
         Which of `potentials` are metal.
     length
@@ -116,7 +121,7 @@ class Section:
     """
 
     mesh: Mesh
-    potentials: Mapping[str, float]
+    potentials: tuple[Mapping[str, float], ...]
     electrodes: tuple[str, ...]
     length: float
     height: float
@@ -131,7 +136,7 @@ class Section:
     def __post_init__(self) -> None:
         subdomains = self.mesh.subdomains or {}
         boundaries = self.mesh.boundaries or {}
-        named = {*self.potentials, *self.electrodes, *self.mirrors, *self.outsides}
+        named = {*self.electrodes, *self.mirrors, *self.outsides}.union(*self.potentials)
         named |= set(self.joined or ())
         if missing := named - set(boundaries):
             raise ValueError(f"the mesh names no boundary {sorted(missing)}")
@@ -139,6 +144,8 @@ class Section:
             raise ValueError(f"the mesh names no subdomain {sorted(missing)}")
         if isinstance(self.mesh, MeshQuad) and not _sides_agree(self.mesh):
             raise ValueError("two quadrilaterals traverse a shared side in opposite sense")
+        if len(self.potentials) != len(self.fold.parities):
+            raise ValueError("each component of the drive needs its parity")
 
     def liquid(self) -> Mesh:
         """Mesh of the liquid alone, with the same names."""

@@ -47,21 +47,18 @@ def solve_chip(
     """
     section = chip.section(refinement)
     mesh = section.liquid()
-    potential = solve_potential(
-        space(mesh, FIELD_DEGREE, 2 * FIELD_DEGREE, section.joined), section.potentials
-    )
-    field = space(mesh, FIELD_DEGREE, ORDER, section.joined).gradients(potential.solution)
-    heat, slopes = _heat(section, field, thermal_conductivity)
-    along = np.einsum("ckq,ckq->kq", slopes, field)
+    functions = space(mesh, FIELD_DEGREE, 2 * FIELD_DEGREE, section.joined)
+    potentials = [solve_potential(functions, held) for held in section.potentials]
+    solutions = np.stack([potential.solution for potential in potentials])
+    coarse = space(mesh, FIELD_DEGREE, ORDER, section.joined)
+    fields = np.stack([-coarse.gradients(solution) for solution in solutions])
+    square = np.einsum("fckq,fckq->kq", fields, fields)
+    heat, slopes = _heat(section, square, thermal_conductivity)
     pair = FlowSpace.on(mesh, FLOW_DEGREE, ORDER, section.joined)
-    flows = solve_flow(
-        pair,
-        [along * field, np.einsum("ckq,ckq->kq", field, field) * slopes],
-        section.mirrors,
-    )
+    flows = _flows(section, pair, fields, square, slopes)
     cells = Cells.of(mesh)
     patterns = {
-        "potential": Piecewise.of(potential.space, potential.solution[None], cells),
+        "potential": Piecewise.of(functions, solutions, cells),
         "heat": heat,
         # velocities in 1/m per unit of force: the length makes them plain numbers
         "flows": Piecewise.of(pair.velocity, np.concatenate(flows) * section.length, cells),
@@ -69,7 +66,7 @@ def solve_chip(
     return ChipPatterns(
         chip=chip,
         thermal_conductivity=thermal_conductivity,
-        cell_factor=section.cells_per_gap * potential.energy,
+        cell_factor=section.cells_per_gap * sum(potential.energy for potential in potentials),
         length=section.length,
         height=section.height,
         peak_temperature=float(heat.highest(section.mesh.subdomains["liquid"])[0]),
@@ -80,16 +77,29 @@ def solve_chip(
     )
 
 
-def _heat(section: Section, field: Real, thermal_conductivity: float) -> tuple[Piecewise, Real]:
-    """Θ in the whole section, and its gradient at the quadrature points of the liquid."""
+def _flows(
+    section: Section, pair: FlowSpace, fields: Real, square: Real, slopes: Real
+) -> list[Real]:
+    """U₁, U₂ and, of two components, U₃ per unit of force, from fields and ∇Θ."""
+    along = np.einsum("ckq,fckq->fkq", slopes, fields)
+    forces = [np.einsum("fkq,fckq->ckq", along, fields), square * slopes]
+    flows = solve_flow(pair, forces, section.mirrors)
+    if len(fields) == 2:
+        mixed = along[1] * fields[0] - along[0] * fields[1]
+        flows += solve_flow(pair, [mixed], section.mirrors, odd=True)
+    return flows
+
+
+def _heat(section: Section, square: Real, thermal_conductivity: float) -> tuple[Piecewise, Real]:
+    """Θ in the whole section heated by |Ê|², and its gradient at the liquid's quadrature points."""
     mesh = section.mesh
     functions = space(mesh, HEAT_DEGREE, ORDER, section.joined)
     liquid = mesh.subdomains["liquid"]
     conductivity = np.full(mesh.nelements, thermal_conductivity)
     for name, value in section.wall_conductivities.items():
         conductivity[mesh.subdomains[name]] = value
-    density = np.zeros((mesh.nelements, field.shape[2]))
-    density[liquid] = thermal_conductivity * np.einsum("ckq,ckq->kq", field, field)
+    density = np.zeros((mesh.nelements, square.shape[1]))
+    density[liquid] = thermal_conductivity * square
     solution = solve_temperature(functions, conductivity, density, Cooling(section.outsides))
     slopes = functions.gradients(solution)[:, liquid]
     return Piecewise.of(functions, solution[None], Cells.of(mesh)), slopes

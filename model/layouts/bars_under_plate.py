@@ -29,7 +29,7 @@ class BarsUnderPlate(OpposedBars):
         piece = layered(channel, refinement)
         return Section(
             mesh=piece.mesh,
-            potentials={"bar": 0.5, "plate": -0.5},
+            potentials=({"bar": 0.5, "plate": -0.5},),
             electrodes=("bar", "plate"),
             length=self.pitch,
             height=self.channel_height,

@@ -29,12 +29,12 @@ class CoplanarBars(Bars):
         )
         return Section(
             mesh=piece.mesh,
-            potentials={"bar": 0.5, "right": 0.0},
+            potentials=({"bar": 0.5, "right": 0.0},),
             electrodes=("bar",),
             length=self.pitch,
             height=self.channel_height,
             cells_per_gap=2.0,
-            fold=Fold(period=self.pitch, mirrored=True, alternation=-1, parity=1),
+            fold=Fold(period=self.pitch, mirrored=True, alternation=-1),
             mirrors={"left": 0, "right": 0},
             wall_conductivities=piece.wall_conductivities,
             outsides=piece.outsides,

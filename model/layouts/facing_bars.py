@@ -62,7 +62,7 @@ class FacingBars(OpposedBars):
         piece = layered(channel, refinement)
         return Section(
             mesh=piece.mesh,
-            potentials={"floor-bar": 0.5, "lid-bar": -0.5},
+            potentials=({"floor-bar": 0.5, "lid-bar": -0.5},),
             electrodes=("floor-bar", "lid-bar"),
             length=pitch,
             height=self.channel_height,

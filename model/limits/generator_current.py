@@ -12,7 +12,7 @@ if TYPE_CHECKING:
 
 
 class GeneratorCurrent(Limit):
-    """I_rms = V_rms |Y|, Y the admittance of the chip."""
+    """I_rms = V_rms |Y| into each terminal, Y the admittance that one terminal sees."""
 
     id = "generator_current"
     label = "generator current"
@@ -23,4 +23,4 @@ class GeneratorCurrent(Limit):
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
         """One law, power 1."""
-        return (Law(np.abs(at.admittance), 1, at.design.drive.current_limit),)
+        return (Law(np.abs(at.terminal_admittance), 1, at.design.drive.current_limit),)

@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 class GeneratorVoltage(Limit):
     """Open-circuit voltage, peak to peak, that brings the wanted voltage to the electrodes.
 
-    V_open = V |1 + R_source Y|, Y the admittance of the chip.
+    V_open = V |1 + R_source Y|, Y the admittance that one terminal sees.
     """
 
     id = "generator_voltage"
@@ -28,5 +28,5 @@ class GeneratorVoltage(Limit):
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
         """One law, power 1."""
         drive = at.design.drive
-        gain = PEAK_TO_PEAK * np.abs(1.0 + drive.source_resistance * at.admittance)
+        gain = PEAK_TO_PEAK * np.abs(1.0 + drive.source_resistance * at.terminal_admittance)
         return (Law(gain, 1, drive.voltage_limit),)

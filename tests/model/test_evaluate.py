@@ -164,7 +164,9 @@ DIVIDERS = [(50.0, 0.5), (100.0, 0.666667), (1e3, 0.952381), (1e4, 0.995025)]
 
 def stub(admittance):
     drive = SimpleNamespace(source_resistance=50.0, voltage_limit=20.0, current_limit=0.1)
-    return SimpleNamespace(design=SimpleNamespace(drive=drive), admittance=np.array([admittance]))
+    return SimpleNamespace(
+        design=SimpleNamespace(drive=drive), terminal_admittance=np.array([admittance])
+    )
 
 
 @pytest.mark.parametrize(("load", "share"), DIVIDERS)

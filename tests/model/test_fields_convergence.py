@@ -105,7 +105,7 @@ def test_cubic_potential_is_exact_on_skewed_cells(kind):
     np.testing.assert_allclose(found.harmonic_curvatures(*located)[0], exact, atol=1e-9)
     # |∇φ|² = 9(x² + y²)²
     rise = 36 * (x**2 + y**2) * spots
-    np.testing.assert_allclose(found.square_gradients(*located)[0], rise, atol=1e-8)
+    np.testing.assert_allclose(found.force_patterns(*located)[0], rise, atol=1e-8)
 
 
 def test_held_potential_between_plates_is_linear():
@@ -240,7 +240,7 @@ def test_chip_converges():
     )
     coarse, fine = (solve_chip(chip, refinement=level) for level in (0, 1))
     section = chip.section(2)
-    finest = solve_potential(space(section.liquid(), 8, 16), section.potentials)
+    finest = solve_potential(space(section.liquid(), 8, 16), section.potentials[0])
     factors = [coarse.cell_factor, fine.cell_factor, section.cells_per_gap * finest.energy]
     assert 1.8 < (factors[0] - factors[1]) / (factors[1] - factors[2]) < 2.2
     assert factors[0] == pytest.approx(factors[2], rel=1e-5)

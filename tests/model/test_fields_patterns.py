@@ -321,7 +321,7 @@ class TwoPitches(CoplanarBars):
         piece = layered(channel, refinement)
         return Section(
             mesh=piece.mesh,
-            potentials={"plus": 0.5, "minus": -0.5},
+            potentials=({"plus": 0.5, "minus": -0.5},),
             electrodes=("plus", "minus"),
             length=pitch,
             height=self.channel_height,

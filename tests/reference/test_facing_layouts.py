@@ -145,7 +145,7 @@ def staggered(width, gap, height):
 def solved_potential(chip, refinement=0):
     """φ in the liquid, without heat and flow."""
     section = chip.section(refinement)
-    return solve_potential(space(section.liquid(), 8, 16, section.joined), section.potentials)
+    return solve_potential(space(section.liquid(), 8, 16, section.joined), section.potentials[0])
 
 
 def field_and_gradient(potential, x, y):
@@ -153,7 +153,7 @@ def field_and_gradient(potential, x, y):
     found = Piecewise.of(potential.space, potential.solution[None], Cells.of(potential.space.mesh))
     located = found.cells.locate(np.stack([x.ravel(), y.ravel()]) * UM)
     field = -found.slopes(*located)[0].reshape(2, *x.shape) * UM
-    return field, found.square_gradients(*located)[0].reshape(2, *x.shape) * UM**3
+    return field, found.force_patterns(*located)[0].reshape(2, *x.shape) * UM**3
 
 
 def charges_on_the_bar(width, pitch, height, terms=20_000, shapes=10):
@@ -317,7 +317,7 @@ def test_isothermal_electrodes_heat_the_liquid_by_an_eighth(name):
     chip = make(30, 50, 25)
     section = chip.section()
     functions = space(section.liquid(), 7, 14, section.joined)
-    potential = solve_potential(functions, section.potentials)
+    potential = solve_potential(functions, section.potentials[0])
     field = potential.gradients()
     heat = solve_temperature(
         functions,

@@ -34,7 +34,7 @@ def cell_factor(chip):
     """C/ε per gap and metre from the field alone, without heat and flow."""
     section = chip.section()
     functions = space(section.liquid(), 8, 16)
-    return section.cells_per_gap * solve_potential(functions, section.potentials).energy
+    return section.cells_per_gap * solve_potential(functions, section.potentials[0]).energy
 
 
 def exact_field(x, y, width, gap):

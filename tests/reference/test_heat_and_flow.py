@@ -210,7 +210,7 @@ def test_isothermal_bars_heat_the_liquid_by_an_eighth(kind):
     if kind == "triangles":
         mesh = mesh.to_meshtri()
     functions = space(mesh, 7, 14)
-    potential = solve_potential(functions, section.potentials)
+    potential = solve_potential(functions, section.potentials[0])
     field = potential.gradients()
     heat = solve_temperature(
         functions,
