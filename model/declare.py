@@ -28,6 +28,15 @@ from model.quantity import (
 FROM_PERSON = {"from_person": True}
 
 
+def misfit(*misfits: tuple[str, str]) -> PydanticCustomError:
+    """Error to raise from a part's check for fields that are fine alone and impossible together.
+
+    Each misfit is the path of a field within the part, and what is wrong with it.
+    """
+    problem = "; ".join(f"{path} {problem}" for path, problem in misfits)
+    return PydanticCustomError("misfits", "{problem}", {"problem": problem, "misfits": misfits})
+
+
 class Part(BaseModel):
     """A frozen piece of a design; compares and hashes by value, knows no unknown keys."""
 

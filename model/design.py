@@ -5,9 +5,8 @@ from collections.abc import Iterable
 from typing import TYPE_CHECKING, Annotated, Any
 
 from pydantic import BeforeValidator, ConfigDict, Field, create_model, model_validator
-from pydantic_core import PydanticCustomError
 
-from model.declare import Part, Quantity, Text, counted
+from model.declare import Part, Quantity, Text, counted, misfit
 from model.layout import Layout
 from model.layouts import LAYOUTS
 from model.limits import LIMITS
@@ -150,10 +149,7 @@ class Design(Part):
     def _parts_fit(self) -> "Design":
         misfits = tuple(_misfits(self))
         if misfits:
-            problem = "; ".join(f"{path} {problem}" for path, problem in misfits)
-            raise PydanticCustomError(
-                "misfits", "{problem}", {"problem": problem, "misfits": misfits}
-            )
+            raise misfit(*misfits)
         return self
 
 

@@ -124,6 +124,8 @@ def random_designs(draw):
     chip = draw(table_of(LAYOUTS["coplanar-bars"], channel_height="200 um"))
     chip |= {"layout": "coplanar-bars", "floor": draw(table_of(wall, outside="held"))}
     chip["lid"] = draw(table_of(wall))
+    if chip["lid"]["outside"] == "transfer":
+        chip["lid"].setdefault("heat_transfer_coefficient", "300 W/m^2/K")
     count = draw(st.integers(1, 12))
     particles = [draw(random_particle(f"{index} ")) for index in range(count)]
     particles[0]["role"] = "collect"

@@ -3,10 +3,9 @@
 from typing import Annotated, Literal
 
 from pydantic import model_validator
-from pydantic_core import PydanticCustomError
 
 from model.bars import OpposedBars
-from model.declare import Quantity
+from model.declare import Quantity, misfit
 from model.fields.layered import Channel, Span, layered
 from model.fields.section import Fold, Section
 from model.quantity import format_quantity
@@ -35,10 +34,7 @@ class FacingBars(OpposedBars):
     def _offset_below_the_pitch(self) -> "FacingBars":
         if self.offset >= self.pitch:
             pitch = format_quantity(self.pitch, "um")
-            problem = f"must be below the pitch, {pitch}, after which it repeats"
-            raise PydanticCustomError(
-                "misfits", "{problem}", {"problem": problem, "misfits": (("offset", problem),)}
-            )
+            raise misfit(("offset", f"must be below the pitch, {pitch}, after which it repeats"))
         return self
 
     def section(self, refinement: int = 0) -> Section:
