@@ -7,6 +7,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from model.arrays import Real
+from model.growth import first_order, self_consistent
 
 Sense = Literal["most", "least"]
 
@@ -14,6 +15,8 @@ Sense = Literal["most", "least"]
 @dataclass(frozen=True)
 class Law:
     """value = offset + coefficient · V_rms^power, to be at most or at least `allowed`.
+
+    What is added to the offset may drive itself on, see `growth`.
 
     Parameters
     ----------
@@ -30,6 +33,10 @@ class Law:
         Value at no voltage.
     subject
         Name of the particle that the law is about, or empty.
+    growth
+        How much the added part drives itself on, in one over the value's unit, for powers above
+        0; coefficient · V_rms^power is then its first order, and
+        :func:`model.growth.self_consistent` gives it. None if it does not.
     """
 
     coefficient: ArrayLike
@@ -38,10 +45,14 @@ class Law:
     sense: Sense = "most"
     offset: float = 0.0
     subject: str = ""
+    growth: ArrayLike | None = None
 
-    def value(self, rms_voltage: float) -> Real:
-        """Value at a voltage, shape of the coefficient."""
-        return np.asarray(self.offset + np.asarray(self.coefficient) * rms_voltage**self.power)
+    def value(self, rms_voltage: ArrayLike) -> Real:
+        """Value at voltages that broadcast with the coefficient; infinite where none is steady."""
+        added = np.asarray(self.coefficient) * np.asarray(rms_voltage, dtype=float) ** self.power
+        if self.growth is not None:
+            added = self_consistent(added, self.growth)
+        return np.asarray(self.offset + added)
 
     def bound(self) -> Real:
         """V_rms at which the value is `allowed`, shape of the coefficient.
@@ -54,7 +65,10 @@ class Law:
         if self.power == 0:
             met = slope <= room if self.sense == "most" else slope >= room
             return np.where(met == (self.sense == "most"), np.inf, 0.0)
+        room = np.maximum(room, 0.0)
+        if self.growth is not None:
+            room = first_order(room, self.growth)
         with np.errstate(divide="ignore", invalid="ignore"):
-            voltage = (np.maximum(room, 0.0) / slope) ** (1.0 / self.power)
+            voltage = (room / slope) ** (1.0 / self.power)
         # 0/0: no slope and no room. Nothing is asked of a floor, nothing is left of a ceiling.
         return np.where(np.isnan(voltage), 0.0, voltage)

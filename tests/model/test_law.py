@@ -66,3 +66,37 @@ def test_shapes_are_kept():
     assert law.bound().shape == (3, 1, 5)
     assert law.value(2.0).shape == (3, 1, 5)
     assert np.all(law.bound() == 2.0)
+
+
+def test_value_over_many_voltages():
+    law = Law(np.array([1.0, 2.0, 3.0]), 2, 4.0, offset=1.0)
+    found = law.value(np.array([[1.0], [2.0]]))
+    np.testing.assert_allclose(found, [[2.0, 3.0, 4.0], [5.0, 9.0, 13.0]])
+
+
+GROWTH = st.floats(-0.5, 0.5)
+
+
+@given(COEFFICIENT, st.floats(1e-3, 1e3), st.sampled_from([1, 2, 4]), GROWTH)
+def test_bound_of_what_drives_itself_on(coefficient, room, power, growth):
+    law = Law(coefficient, power, 20.0 + room, offset=20.0, growth=growth)
+    assert float(law.value(law.bound())) == pytest.approx(20.0 + room, rel=1e-6)
+
+
+def test_growth_of_either_sign_moves_the_bound_the_right_way():
+    bounds = [float(Law(1.0, 2, 4.0, growth=growth).bound()) for growth in (-0.1, 0.0, 0.1)]
+    assert bounds == sorted(bounds, reverse=True)
+    values = [float(Law(1.0, 2, 4.0, growth=growth).value(2.0)) for growth in (-0.1, 0.0, 0.1)]
+    assert values == sorted(values)
+
+
+def test_no_steady_value_beyond_the_point_of_runaway():
+    law = Law(1.0, 2, 1e6, growth=0.02)
+    assert np.isfinite(law.value(7.0))
+    assert law.value(math.sqrt(50.0) * (1 + 1e-12)) == math.inf
+    assert law.value(100.0) == math.inf
+    assert law.bound() == pytest.approx(
+        math.sqrt(50.0), rel=1e-3
+    )  # no rise, however large, lies on
+    assert Law(math.inf, 2, 1.0, growth=0.02).bound() == 0.0
+    assert Law(math.inf, 2, 1.0, growth=0.02).value(1.0) == math.inf
