@@ -8,6 +8,7 @@ from model.arrays import Real
 from model.conditions import Conditions
 from model.evaluate import Evaluation
 from model.limits import LIMITS
+from model.voltage import PEAK_TO_PEAK
 
 
 @dataclass(frozen=True)
@@ -51,8 +52,7 @@ def sweep(result: Evaluation, limit: str, voltage: Real, conductivity: Real) -> 
     here = LIMITS[limit].laws(result.point)
     frequency = result.point.frequency
     elsewhere = Conditions(design, result.patterns, frequency, conductivity[:, np.newaxis])
-    relative = voltage / design.drive.voltage
-    by_voltage = [law.value(rms).reshape(-1)[0] * relative**law.power for law in here]
+    by_voltage = [law.value(voltage[:, np.newaxis] / PEAK_TO_PEAK)[:, 0] for law in here]
     by_conductivity = [law.value(rms)[:, 0] for law in LIMITS[limit].laws(elsewhere)]
     return Sweep(
         limit,

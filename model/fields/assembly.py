@@ -93,6 +93,10 @@ class Space:
             found = np.concatenate([found, self.table.facet_dofs[:, facets].ravel()])
         return np.unique(self.same[found])
 
+    def at_points(self, solution: Real) -> Real:
+        """Values at the quadrature points, (n_cell, n_point)."""
+        return np.asarray(solution[self.dofs].T @ self.values)
+
     def gradients(self, solution: Real) -> Real:
         """Gradient at the quadrature points, (2, n_cell, n_point)."""
         local = solution[self.dofs].T @ self.steep.reshape(len(self.steep), -1)
@@ -214,6 +218,13 @@ def _straight_stiffness(functions: Space, weights: Real) -> Real:
 def load(functions: Space, density: Real) -> Real:
     """Vector of ∫ f v, `density` f at the quadrature points, (n_cell, n_point)."""
     parts = functions.values @ (density * functions.weights).T  # (i, cell)
+    return gather(functions.dofs, parts, functions.size)
+
+
+def flux_load(functions: Space, flux: Real) -> Real:
+    """Vector of ∫ g·∇v, `flux` g at the quadrature points, (2, n_cell, n_point)."""
+    local = np.einsum("rckq,ckq->krq", functions.inverse, flux * functions.weights)
+    parts = functions.steep.reshape(len(functions.steep), -1) @ local.reshape(len(local), -1).T
     return gather(functions.dofs, parts, functions.size)
 
 

@@ -7,20 +7,25 @@ import numpy as np
 
 from model.arrays import Real
 from model.fields.assembly import Space, stiffness
-from model.fields.condensed import CellSystem, factorise
+from model.fields.condensed import CellSystem, Factor, factorise
 
 
 @dataclass(frozen=True, eq=False)
 class Potential:
-    """φ per volt: coefficients (n_unknown,) in `space`, and its energy ∫|∇φ|²."""
+    """φ per volt: coefficients (n_unknown,) in `space`, its energy ∫|∇φ|², and what solved it."""
 
     space: Space
     solution: Real
     energy: float
+    factor: Factor
 
     def gradients(self) -> Real:
         """∇φ at the quadrature points, (2, n_cell, n_point), 1/m."""
         return self.space.gradients(self.solution)
+
+    def respond(self, source: Real) -> Real:
+        """Coefficients of ψ with ∫∇ψ·∇v = source (n_unknown,), and ψ = 0 where φ is held."""
+        return self.factor.solve(source, np.zeros(self.space.size))
 
 
 def solve_potential(functions: Space, potentials: Mapping[str, float]) -> Potential:
@@ -48,4 +53,4 @@ def solve_potential(functions: Space, potentials: Mapping[str, float]) -> Potent
         held[sides] = level * constant[sides]
     factor = factorise(system, functions.on(*potentials))
     solution = factor.solve(np.zeros(functions.size), held)
-    return Potential(functions, solution, float(solution @ system.apply(solution)))
+    return Potential(functions, solution, float(solution @ system.apply(solution)), factor)

@@ -7,7 +7,8 @@ import numpy as np
 
 from model.arrays import Real
 from model.fields.assembly import Space, load, stiffness
-from model.fields.condensed import CellSystem, factorise
+from model.fields.cells import Index
+from model.fields.condensed import CellSystem, Factor, factorise
 from model.fields.sides import side_masses
 
 
@@ -35,13 +36,20 @@ class Cooling:
         return {name: value for name, value in self.transfer.items() if value}
 
 
-def solve_temperature(
-    functions: Space,
-    conductivity: Real,
-    density: Real,
-    cooling: Cooling,
-) -> Real:
-    """Solve −∇·(k∇Θ) = q with k ∂Θ/∂n = −hΘ on cooled sides.
+@dataclass(frozen=True, eq=False)
+class Conduction:
+    """Heat conduction in a section, factorised once for any source of heat."""
+
+    functions: Space
+    factor: Factor
+
+    def solve(self, density: Real) -> Real:
+        """Coefficients of Θ (n_unknown,) for q at the quadrature points, (n_cell, n_point)."""
+        return self.factor.solve(load(self.functions, density), np.zeros(self.functions.size))
+
+
+def conduction(functions: Space, conductivity: Real, cooling: Cooling) -> Conduction:
+    """Prepare −∇·(k∇Θ) = q with k ∂Θ/∂n = −hΘ on cooled sides.
 
     Parameters
     ----------
@@ -49,15 +57,8 @@ def solve_temperature(
         On floor, liquid and lid, lengths in m.
     conductivity
         k of each cell, (n_cell,), W/(m K).
-    density
-        q at the quadrature points, (n_cell, n_point).
     cooling
         Of the sides.
-
-    Returns
-    -------
-    Real
-        Coefficients of Θ (n_unknown,).
 
     Raises
     ------
@@ -71,5 +72,47 @@ def solve_temperature(
         cells, masses = side_masses(functions, name)
         np.add.at(blocks, cells, transfer * masses)
     system = CellSystem(blocks, functions.dofs, functions.inner, functions.size)
-    factor = factorise(system, functions.on(*cooling.held))
-    return factor.solve(load(functions, density), np.zeros(functions.size))
+    return Conduction(functions, factorise(system, functions.on(*cooling.held)))
+
+
+@dataclass(frozen=True, eq=False)
+class LiquidHeat:
+    """Heat that is made in the cells `liquid` of a section alone; k of the liquid in W/(m K)."""
+
+    conduction: Conduction
+    liquid: Index
+    thermal_conductivity: float
+
+    @property
+    def functions(self) -> Space:
+        """What Θ is made of, in the whole section."""
+        return self.conduction.functions
+
+    def solve(self, square: Real) -> Real:
+        """Θ for q/k at the liquid's quadrature points, (n_cell of the liquid, n_point), 1/m²."""
+        density = np.zeros((self.functions.mesh.nelements, square.shape[1]))
+        density[self.liquid] = self.thermal_conductivity * square
+        return self.conduction.solve(density)
+
+    def warmth(self, solution: Real) -> Real:
+        """Θ at the liquid's quadrature points, (n_cell of the liquid, n_point)."""
+        return self.functions.at_points(solution)[self.liquid]
+
+    def slopes(self, solution: Real) -> Real:
+        """∇Θ at the liquid's quadrature points, (2, n_cell of the liquid, n_point), 1/m."""
+        return self.functions.gradients(solution)[:, self.liquid]
+
+    def mean(self, solution: Real) -> float:
+        """Mean of Θ over the liquid."""
+        weights = self.functions.weights[self.liquid]
+        return float((weights * self.warmth(solution)).sum() / weights.sum())
+
+
+def solve_temperature(
+    functions: Space,
+    conductivity: Real,
+    density: Real,
+    cooling: Cooling,
+) -> Real:
+    """Solve once for a single source; arguments, result and errors as of :func:`conduction`."""
+    return conduction(functions, conductivity, cooling).solve(density)

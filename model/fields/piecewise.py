@@ -10,6 +10,9 @@ from model.fields.assembly import Space
 from model.fields.cells import Cells, Index
 from model.fields.stored import Stored
 
+#: Places along each reference coordinate among which the greatest value is looked for.
+GRID = 13
+
 
 @dataclass(frozen=True, eq=False, repr=False)
 class Piecewise(Stored):
@@ -92,14 +95,25 @@ class Piecewise(Stored):
             found.append(2 * (across[0] - across[1]))
         return found
 
-    def highest(self, cells: Index, steps: int = 13) -> Real:
+    def highest(self, cells: Index) -> Real:
         """Greatest value of each function (n_function,) on a grid of places in the given cells."""
+        return np.asarray(self._on_grid(cells).reshape(len(self.coefficients), -1).max(axis=1))
+
+    def place_of_highest(self, cells: Index) -> tuple[Index, Real]:
+        """Cell (1,) and reference place (2, 1) of the greatest value of the first function."""
+        grid = self._on_grid(cells)[0]
+        cell, i, j = np.unravel_index(int(grid.argmax()), grid.shape)
+        return cells[[cell]], np.array([[i], [j]]) / (GRID - 1)
+
+    def _on_grid(self, cells: Index) -> Real:
+        """Values on equally spaced reference coordinates, (n_function, n_cell, GRID, GRID)."""
         degree = self.coefficients.shape[2] - 1
-        table = legendre.legvander(np.linspace(-1.0, 1.0, steps), degree)
+        table = legendre.legvander(np.linspace(-1.0, 1.0, GRID), degree)
         grid = table @ self.coefficients[:, cells] @ table.T
         if self.cells.corners.shape[1] == 3:
-            grid = grid[:, :, np.add.outer(np.arange(steps), np.arange(steps)) < steps]
-        return np.asarray(grid.reshape(len(grid), -1).max(axis=1))
+            beyond = np.add.outer(np.arange(GRID), np.arange(GRID)) >= GRID
+            grid = np.where(beyond, -np.inf, grid)
+        return np.asarray(grid)
 
     def _curvatures(self, cell: Index, place: Real) -> Real:
         """Second derivatives (n_function, 2, 2, n), 1/m²."""
