@@ -7,6 +7,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from model.arrays import Complex, Phasor, Real
+from model.fields.feedback import Feedback
 from model.fields.lines import Line, LineTable
 from model.fields.piecewise import Piecewise
 from model.fields.section import Fold, Rest
@@ -39,8 +40,8 @@ class ChipPatterns(Stored):
     add together, and vanish for a drive of one phase.
 
     Coordinates in m: x from a bar's centre along the flow, any x; y from the floor.
-    Ohmic heat alone is counted, and its change of σ, ε and η is not fed back: right for rises of
-    a few kelvin.
+    Ohmic heat alone is counted. That warm liquid conducts better enters the hottest rise, through
+    `feedback`, and nothing else: right for rises of a few kelvin.
 
     Parameters
     ----------
@@ -58,6 +59,10 @@ class ChipPatterns(Stored):
         Of the liquid, m.
     peak_temperature
         Largest Θ in the liquid.
+    mean_temperature
+        Mean of Θ over the liquid.
+    feedback
+        Second order of the largest rise.
     """
 
     chip: "Layout"
@@ -66,6 +71,8 @@ class ChipPatterns(Stored):
     length: float
     height: float
     peak_temperature: float
+    mean_temperature: float
+    feedback: Feedback
     fold: Fold
     rests: tuple[Rest, ...]
     potential: Piecewise

@@ -8,8 +8,9 @@ from model.arrays import Real
 from model.fields.assembly import space
 from model.fields.cells import Cells
 from model.fields.electric import solve_potential
+from model.fields.feedback import solve_feedback
 from model.fields.flow import FlowSpace, solve_flow
-from model.fields.heat import Cooling, solve_temperature
+from model.fields.heat import Cooling, LiquidHeat, conduction
 from model.fields.patterns import ChipPatterns
 from model.fields.piecewise import Piecewise
 from model.fields.sampling import sample_lines
@@ -53,13 +54,15 @@ def solve_chip(
     coarse = space(mesh, FIELD_DEGREE, ORDER, section.joined)
     fields = np.stack([-coarse.gradients(solution) for solution in solutions])
     square = np.einsum("fckq,fckq->kq", fields, fields)
-    heat, slopes = _heat(section, square, thermal_conductivity)
+    heat = _liquid_heat(section, thermal_conductivity)
+    warmth = heat.solve(square)
+    temperature = Piecewise.of(heat.functions, warmth[None], Cells.of(section.mesh))
     pair = FlowSpace.on(mesh, FLOW_DEGREE, ORDER, section.joined)
-    flows = _flows(section, pair, fields, square, slopes)
+    flows = _flows(section, pair, fields, square, heat.slopes(warmth))
     cells = Cells.of(mesh)
     patterns = {
         "potential": Piecewise.of(functions, solutions, cells),
-        "heat": heat,
+        "heat": temperature,
         # velocities in 1/m per unit of force: the length makes them plain numbers
         "flows": Piecewise.of(pair.velocity, np.concatenate(flows) * section.length, cells),
     }
@@ -69,7 +72,9 @@ def solve_chip(
         cell_factor=section.cells_per_gap * sum(potential.energy for potential in potentials),
         length=section.length,
         height=section.height,
-        peak_temperature=float(heat.highest(section.mesh.subdomains["liquid"])[0]),
+        peak_temperature=float(temperature.highest(heat.liquid)[0]),
+        mean_temperature=heat.mean(warmth),
+        feedback=solve_feedback(coarse, potentials, fields, heat, temperature, warmth),
         fold=section.fold,
         rests=section.rests,
         table=sample_lines(section, **patterns),
@@ -90,16 +95,12 @@ def _flows(
     return flows
 
 
-def _heat(section: Section, square: Real, thermal_conductivity: float) -> tuple[Piecewise, Real]:
-    """Θ in the whole section heated by |Ê|², and its gradient at the liquid's quadrature points."""
+def _liquid_heat(section: Section, thermal_conductivity: float) -> LiquidHeat:
+    """Conduction in the whole section, of heat from the liquid."""
     mesh = section.mesh
-    functions = space(mesh, HEAT_DEGREE, ORDER, section.joined)
-    liquid = mesh.subdomains["liquid"]
     conductivity = np.full(mesh.nelements, thermal_conductivity)
     for name, value in section.wall_conductivities.items():
         conductivity[mesh.subdomains[name]] = value
-    density = np.zeros((mesh.nelements, square.shape[1]))
-    density[liquid] = thermal_conductivity * square
-    solution = solve_temperature(functions, conductivity, density, Cooling(section.outsides))
-    slopes = functions.gradients(solution)[:, liquid]
-    return Piecewise.of(functions, solution[None], Cells.of(mesh)), slopes
+    functions = space(mesh, HEAT_DEGREE, ORDER, section.joined)
+    found = conduction(functions, conductivity, Cooling(section.outsides))
+    return LiquidHeat(found, mesh.subdomains["liquid"], thermal_conductivity)

@@ -129,13 +129,20 @@ def full_solution(section):
     held = np.concatenate([outside, *(every.get_dofs(name).all() for name in potentials)])
 
     def step(rise, scale):
-        weight = 1.0 + C * wet.interpolate(rise).value
+        weight = 1.0 + C * np.asarray(wet.interpolate(rise))
         phi = solve(*condense(weighted.assemble(wet, weight=weight), x=level, D=held))
         heat = warming.assemble(wet, weight=scale * K * weight, phi=wet.interpolate(phi))
         return solve(*condense(conducting, heat, D=np.concatenate(cold)))
 
+    ends = mesh.p[:, mesh.t[:, liquid]].reshape(2, -1)
+    x, y = (
+        np.linspace(axis.min(), axis.max(), count)
+        for axis, count in zip(ends, (21, 301), strict=True)
+    )
+    probes = every.probes(np.stack([each.ravel() for each in np.meshgrid(x, y)]))
+
     def hottest(rise):
-        return rise[np.unique(wet.element_dofs)].max()
+        return (probes @ rise).max()
 
     unit = step(every.zeros(), 1.0)
 
@@ -151,12 +158,17 @@ def full_solution(section):
 
 
 GLASS = Wall(material="glass", thickness=100 * UM, outside="held")
-WARM = Wall(material="pdms", thickness=60 * UM, outside="still-air")
+PDMS = Wall(material="pdms", thickness=60 * UM, outside="still-air")
+SILICON = Wall(material="silicon", thickness=20 * UM, outside="held")
+WALLED = {
+    "coplanar": chip(floor=GLASS, lid=PDMS),
+    "plate": chip(BarsUnderPlate, floor=SILICON, lid=SILICON),
+}
 
 
-@pytest.mark.parametrize("name", ["coplanar", "plate"])
+@pytest.mark.parametrize("name", WALLED)
 def test_second_order_and_beyond_against_a_full_solution(name):
-    section = CHIPS[name](floor=GLASS, lid=WARM).section()
+    section = WALLED[name].section()
     _, found = within_walls(section)
     growth = float(found.growth(C, C))
     highest = full_solution(section)
@@ -165,8 +177,9 @@ def test_second_order_and_beyond_against_a_full_solution(name):
     assert growth / C == pytest.approx(2 * slopes[0] - slopes[1], rel=2e-3)
     for first in np.array([0.1, 0.3, 0.6]) / C:
         full, ours = highest(first), float(self_consistent(first, growth))
-        assert full * (1 - 1e-3) < ours  # errs to the warm side
-        assert ours - full < 0.05 * (full - first) + 1e-3 * full
+        assert full * (1 - 1e-4) < ours  # errs to the warm side
+        # between isothermal electrodes by 16 % of what is added, at cΔT₀ = 0.6
+        assert ours - full < 0.16 * (full - first)
 
 
 def test_a_field_that_permittivity_decides_does_not_give_way_as_much():
