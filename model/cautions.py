@@ -16,6 +16,8 @@ DIPOLE_RATIO = 0.3
 #: Capacitance of an electrode's double layer with its Stern layer, F/m²; common practice for
 #: metal in dilute salt, no source.
 DOUBLE_LAYER = 0.1
+#: Growth of the temperature rise by the liquid's own warmth that is worth a note.
+NOTABLE_GROWTH = 0.05
 #: A share of the voltage lost to the double layers that is worth a note.
 NOTABLE_LOSS = 0.05
 
@@ -35,13 +37,14 @@ def cautions(result: Evaluation) -> tuple[str, ...]:
             f"The drive can reach {format_si(peak, 'V')} peak; above 42.4 V peak (30 V rms) a "
             f"voltage is commonly treated as hazardous to touch. {DEFER}"
         )
-    hottest = result.design.liquid.temperature + result.temperature_rise
+    rise = result.self_consistent_rise
+    hottest = np.inf if rise is None else result.design.liquid.temperature + rise
     if hottest > 60.0 + 273.15:
         boils = hottest > 100.0 + 273.15
         heat = "boils" if boils else f"reaches {format_quantity(hottest, 'degC', 3)}"
         found.append(
-            f"By the linear law the liquid {heat}. It can boil and burst a bond, and nothing "
-            f"here holds then. {DEFER}"
+            f"As calculated the liquid {heat}. It can boil and burst a bond, and nothing here "
+            f"holds then. {DEFER}"
         )
     return (*found, GENERAL)
 
@@ -73,12 +76,30 @@ def notes(result: Evaluation) -> tuple[str, ...]:
             "That loss is not in the numbers, so forces are overstated; electro-osmotic flow, gas "
             "and electrode damage are not modelled and may decide at such frequencies."
         )
-    if result.temperature_rise > 5.0:
-        found.append(
-            "Above a few kelvin the rise is understated: the conductivity grows as it warms, "
-            "which the linear law leaves out."
+    return (*found, *_heat(result), *_passing(result))
+
+
+def _heat(result: Evaluation) -> Iterator[str]:
+    """What a conductivity that grows with warmth does, and flow that carries heat off."""
+    linear, rise = result.temperature_rise, result.self_consistent_rise
+    at_first = f"{format_quantity(linear, 'K', 3)} that the stage's conductivity gives"
+    if rise is None:
+        yield (
+            f"No steady temperature: warm liquid conducts better, and beyond the {at_first} it "
+            "makes more heat than leaves."
         )
-    return (*found, *_passing(result))
+    elif rise > (1.0 + NOTABLE_GROWTH) * linear:
+        yield (
+            f"Warm liquid conducts better: the rise is {format_quantity(rise, 'K', 3)}, not the "
+            f"{at_first}. Forces, flow and load are those of the stage temperature."
+        )
+    flow = result.flow_cooling
+    if flow is not None and flow.peclet > 1.0:
+        yield (
+            f"The flow carries off more heat than floor and lid (Péclet number "
+            f"{format_quantity(flow.peclet, '', 2)}), which the rise leaves out: it is overstated, "
+            f"and the liquid's mean rise stays below {format_quantity(flow.outlet_rise, 'K', 3)}."
+        )
 
 
 def voltage_at_liquid(result: Evaluation) -> float:

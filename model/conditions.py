@@ -167,9 +167,25 @@ class Conditions:
 
     @cached_property
     def heating(self) -> Real:
-        """Rise of the hottest liquid, K/V²: duty · Θ_max σ/k; the same at every frequency."""
+        """Rise of the hottest liquid at the conductivity of the stage temperature, K/V².
+
+        duty · Θ_max σ/k; the same at every frequency.
+        """
         rise = self.patterns.peak_temperature / self.patterns.thermal_conductivity
         return np.asarray(self.design.drive.duty * rise * self.conductivity) + 0.0 * self.omega
+
+    @cached_property
+    def heat_growth(self) -> Real:
+        """How much the hottest rise drives itself on, in the sense of a law's growth, 1/K.
+
+        Warm liquid conducts better, so that it makes more heat, and the field gives way by
+        κ = d ln ε̃/dT, of which the real part (β + αs²)/(1 + s²), s = ωε/σ, acts on the heat.
+        """
+        liquid = self.liquid
+        square = (self.omega * liquid.permittivity / self.conductivity) ** 2
+        ohmic, displaced = liquid.conductivity_slope, liquid.permittivity_slope
+        yielding = (ohmic + displaced * square) / (1.0 + square)
+        return self.patterns.feedback.growth(ohmic, yielding)
 
     @cached_property
     def admittance(self) -> Complex:

@@ -12,8 +12,10 @@ from model.corridor import Corridor, Rule, corridor, rules
 from model.crossovers import Crossover, find_crossovers
 from model.design import Design
 from model.fields.patterns import ChipPatterns
+from model.growth import self_consistent
 from model.particle import Particle
 from model.voltage import PEAK, PEAK_TO_PEAK
+from model.warming import chip_warm_up
 
 #: Frequencies of a corridor unless others are asked for, Hz; widened to hold the design's own.
 LOWEST, HIGHEST, POINTS = 1e3, 1e8, 400
@@ -63,6 +65,26 @@ class ChipLoad:
     capacitance: float
     rms_current: float
     power: float
+
+
+@dataclass(frozen=True)
+class FlowCooling:
+    """Heat that the flow carries along against heat that the walls conduct away.
+
+    Parameters
+    ----------
+    peclet
+        Pe = ρ c_p Q/G with the flow rate Q, and G = P/(mean rise) the conductance from the liquid
+        through floor and lid along the whole array: the Péclet number in Graetz's form, with the
+        walls in place of conduction across the liquid alone. Where heat is made evenly along the
+        array, the mean rise at its end is 1 − exp(−1/Pe) of the one without flow.
+    outlet_rise
+        P/(ρ c_p Q), K: what the flow would warm by if no heat left through the walls. As long as
+        nothing but the array warms it, its mean rise is nowhere above that.
+    """
+
+    peclet: float
+    outlet_rise: float
 
 
 @dataclass(frozen=True)
@@ -178,8 +200,39 @@ class Evaluation:
 
     @property
     def temperature_rise(self) -> float:
-        """Rise of the hottest liquid over the stage, K."""
+        """Rise of the hottest liquid over the stage if its conductivity stayed as it is, K."""
         return float(self.point.heating[0]) * self.rms_voltage**2
+
+    @property
+    def self_consistent_rise(self) -> float | None:
+        """The same with the conductivity that grows as it warms, K; None if nothing is steady.
+
+        Exact to second order and warmer than true beyond, see :mod:`model.growth`.
+        """
+        rise = float(self_consistent(self.temperature_rise, self.point.heat_growth[0]))
+        return rise if np.isfinite(rise) else None
+
+    @cached_property
+    def warm_up_time(self) -> tuple[float, float]:
+        """Times in s until the liquid's mean comes to 63 % (1 − 1/e) and 95 % of its final rise.
+
+        Layer by layer, see :mod:`model.warming`; neither voltage nor conductivity matters.
+        """
+        liquid = self.design.liquid
+        found = chip_warm_up(self.design.chip, liquid.heat_conductivity, liquid.state.heat_storage)
+        return found.time(-np.expm1(-1.0)), found.time(0.95)
+
+    @cached_property
+    def flow_cooling(self) -> FlowCooling | None:
+        """What the flow carries off; None for liquid at rest."""
+        liquid, rate = self.design.liquid.state, self.design.flow.rate
+        if rate == 0.0:
+            return None
+        outlet = self.load.power / (liquid.heat_storage * rate)
+        mean = self.temperature_rise * (
+            self.patterns.mean_temperature / self.patterns.peak_temperature
+        )
+        return FlowCooling(mean / outlet, outlet)
 
     @property
     def electrothermal_speed(self) -> float:

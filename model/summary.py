@@ -11,7 +11,7 @@ import numpy as np
 from model.arrays import Real
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
-from model.evaluate import Evaluation, LedgerRow, ParticleResult
+from model.evaluate import Evaluation, FlowCooling, LedgerRow, ParticleResult
 from model.polarisation import complex_permittivity
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
@@ -33,6 +33,10 @@ def check_object(result: Evaluation) -> dict[str, Any]:
         **_finite("floor_Vpp", result.floor_pp, "no voltage does the task at this frequency"),
         **_finite("ceiling_Vpp", result.ceiling_pp, "no limit bounds the voltage"),
         "temperature_rise_K": result.temperature_rise,
+        **_finite("self_consistent_rise_K", result.self_consistent_rise, "nothing is steady"),
+        "warm_up_63_s": result.warm_up_time[0],
+        "warm_up_95_s": result.warm_up_time[1],
+        **_flow(result.flow_cooling),
         "electrothermal_speed_um_s": result.electrothermal_speed * 1e6,
         "dep_speed_um_s": result.dielectrophoretic_speed * 1e6,
         "chip": {
@@ -58,7 +62,7 @@ def _particle(result: Evaluation, found: ParticleResult) -> dict[str, Any]:
         "crossovers_direction": [crossover.direction for crossover in crossovers],
         "force_pN": found.force * 1e12,
     }
-    voltage = math.nan if found.membrane_voltage is None else found.membrane_voltage
+    voltage = found.membrane_voltage
     return {**data, **_finite("membrane_voltage_V_peak", voltage, "the particle has no membrane")}
 
 
@@ -75,9 +79,15 @@ def _limit(row: LedgerRow) -> dict[str, Any]:
     }
 
 
-def _finite(key: str, value: float, reason: str) -> dict[str, Any]:
+def _flow(found: FlowCooling | None) -> dict[str, Any]:
+    peclet, rise = (None, None) if found is None else (found.peclet, found.outlet_rise)
+    reason = "the liquid is at rest"
+    return {**_finite("flow_peclet", peclet, reason), **_finite("flow_outlet_rise_K", rise, reason)}
+
+
+def _finite(key: str, value: float | None, reason: str) -> dict[str, Any]:
     """The number, or null with the reason beside it."""
-    if math.isfinite(value):
+    if value is not None and math.isfinite(value):
         return {key: value}
     return {key: None, f"{key}_reason": reason}
 
@@ -97,6 +107,7 @@ def check_text(result: Evaluation) -> str:
         f"  {_corridor(result)}",
         f"  chip: {format_si(load.resistance, 'Ω')} and {format_si(load.capacitance, 'F')} in "
         f"parallel, {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
+        *_heat(result),
         "",
         *_table(
             ("limit", "value", "allowed", "headroom"),
@@ -119,6 +130,23 @@ def check_text(result: Evaluation) -> str:
     ]
     lines += ["", *(f"Note: {note}" for note in notes(result))] if notes(result) else []
     return "\n".join([*lines, "", *cautions(result)])
+
+
+def _heat(result: Evaluation) -> list[str]:
+    """How warm the liquid gets, how soon, and what the flow has to do with it."""
+    rise, flow = result.self_consistent_rise, result.flow_cooling
+    most = "no steady temperature" if rise is None else f"{format_quantity(rise, 'K', 3)} at most"
+    soon, late = (format_si(time, "s") for time in result.warm_up_time)
+    lines = [
+        f"  heat: {most} ({format_quantity(result.temperature_rise, 'K', 3)} at the stage's "
+        f"conductivity), 63 % of it after {soon}, 95 % after {late}"
+    ]
+    if flow is not None:
+        lines.append(
+            f"  flow: Péclet number {format_quantity(flow.peclet, '', 2)}; all the heat would warm "
+            f"it by {format_quantity(flow.outlet_rise, 'K', 3)}, so its mean rise is below that"
+        )
+    return lines
 
 
 def _particle_row(result: Evaluation, found: ParticleResult) -> tuple[str, ...]:

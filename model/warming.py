@@ -13,6 +13,7 @@ liquid.
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.polynomial import legendre
@@ -21,6 +22,9 @@ from scipy.optimize import brentq
 
 from model.arrays import Real
 from model.fields.grading import march
+
+if TYPE_CHECKING:
+    from model.layout import Layout
 
 #: Polynomial degree in each cell.
 DEGREE = 6
@@ -71,6 +75,17 @@ class WarmUp:
             return self.mean(time) / self.final - fraction
 
         return float(brentq(lead, 0.0, 1.001 * latest, xtol=np.finfo(float).tiny))
+
+
+def chip_warm_up(chip: "Layout", heat_conductivity: float, heat_storage: float) -> WarmUp:
+    """Warm-up of a chip's liquid, given k in W/(m K) and heat capacity in J/(m³ K) of that."""
+    below, above = (
+        Slab(wall.thickness, wall.heat_conductivity, wall.heat_storage)
+        for wall in (chip.floor, chip.lid)
+    )
+    liquid = Slab(chip.height, heat_conductivity, heat_storage)
+    outsides = chip.floor.heat_transfer, chip.lid.heat_transfer
+    return warm_up((below,), liquid, (above,), outsides)
 
 
 def warm_up(

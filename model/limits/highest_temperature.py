@@ -11,7 +11,7 @@ if TYPE_CHECKING:
 
 
 class HighestTemperature(Limit):
-    """T = T_stage + duty · Θ_max σ V_rms²/k."""
+    """T = T_stage + ΔT of the hottest liquid, self-consistent as the limit of the rise has it."""
 
     id = "highest_temperature"
     label = "highest temperature"
@@ -30,6 +30,6 @@ class HighestTemperature(Limit):
     default = 310.15
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law, power 2, starting from the stage temperature."""
-        stage = at.design.liquid.temperature
-        return (Law(at.heating, 2, at.design.threshold(self.id), offset=stage),)
+        """One law, power 2, that drives itself on, starting from the stage temperature."""
+        stage, allowed = at.design.liquid.temperature, at.design.threshold(self.id)
+        return (Law(at.heating, 2, allowed, offset=stage, growth=at.heat_growth),)

@@ -11,7 +11,12 @@ if TYPE_CHECKING:
 
 
 class TemperatureRise(Limit):
-    """ΔT = duty · Θ_max σ V_rms²/k at the hottest point of the liquid."""
+    """ΔT = ΔT₀/(1 − gΔT₀) at the hottest point of the liquid, ΔT₀ = duty · Θ_max σ V_rms²/k.
+
+    σ is that at the stage temperature; g holds what its rise with temperature does to the heat,
+    exact to second order (`model.fields.feedback`). Beyond, it errs to the warm side where g > 0
+    (`model.growth`): from gΔT₀ = 1 on it finds no steady temperature.
+    """
 
     id = "temperature_rise"
     label = "temperature rise"
@@ -32,5 +37,6 @@ class TemperatureRise(Limit):
     default = 4.0
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law, power 2."""
-        return (Law(at.heating, 2, at.design.threshold(self.id)),)
+        """One law, power 2, that drives itself on."""
+        allowed = at.design.threshold(self.id)
+        return (Law(at.heating, 2, allowed, growth=at.heat_growth),)

@@ -115,6 +115,7 @@ class Liquid(Part):
             * given(self.relative_permittivity, float(water.relative_permittivity(warm))),
             viscosity=given(self.viscosity, float(water.viscosity(warm))),
             density=given(self.density, float(water.density(warm))),
+            heat_capacity=float(water.heat_capacity(warm)),
             permittivity_slope=float(water.permittivity_slope(warm)),
             conductivity_slope=self.conductivity_per_kelvin,
         )
@@ -124,12 +125,18 @@ class Liquid(Part):
 class LiquidState:
     """Liquid properties at one temperature, SI.
 
-    `permittivity` in F/m; `permittivity_slope` = d ln ε/dT and `conductivity_slope` =
-    d ln σ/dT in 1/K.
+    `permittivity` in F/m; `heat_capacity` in J/(kg K), that of water; `permittivity_slope` =
+    d ln ε/dT and `conductivity_slope` = d ln σ/dT in 1/K.
     """
 
     permittivity: float
     viscosity: float
     density: float
+    heat_capacity: float
     permittivity_slope: float
     conductivity_slope: float
+
+    @property
+    def heat_storage(self) -> float:
+        """Heat capacity per volume, J/(m³ K)."""
+        return self.density * self.heat_capacity

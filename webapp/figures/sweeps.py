@@ -36,7 +36,8 @@ def sweep_of(result: Evaluation, limit: str) -> Sweep:
 
 def heating_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
     """Draw the temperature rise of the hottest liquid."""
-    top = nice_ceiling(1.6 * max(found.value, found.allowed))
+    reached = found.value if np.isfinite(found.value) else found.allowed
+    top = nice_ceiling(1.6 * max(reached, found.allowed))
     y_axis = axis(theme, "Temperature rise (K)", range=[0.0, top], tickformat="~g")
     return _figure(found, result, theme, y_axis)
 
@@ -52,10 +53,13 @@ def electrothermal_figure(found: Sweep, result: Evaluation, theme: Theme) -> Fig
 
 def heating_sentence(found: Sweep, result: Evaluation) -> str:
     """Say how warm it gets and what that allows."""
+    allowed = f"a rise of {format_value(found.allowed, 'K')} is allowed"
+    if not np.isfinite(found.value):
+        return f"The liquid warms without end, as it conducts better when warm; {allowed}."
     rise = result.design.liquid.temperature + found.value
     return (
         f"The hottest liquid is {format_value(found.value, 'K')} above the stage, at "
-        f"{format_value(rise, 'degC')}; a rise of {format_value(found.allowed, 'K')} is allowed."
+        f"{format_value(rise, 'degC')}; {allowed}."
     )
 
 
