@@ -17,7 +17,7 @@ DIPOLE_RATIO = 0.3
 #: metal in dilute salt, no source.
 DOUBLE_LAYER = 0.1
 #: Growth of the temperature rise by the liquid's own warmth that is worth a note.
-NOTABLE_GROWTH = 0.05
+NOTABLE_GROWTH = 0.1
 #: A share of the voltage lost to the double layers that is worth a note.
 NOTABLE_LOSS = 0.05
 

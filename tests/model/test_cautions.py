@@ -54,11 +54,27 @@ def test_voltage_that_double_layers_leave(yeast, patterns, vary):
         assert voltage_at_liquid(result) == pytest.approx(expected, rel=1e-9)
 
 
-def test_a_rise_that_the_linear_law_understates(yeast, patterns, vary):
-    for voltage, warm in (("20 V", False), ("40 V", True)):
-        result = evaluate(vary(yeast, {"drive.voltage": voltage}), patterns)
-        assert (result.temperature_rise > 5.0) == warm
-        assert ("understated" in " ".join(notes(result))) == warm
+@pytest.mark.parametrize(
+    ("voltage", "words"),
+    [
+        ("20 V", ""),
+        ("40 V", "Warm liquid conducts better: the rise is"),
+        ("90 V", "No steady temperature: warm liquid conducts better"),
+    ],
+)
+def test_a_rise_that_drives_itself_on(yeast, patterns, vary, voltage, words):
+    result = evaluate(vary(yeast, {"drive.voltage": voltage}), patterns)
+    found = " ".join(notes(result))
+    assert words in found
+    assert bool(words) == ("arm liquid conducts better" in found)
+    assert ("can boil" in " ".join(cautions(result))) == (voltage == "90 V")
+
+
+@pytest.mark.parametrize(("rate", "carried"), [("3 uL/min", False), ("10 mL/min", True)])
+def test_flow_that_carries_the_heat_off(yeast, patterns, vary, rate, carried):
+    result = evaluate(vary(yeast, {"flow.rate": rate}), patterns)
+    assert (result.flow_cooling.peclet > 1.0) == carried
+    assert ("The flow carries off more heat" in " ".join(notes(result))) == carried
 
 
 def test_particles_too_large_for_the_point_dipole(yeast, patterns, vary):

@@ -124,9 +124,8 @@ def test_powers_of_the_voltage(yeast, patterns, vary):
     before = {row.rule.id: row.value for row in one.ledger}
     assert values["electrothermal_ratio"] == pytest.approx(4.0 * before["electrothermal_ratio"])
     assert values["generator_voltage"] == pytest.approx(2.0 * before["generator_voltage"])
-    stage = yeast.liquid.temperature
-    rise = before["highest_temperature"] - stage
-    assert values["highest_temperature"] - stage == pytest.approx(4.0 * rise)
+    stage = yeast.liquid.temperature  # what drives the rise on only adds to it
+    assert values["highest_temperature"] - stage > 4.0 * (before["highest_temperature"] - stage)
 
 
 def test_duty_scales_means_and_spares_peaks(yeast, patterns, vary):
@@ -210,7 +209,7 @@ def test_the_hottest_liquid_is_the_stage_and_the_rise(results):
     for result in results.values():
         row = next(row for row in result.ledger if row.rule.id == "highest_temperature")
         stage = result.design.liquid.temperature
-        assert row.value == pytest.approx(stage + result.temperature_rise)
+        assert row.value == pytest.approx(stage + result.self_consistent_rise)
 
 
 def test_a_slow_field_charges_a_tight_membrane_to_schwans_value(results, vary):

@@ -12,7 +12,7 @@ from model.profile import fingerprint
 from model.quantity import parse_quantity
 from model.summary import check_object, check_text, spectrum_rows
 
-# The keys of the profile format, version 1.
+# The keys of the profile format, version 1, and those added since.
 KEYS = {
     "version",
     "fingerprint",
@@ -22,6 +22,11 @@ KEYS = {
     "floor_Vpp",
     "ceiling_Vpp",
     "temperature_rise_K",
+    "self_consistent_rise_K",
+    "warm_up_63_s",
+    "warm_up_95_s",
+    "flow_peclet",
+    "flow_outlet_rise_K",
     "electrothermal_speed_um_s",
     "dep_speed_um_s",
     "chip",
@@ -101,7 +106,8 @@ def test_units_of_the_object(yeast, patterns):
     assert limits["generator_current"]["allowed"] == pytest.approx(100.0)
     assert limits["generator_current"]["unit"] == "mA"
     assert limits["generator_current"]["value"] == pytest.approx(data["chip"]["current_mA_rms"])
-    assert limits["temperature_rise"]["value"] == pytest.approx(data["temperature_rise_K"])
+    assert limits["temperature_rise"]["value"] == pytest.approx(data["self_consistent_rise_K"])
+    assert data["temperature_rise_K"] == pytest.approx(result.temperature_rise)
     assert limits["hold"]["value"] == pytest.approx(data["particles"][0]["force_pN"])
     assert limits["force_sign"]["value"] == pytest.approx(data["particles"][0]["re_k"])
 
@@ -113,6 +119,8 @@ def test_the_text_tells_every_rule_and_particle(result):
     for particle in result.design.particles:
         assert particle.name in text
     assert fingerprint(result.design) in text
+    assert ("no steady temperature" in text) == (result.self_consistent_rise is None)
+    assert ("Péclet" in text) == (result.design.flow.rate > 0.0)
     assert "local laboratory safety rules" in text.lower()
     for word in ("nan", "inf ", "e+", "None"):
         assert word not in text, word

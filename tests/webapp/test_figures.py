@@ -51,6 +51,7 @@ EXTREMES = {
     "wrong sign": {"task.dielectrophoresis": "negative"},
     "no flow": {"flow.rate": "0 uL/min"},
     "loud": {"drive.voltage": "1000 V", "drive.voltage_limit": "0.01 V"},
+    "runaway": {"drive.voltage": "100 V", "drive.voltage_limit": "200 V"},
     "faint": {"drive.voltage": "1 mV", "drive.voltage_limit": "2000 V"},
     "fast": {"drive.frequency": "1 GHz", "liquid.conductivity": "10 S/m"},
     "slow": {"drive.frequency": "100 Hz", "liquid.conductivity": "0.01 mS/m"},
