@@ -207,7 +207,8 @@ class Evaluation:
     def self_consistent_rise(self) -> float | None:
         """The same with the conductivity that grows as it warms, K; None if nothing is steady.
 
-        Exact to second order and warmer than true beyond, see :mod:`model.growth`.
+        Exact to second order; beyond, warmer than true where warmth drives the heat on. See
+        :mod:`model.growth`.
         """
         rise = float(self_consistent(self.temperature_rise, self.point.heat_growth[0]))
         return rise if np.isfinite(rise) else None

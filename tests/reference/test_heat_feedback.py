@@ -23,6 +23,7 @@ from model.growth import self_consistent
 from model.layouts.bars_under_plate import BarsUnderPlate
 from model.layouts.coplanar_bars import CoplanarBars
 from model.layouts.facing_bars import FacingBars
+from model.layouts.four_phase_bars import FourPhaseBars
 from model.walls import Wall
 
 UM = 1e-6
@@ -122,16 +123,21 @@ def full_solution(section):
             side = FacetBasis(mesh, ElementQuad2(), facets=mesh.boundaries[name])
             conducting = conducting + film.assemble(side, transfer=transfer)
     cold = [every.get_dofs(name).all() for name, h in section.outsides.items() if h is None]
-    level, (potentials,) = every.zeros(), section.potentials
     outside = np.setdiff1d(np.arange(every.N), np.unique(wet.element_dofs))
-    for name, value in potentials.items():
-        level[every.get_dofs(name).all()] = value
-    held = np.concatenate([outside, *(every.get_dofs(name).all() for name in potentials)])
+
+    def potential(weight, potentials):
+        level = every.zeros()
+        for name, value in potentials.items():
+            level[every.get_dofs(name).all()] = value
+        held = np.concatenate([outside, *(every.get_dofs(name).all() for name in potentials)])
+        return solve(*condense(weighted.assemble(wet, weight=weight), x=level, D=held))
 
     def step(rise, scale):
         weight = 1.0 + C * np.asarray(wet.interpolate(rise))
-        phi = solve(*condense(weighted.assemble(wet, weight=weight), x=level, D=held))
-        heat = warming.assemble(wet, weight=scale * K * weight, phi=wet.interpolate(phi))
+        heat = every.zeros()
+        for potentials in section.potentials:
+            phi = wet.interpolate(potential(weight, potentials))
+            heat += warming.assemble(wet, weight=scale * K * weight, phi=phi)
         return solve(*condense(conducting, heat, D=np.concatenate(cold)))
 
     ends = mesh.p[:, mesh.t[:, liquid]].reshape(2, -1)
@@ -163,6 +169,7 @@ SILICON = Wall(material="silicon", thickness=20 * UM, outside="held")
 WALLED = {
     "coplanar": chip(floor=GLASS, lid=PDMS),
     "plate": chip(BarsUnderPlate, floor=SILICON, lid=SILICON),
+    "four phases": chip(FourPhaseBars, floor=SILICON, lid=SILICON),
 }
 
 
