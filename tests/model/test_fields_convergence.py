@@ -108,6 +108,26 @@ def test_cubic_potential_is_exact_on_skewed_cells(kind):
     np.testing.assert_allclose(found.force_patterns(*located)[0], rise, atol=1e-8)
 
 
+@pytest.mark.parametrize("kind", ["triangles", "quadrilaterals"])
+@pytest.mark.parametrize("top", [0.613, 0.75, 0.8731])
+def test_place_of_the_highest_value(kind, top):
+    """Even heat, held at x = 0, a film at x = 1: Θ = top·x − x²/2, the top in or between cells."""
+    mesh = square(kind, 4)
+    functions = space(mesh, 4, 10)
+    cooling = Cooling({"left": None, "right": (1 - top) / (top - 0.5)})
+    heat = solve_temperature(
+        functions, np.ones(mesh.nelements), np.ones_like(functions.weights), cooling
+    )
+    found = Piecewise.of(functions, heat[None], Cells.of(mesh))
+    cell, place = found.place_of_highest(np.arange(mesh.nelements))
+    r, s = place[:, 0]
+    shares = [(1 - r) * (1 - s), r * (1 - s), r * s, (1 - r) * s]
+    if kind == "triangles":
+        shares = [1 - r - s, r, s]
+    assert (shares @ found.cells.corners[cell[0]])[0] == pytest.approx(top, abs=1e-3)
+    assert found.values(cell, place)[0, 0] == pytest.approx(top**2 / 2, rel=1e-6)
+
+
 def test_held_potential_between_plates_is_linear():
     mesh = square("triangles", 3)
     potential = solve_potential(space(mesh, 3, 6), {"left": 0.5, "right": -0.5})
