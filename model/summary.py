@@ -18,6 +18,9 @@ from model.quantity import format_quantity, format_si, to_unit
 from model.verdict import format_value, format_volts, row_headroom, row_value, verdict
 from model.version import VERSION
 
+#: Péclet number below which the flow's share of the heat, about as large, is not worth a number.
+LITTLE_CARRIED = 0.1
+
 
 def check_object(result: Evaluation) -> dict[str, Any]:
     """Verdict, ledger and particles as plain data; numbers finite, or null with a reason."""
@@ -142,10 +145,12 @@ def _heat(result: Evaluation) -> list[str]:
         f"conductivity), 63 % of it after {soon}, 95 % after {late}"
     ]
     if flow is not None:
-        lines.append(
-            f"  flow: Péclet number {format_quantity(flow.peclet, '', 2)}; all the heat would warm "
-            f"it by {format_quantity(flow.outlet_rise, 'K', 3)}, so its mean rise is below that"
-        )
+        number = f"  flow: Péclet number {format_quantity(flow.peclet, '', 2)}"
+        if flow.peclet < LITTLE_CARRIED:
+            lines.append(f"{number}, so that it carries off little of the heat")
+        else:
+            outlet = format_quantity(flow.outlet_rise, "K", 3)
+            lines.append(f"{number}; all the heat would warm it by {outlet}, the most of its mean")
     return lines
 
 
