@@ -10,6 +10,9 @@ from model.arrays import Real
 from model.fields.assembly import gather
 from model.fields.cells import Index
 
+#: Right-hand sides solved at once; more do not fit the processor's cache.
+_SIDES = 32
+
 
 @dataclass(frozen=True, eq=False)
 class CellSystem:
@@ -46,6 +49,7 @@ class Factor:
     free: Index
     inverse: Real
     extension: Real
+    condensed: Real
     factor: SuperLU
 
     def solve(self, vector: Real, held: Real) -> Real:
@@ -57,6 +61,27 @@ class Factor:
         for _ in range(2):
             solution = solution + self._correct(vector - self.system.apply(solution))
         return solution
+
+    def schur(self, kept: Index) -> Real:
+        """Matrix S (n, n) left on some of the held unknowns once every free one is eliminated.
+
+        uᵀSu is the least energy with values u on `kept` and 0 on the other held unknowns. It is
+        taken as the energy of the solution, whose error it then has squared only.
+        """
+        among_kept, across = self._part(kept, kept), self._part(self.free, kept)
+        inside = self._part(self.free, self.free)
+        answer = np.empty(across.shape)
+        for start in range(0, kept.size, _SIDES):
+            some = slice(start, start + _SIDES)
+            answer[:, some] = -self.factor.solve(across[:, some].toarray())
+        left = across + inside @ answer  # what rounding leaves of the equations
+        schur = among_kept + across.T @ answer + answer.T @ left
+        return np.asarray(0.5 * (schur + schur.T))
+
+    def _part(self, rows: Index, columns: Index) -> csc_matrix:
+        """Block of the condensed matrix."""
+        dofs = self.system.dofs[: self.condensed.shape[1]]
+        return _assemble(self.condensed, dofs, (rows, columns), self.system.size)
 
     def _correct(self, residual: Real) -> Real:
         dofs, outer = self.system.dofs, len(self.system.dofs) - self.system.inner
@@ -82,17 +107,24 @@ def factorise(system: CellSystem, held: Index) -> Factor:
     extension = inverse @ coupling
     condensed = system.blocks[:, :outer, :outer] - coupling.transpose(0, 2, 1) @ extension
     free = np.setdiff1d(system.dofs[:outer], held)
-    number = np.full(system.size, -1, dtype=np.int32)
-    number[free] = np.arange(free.size)
-    place = number[system.dofs[:outer]].T
-    i = np.broadcast_to(place[:, :, None], condensed.shape).ravel()
-    j = np.broadcast_to(place[:, None, :], condensed.shape).ravel()
-    kept = (i >= 0) & (j >= 0)
-    matrix = csc_matrix((condensed.ravel()[kept], (i[kept], j[kept])), shape=(free.size,) * 2)
     factor = splu(
-        matrix,
+        _assemble(condensed, system.dofs[:outer], (free, free), system.size),
         permc_spec="MMD_AT_PLUS_A",
         diag_pivot_thresh=0.0,
         options={"SymmetricMode": True},
     )
-    return Factor(system, free, inverse, extension, factor)
+    return Factor(system, free, inverse, extension, condensed, factor)
+
+
+def _assemble(blocks: Real, dofs: Index, parts: tuple[Index, Index], size: int) -> csc_matrix:
+    """Sparse matrix of cell matrices, between the unknowns of two parts."""
+    places = []
+    for part in parts:
+        number = np.full(size, -1, dtype=np.int32)
+        number[part] = np.arange(part.size)
+        places.append(number[dofs].T)
+    i = np.broadcast_to(places[0][:, :, None], blocks.shape).ravel()
+    j = np.broadcast_to(places[1][:, None, :], blocks.shape).ravel()
+    kept = (i >= 0) & (j >= 0)
+    shape = (parts[0].size, parts[1].size)
+    return csc_matrix((blocks.ravel()[kept], (i[kept], j[kept])), shape=shape)

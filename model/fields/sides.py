@@ -14,11 +14,15 @@ _ENDS = {
     4: (((0, 0), (1, 0)), ((1, 0), (1, 1)), ((0, 1), (1, 1)), ((0, 0), (0, 1))),
 }
 
+#: Number of the corner at each reference place (0 or 1, 0 or 1).
+_CORNERS = {3: np.array([[0, 2], [1, 1]]), 4: np.array([[0, 3], [1, 2]])}
+
 
 def side_masses(functions: Space, name: str) -> tuple[Index, Real]:
     """Cells (n,) at a named side, and their matrices (n, n_local, n_local) of ∫ u v along it."""
     cells, sides, lengths = _sides(functions, name)
-    traces, weights = _traces(functions)
+    steps, weights = _steps()
+    traces = _traces(functions, steps)
     reference = traces @ (traces * weights).transpose(0, 2, 1)
     return cells, reference[sides] * lengths[:, None, None]
 
@@ -29,17 +33,16 @@ def project_on_side(functions: Space, name: str, law: Callable[[Real], Real], ax
     `law` takes places (2, n) in m and gives vectors (2, n); `axis` picks the component.
     """
     cells, sides, lengths = _sides(functions, name)
-    traces, weights = _traces(functions)
+    steps, weights = _steps()
+    traces = _traces(functions, steps)
     own = functions.on(name)
     place = np.full(functions.size, -1)
     place[own] = np.arange(own.size)
     system, vector = np.zeros((own.size, own.size)), np.zeros(own.size)
-    corners = functions.mesh.p[:, functions.mesh.t[:, cells]]  # (2, corner, n)
     _, masses = side_masses(functions, name)
+    places = _places(functions, cells, sides, steps)
     for row, (cell, side) in enumerate(zip(cells, sides, strict=True)):
-        start, end = (_corner(corners[:, :, row], point) for point in _ENDS[len(corners[0])][side])
-        spots = start[:, None] + (end - start)[:, None] * _steps()[0]
-        values = traces[side] @ (law(spots)[axis] * weights) * lengths[row]
+        values = traces[side] @ (law(places[:, row])[axis] * weights) * lengths[row]
         local = place[functions.dofs[:, cell]]
         at = local >= 0
         system[np.ix_(local[at], local[at])] += masses[row][np.ix_(at, at)]
@@ -47,6 +50,19 @@ def project_on_side(functions: Space, name: str, law: Callable[[Real], Real], ax
     solution = np.zeros(functions.size)
     solution[own] = np.linalg.solve(system, vector)
     return solution
+
+
+def side_values(functions: Space, name: str, steps: Real) -> tuple[Real, Index, Real]:
+    """Local functions at `steps` (0…1) of each facet of a named side.
+
+    Returns
+    -------
+    places, dofs, values
+        Places (2, n, n_step), m; unknowns (n_local, n); values (n, n_local, n_step).
+    """
+    cells, sides, _ = _sides(functions, name)
+    values = _traces(functions, steps)[sides]
+    return _places(functions, cells, sides, steps), functions.dofs[:, cells], values
 
 
 def _sides(functions: Space, name: str) -> tuple[Index, Index, Real]:
@@ -59,24 +75,29 @@ def _sides(functions: Space, name: str) -> tuple[Index, Index, Real]:
     return cells, sides, np.hypot(*(ends[:, 1] - ends[:, 0]))
 
 
-def _traces(functions: Space) -> tuple[Real, Real]:
-    """Local functions on each reference side, (n_side, n_local, n_point), and weights."""
-    steps, weights = _steps()
+def _traces(functions: Space, steps: Real) -> Real:
+    """Local functions at `steps` along each reference side, (n_side, n_local, n_step)."""
     tables = []
     for start, end in _ENDS[functions.mesh.t.shape[0]]:
         places = np.outer(start, 1 - steps) + np.outer(end, steps)
         parts = [functions.element.lbasis(places, i)[0] for i in range(len(functions.dofs))]
         tables.append(np.stack([np.broadcast_to(part, steps.shape) for part in parts]))
-    return np.stack(tables), weights
+    return np.stack(tables)
+
+
+def _places(functions: Space, cells: Index, sides: Index, steps: Real) -> Real:
+    """Places at `steps` along the given sides of the given cells, (2, n, n_step)."""
+    corners = functions.mesh.p[:, functions.mesh.t[:, cells]]  # (2, corner, n)
+    rows = np.arange(cells.size)
+    ends = np.array(_ENDS[len(corners[0])])[sides]  # (n, end, reference coordinate)
+    numbers = _CORNERS[len(corners[0])]
+    start, end = (
+        corners[:, numbers[ends[:, which, 0], ends[:, which, 1]], rows] for which in (0, 1)
+    )
+    return np.asarray(start[:, :, None] + (end - start)[:, :, None] * steps)
 
 
 def _steps() -> tuple[Real, Real]:
     """Gauss points and weights on 0…1, exact for the square of any degree in use."""
     points, weights = np.polynomial.legendre.leggauss(10)
     return 0.5 + 0.5 * points, 0.5 * weights
-
-
-def _corner(corners: Real, point: tuple[int, int]) -> Real:
-    """Corner (2,) of a cell that stands at a corner of the reference cell."""
-    numbers = {(0, 0): 0, (1, 0): 1, (1, 1): 2, (0, 1): 3 if corners.shape[1] == 4 else 2}
-    return corners[:, numbers[point]]
