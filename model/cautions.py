@@ -13,13 +13,12 @@ HAZARDOUS_PEAK = 42.4
 #: The point-dipole force is taken as good while radius/(E²/|∇E²|) stays below this; common
 #: practice, no source.
 DIPOLE_RATIO = 0.3
-#: Capacitance of an electrode's double layer with its Stern layer, F/m²; common practice for
-#: metal in dilute salt, no source.
-DOUBLE_LAYER = 0.1
 #: Growth of the temperature rise by the liquid's own warmth that is worth a note.
 NOTABLE_GROWTH = 0.1
 #: A share of the voltage lost to the double layers that is worth a note.
 NOTABLE_LOSS = 0.05
+#: Admittance of the walls over that of the liquid above which they are not negligible.
+NOTABLE_WALLS = 0.1
 
 DEFER = "Local laboratory safety rules and licensed practice come first."
 GENERAL = (
@@ -69,14 +68,7 @@ def notes(result: Evaluation) -> tuple[str, ...]:
             found.append(
                 f"{particle.name} must live but has no membrane; no membrane voltage is checked."
             )
-    reaching = voltage_at_liquid(result)
-    if reaching < 1.0 - NOTABLE_LOSS:
-        found.append(
-            f"The electrodes polarise here: some {reaching:.0%} of the voltage reaches the liquid. "
-            "That loss is not in the numbers, so forces are overstated; electro-osmotic flow, gas "
-            "and electrode damage are not modelled and may decide at such frequencies."
-        )
-    return (*found, *_heat(result), *_passing(result))
+    return (*found, *_electrical(result), *_heat(result), *_passing(result))
 
 
 def _heat(result: Evaluation) -> Iterator[str]:
@@ -102,16 +94,22 @@ def _heat(result: Evaluation) -> Iterator[str]:
         )
 
 
-def voltage_at_liquid(result: Evaluation) -> float:
-    """Share of the voltage that the double layers leave to the liquid, roughly.
-
-    1/√(1 + (f_c/f)²) with f_c = σ·cell factor/(2π C_dl·width), the series of the liquid's
-    resistance and the capacitance of the double layers; C_dl is :data:`DOUBLE_LAYER`.
-    """
-    design = result.design
-    conductance = design.liquid.conductivity * result.patterns.cell_factor
-    corner = conductance / (2.0 * np.pi * DOUBLE_LAYER * design.chip.double_layer_width)
-    return float(1.0 / np.hypot(1.0, corner / design.drive.frequency))
+def _electrical(result: Evaluation) -> Iterator[str]:
+    """Where electrodes or walls take their part of the drive."""
+    reaching = abs(result.share)
+    if reaching < 1.0 - NOTABLE_LOSS:
+        yield (
+            f"The electrodes polarise here: {reaching:.0%} of the voltage reaches the liquid. The "
+            "numbers count that, with the field's pattern as it is without; it really flattens, "
+            "so that forces near the edges are overstated and those far from them understated, "
+            "either by up to a factor of two."
+        )
+    walls = float(result.point.circuit.wall_ratio.reshape(-1)[0])
+    if walls > NOTABLE_WALLS:
+        yield (
+            f"Floor and lid carry {walls:.0%} of the liquid's current here, which is not "
+            "negligible: they draw the field aside, and its pattern leaves that out."
+        )
 
 
 def _passing(result: Evaluation) -> Iterator[str]:

@@ -11,6 +11,7 @@ import numpy as np
 
 from model.arrays import Complex, Real
 from model.channel import local_speed
+from model.circuit import Circuit
 from model.design import Design
 from model.fields.lines import Line
 from model.fields.patterns import ChipPatterns
@@ -36,6 +37,10 @@ class Conditions:
     -----
     All results broadcast to ``(..., n_frequency)``. The drive's duty scales mean forces and heat
     by duty and the electrothermal flow by duty², as force follows the heat of the same drive.
+    Voltages are those between the chip's terminals; of them the share of :attr:`share` reaches
+    the liquid, so that forces and heat go with its square, electrothermal flow with its fourth
+    power and the voltage of membranes with itself. The pattern of the field keeps its shape in
+    this; see :attr:`Circuit.share` for how far that holds.
     """
 
     design: Design
@@ -59,6 +64,21 @@ class Conditions:
         """Complex permittivity of the liquid, ε − jσ/ω, F/m."""
         return np.asarray(self.liquid.permittivity - 1j * self.conductivity / self.omega)
 
+    @cached_property
+    def circuit(self) -> Circuit:
+        """Interface, liquid, walls and leads."""
+        return Circuit(self.design, self.patterns, self.omega, self.conductivity)
+
+    @property
+    def share(self) -> Complex:
+        """Share of the voltage between the terminals that reaches the liquid, complex."""
+        return self.circuit.share
+
+    @cached_property
+    def _square_share(self) -> Real:
+        """Its squared magnitude, for all that goes with E²."""
+        return np.asarray(np.abs(self.share) ** 2)
+
     @property
     def wall_distance(self) -> float:
         """From particle centres at the force height to the nearer of floor and lid, m."""
@@ -80,7 +100,7 @@ class Conditions:
         """Induced membrane voltage at the pole per outside field, m."""
         return particle.membrane_gain(self.omega, self.medium)
 
-    def exposure(self, particle: Particle) -> float:
+    def exposure(self, particle: Particle) -> Real:
         """Strongest field that a particle has to endure, 1/m per V rms.
 
         The field at its centre and the share of the gradient across it: at its pole an insulated
@@ -89,12 +109,13 @@ class Conditions:
         """
         radius = particle.equivalent_radius
         heights = self.design.task.exposure_heights(particle, self.design.chip)
-        return max(_with_gradient(self.patterns.line(height), radius) for height in heights)
+        field = max(_with_gradient(self.patterns.line(height), radius) for height in heights)
+        return np.asarray(field * np.abs(self.share))
 
-    def _force_scale(self, particle: Particle) -> float:
-        """From Re K times a force pattern to force: 2π ε a³ · duty, F m²."""
+    def _force_scale(self, particle: Particle) -> Real:
+        """From Re K times a force pattern to force: 2π ε a³ |share|² · duty, F m²."""
         size = 2.0 * np.pi * self.liquid.permittivity * particle.equivalent_radius**3
-        return float(size * self.design.drive.duty)
+        return np.asarray(size * self.design.drive.duty * self._square_share)
 
     def _force_weights(self, particle: Particle) -> tuple[Real, ...]:
         """Factors of the force patterns: Re K of ∇|Ê|² and Im K of a travelling field."""
@@ -150,11 +171,11 @@ class Conditions:
 
     @property
     def electrothermal_scale(self) -> Real:
-        """From weighted flow patterns to speed: εσ·duty²/(kηL), K m/s per V⁴."""
+        """From weighted flow patterns to speed: εσ|share|⁴·duty²/(kηL), K m/s per V⁴."""
         liquid = self.liquid
         scale = liquid.permittivity * self.conductivity * self.design.drive.duty**2
         scale = scale / (self.patterns.thermal_conductivity * liquid.viscosity)
-        return np.asarray(scale / self.patterns.length)
+        return np.asarray(scale * self._square_share**2 / self.patterns.length)
 
     @cached_property
     def electrothermal_speed(self) -> Real:
@@ -169,10 +190,10 @@ class Conditions:
     def heating(self) -> Real:
         """Rise of the hottest liquid at the conductivity of the stage temperature, K/V².
 
-        duty · Θ_max σ/k; the same at every frequency.
+        duty · Θ_max σ/k · |share|².
         """
         rise = self.patterns.peak_temperature / self.patterns.thermal_conductivity
-        return np.asarray(self.design.drive.duty * rise * self.conductivity) + 0.0 * self.omega
+        return np.asarray(self.design.drive.duty * rise * self.conductivity * self._square_share)
 
     @cached_property
     def heat_growth(self) -> Real:
@@ -187,14 +208,13 @@ class Conditions:
         yielding = (ohmic + displaced * square) / (1.0 + square)
         return self.patterns.feedback.growth(ohmic, yielding)
 
-    @cached_property
+    @property
     def admittance(self) -> Complex:
-        """Admittance of all that conducts in parallel, S: (σ + jωε) · cell factor · length.
+        """Admittance between the terminals of all that conducts, S.
 
         Its real part times V_rms² is the power of all phases together.
         """
-        length = self.patterns.cell_factor * self.design.chip.parallel_length
-        return np.asarray((self.conductivity + 1j * self.omega * self.liquid.permittivity) * length)
+        return self.circuit.admittance
 
     @property
     def terminal_admittance(self) -> Complex:

@@ -2,11 +2,12 @@
 
 from collections import Counter
 from collections.abc import Iterable
-from typing import TYPE_CHECKING, Annotated, Any
+from typing import TYPE_CHECKING, Annotated, Any, Literal
 
 from pydantic import BeforeValidator, ConfigDict, Field, create_model, model_validator
 
-from model.declare import Part, Quantity, Text, counted, misfit
+from model.declare import Choice, Part, Quantity, Text, counted, misfit
+from model.electrode import Electrode
 from model.layout import Layout
 from model.layouts import LAYOUTS
 from model.limits import LIMITS
@@ -32,7 +33,7 @@ class Drive(Part):
         float,
         Quantity(
             "Voltage",
-            "Peak to peak between electrodes of opposite phase.",
+            "Peak to peak between the chip's terminals of opposite phase.",
             unit="V",
             low="0.001 V",
             high="1000 V",
@@ -53,6 +54,15 @@ class Drive(Part):
             high="100 kohm",
         ),
     ] = 50.0
+    generator_setting: Annotated[
+        Literal["open-circuit", "into-50-ohm"],
+        Choice(
+            "Display shows",
+            "What the generator's display means: its voltage with nothing connected, or that into "
+            "a load of 50 Ω, of which a chip of high impedance gets twice.",
+            options={"open-circuit": "open circuit", "into-50-ohm": "into 50 Ω"},
+        ),
+    ] = "open-circuit"
     voltage_limit: Annotated[
         float,
         Quantity(
@@ -128,6 +138,7 @@ class Design(Part):
     chip: Annotated[Layout, OneOf(LAYOUTS, "layout")]
     liquid: Liquid
     drive: Drive
+    electrode: Electrode = Electrode()
     flow: Flow = Flow()
     particles: Annotated[
         tuple[Annotated[Particle, OneOf(PARTICLES, "kind")], ...],

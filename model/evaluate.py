@@ -12,6 +12,7 @@ from model.corridor import Corridor, Rule, corridor, rules
 from model.crossovers import Crossover, find_crossovers
 from model.design import Design
 from model.fields.patterns import ChipPatterns
+from model.generator import displayed
 from model.growth import self_consistent
 from model.particle import Particle
 from model.voltage import PEAK, PEAK_TO_PEAK
@@ -185,7 +186,7 @@ class Evaluation:
         gain = at.membrane_gain(particle)
         membrane = None
         if gain is not None:
-            membrane = float(gain[0]) * at.exposure(particle) * PEAK * voltage
+            membrane = float((gain * at.exposure(particle))[0]) * PEAK * voltage
         force = float(at.force_along_flow(particle)[0]) * voltage**2
         return ParticleResult(particle, complex(at.polarisation(particle)[0]), force, membrane)
 
@@ -249,14 +250,25 @@ class Evaluation:
     @cached_property
     def load(self) -> ChipLoad:
         """Resistance, capacitance, current and power (mean over the duty) of the chip."""
-        admittance, omega = complex(self.point.admittance[0]), float(self.point.omega[0])
-        power = admittance.real * self.rms_voltage**2 * self.design.drive.duty
+        point, liquid = self.point, self.design.liquid
+        length = self.patterns.cell_factor * self.design.chip.parallel_length
         return ChipLoad(
-            1.0 / admittance.real,
-            admittance.imag / omega,
-            abs(self.point.terminal_admittance[0]) * self.rms_voltage,
-            power,
+            1.0 / (liquid.conductivity * length),
+            liquid.state.permittivity * length,
+            abs(point.terminal_admittance[0]) * self.rms_voltage,
+            float(point.admittance[0].real) * self.rms_voltage**2 * self.design.drive.duty,
         )
+
+    @property
+    def share(self) -> complex:
+        """Share of the voltage between the terminals that reaches the liquid."""
+        return complex(self.point.share[0])
+
+    @property
+    def generator_display(self) -> float:
+        """What the generator's display has to show for this voltage at the chip, peak to peak."""
+        admittance = complex(self.point.terminal_admittance[0])
+        return self.design.drive.voltage * displayed(self.design.drive, admittance)
 
 
 def evaluate(

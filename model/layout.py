@@ -65,14 +65,6 @@ class Layout(Part, ABC):
     def narrowest(self) -> float:
         """Smallest opening that a particle meets between electrodes, m."""
 
-    @property
-    @abstractmethod
-    def double_layer_width(self) -> float:
-        """Width of the two double layers that the current crosses, in series, m.
-
-        Times their capacitance per area it is the capacitance per metre of `parallel_length`.
-        """
-
     @abstractmethod
     def contact_heights(self, radius: float) -> tuple[float, ...]:
         """Heights of the centre of a sphere that touches a face with electrodes, m."""

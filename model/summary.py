@@ -47,7 +47,9 @@ def check_object(result: Evaluation) -> dict[str, Any]:
             "liquid_capacitance_pF": load.capacitance * 1e12,
             "current_mA_rms": load.rms_current * 1e3,
             "power_mW": load.power * 1e3,
+            "share_of_voltage": abs(result.share),
         },
+        "generator_display_Vpp": result.generator_display,
         "particles": [_particle(result, found) for found in result.particles],
         "limits": [_limit(row) for row in result.ledger],
         "notes": list(notes(result)),
@@ -108,8 +110,10 @@ def check_text(result: Evaluation) -> str:
         f"  at {format_si(drive.frequency, 'Hz')}, {format_si(drive.voltage, 'V')} peak to peak "
         f"({rms_and_peak(drive.voltage)}), {format_si(design.liquid.conductivity, 'S/m')}",
         f"  {_corridor(result)}",
-        f"  chip: {format_si(load.resistance, 'Ω')} and {format_si(load.capacitance, 'F')} in "
-        f"parallel, {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
+        f"  liquid: {format_si(load.resistance, 'Ω')} and {format_si(load.capacitance, 'F')} in "
+        f"parallel, {abs(result.share):.1%} of the voltage reaches it",
+        f"  chip: {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
+        f"  {generator_words(result)}",
         *_heat(result),
         "",
         *_table(
@@ -152,6 +156,16 @@ def _heat(result: Evaluation) -> list[str]:
             outlet = format_quantity(flow.outlet_rise, "K", 3)
             lines.append(f"{number}; all the heat would warm it by {outlet}, the most of its mean")
     return lines
+
+
+def generator_words(result: Evaluation) -> str:
+    """What to set on the generator, e.g. for the line under the voltage."""
+    setting = {
+        "open-circuit": "shows the voltage with nothing connected",
+        "into-50-ohm": "shows the voltage into 50 Ω, half of that with nothing connected",
+    }[result.design.drive.generator_setting]
+    volts = format_si(result.generator_display, "V")
+    return f"generator: set {volts} peak to peak, on a display that {setting}"
 
 
 def _particle_row(result: Evaluation, found: ParticleResult) -> tuple[str, ...]:

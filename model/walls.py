@@ -152,6 +152,20 @@ class Wall(Part):
         return MATERIALS[self.material].heat_capacity
 
     @property
+    def electric_permittivity(self) -> float:
+        """Relative permittivity that holds."""
+        if self.relative_permittivity is not None:
+            return self.relative_permittivity
+        return MATERIALS[self.material].relative_permittivity
+
+    @property
+    def electric_conductivity(self) -> float:
+        """Electric conductivity that holds, S/m."""
+        if self.conductivity is not None:
+            return self.conductivity
+        return MATERIALS[self.material].conductivity
+
+    @property
     def heat_transfer(self) -> float | None:
         """Heat-transfer coefficient of the outside, W/(m² K); None if held at the stage."""
         if self.outside == "transfer" and self.heat_transfer_coefficient is not None:

@@ -87,6 +87,7 @@ def inputs_panel(design: Design) -> list[Component]:
         ("liquid", "Liquid", part_controls(design.liquid, "liquid")),
         ("particles", "Particles", _particles(design)),
         ("drive", "Drive", part_controls(design.drive, "drive")),
+        ("electrode", "Electrodes", part_controls(design.electrode, "electrode")),
         ("flow", "Flow", part_controls(design.flow, "flow")),
         ("limits", "Limits", part_controls(design.limits, "limits")),
     ]
@@ -103,13 +104,15 @@ def summaries(design: Design) -> dict[str, str]:
         getattr(design.limits, key) != getattr(defaults, key)
         for key in type(design.limits).model_fields
     )
-    liquid, drive = design.liquid, design.drive
+    liquid, drive, electrode = design.liquid, design.drive, design.electrode
+    film = "" if electrode.film_thickness is None else ", film"
     return {
         "task": design.task.label,
         "chip": design.chip.layout.replace("-", " "),
         "liquid": format_quantity(liquid.temperature, "degC"),
         "particles": str(len(design.particles)),
         "drive": f"{format_quantity(drive.source_resistance, 'ohm')} source",
+        "electrode": electrode.interface.replace("-", " ") + film,
         "flow": format_quantity(design.flow.rate, "uL/min", 4),
         "limits": f"{changed} changed" if changed else "defaults",
     }

@@ -1,5 +1,6 @@
 """A solved chip: patterns that any voltage, liquid and frequency merely scale."""
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeVar
 
@@ -10,6 +11,7 @@ from model.arrays import Complex, Phasor, Real
 from model.fields.feedback import Feedback
 from model.fields.lines import Line, LineTable
 from model.fields.piecewise import Piecewise
+from model.fields.response import ElectrodeResponse
 from model.fields.section import Fold, Rest
 from model.fields.stored import Stored
 
@@ -63,6 +65,11 @@ class ChipPatterns(Stored):
         Mean of Θ over the liquid.
     feedback
         Second order of the largest rise.
+    response
+        What an interface on the electrodes changes.
+    wall_factors
+        The same as `cell_factor` for floor and lid, to first order in their admittance; empty if
+        they stand outside the section.
     """
 
     chip: "Layout"
@@ -73,6 +80,8 @@ class ChipPatterns(Stored):
     peak_temperature: float
     mean_temperature: float
     feedback: Feedback
+    response: ElectrodeResponse
+    wall_factors: Mapping[str, float]
     fold: Fold
     rests: tuple[Rest, ...]
     potential: Piecewise

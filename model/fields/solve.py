@@ -7,14 +7,17 @@ import numpy as np
 from model.arrays import Real
 from model.fields.assembly import space
 from model.fields.cells import Cells
-from model.fields.electric import solve_potential
+from model.fields.electric import Potential, solve_potential
 from model.fields.feedback import solve_feedback
 from model.fields.flow import FlowSpace, solve_flow
 from model.fields.heat import Cooling, LiquidHeat, conduction
+from model.fields.modes import Modes, combined, electrode_modes
 from model.fields.patterns import ChipPatterns
 from model.fields.piecewise import Piecewise
+from model.fields.response import ElectrodeResponse
 from model.fields.sampling import sample_lines
 from model.fields.section import Section
+from model.fields.wall_energy import wall_energy
 
 if TYPE_CHECKING:
     from model.layout import Layout
@@ -75,10 +78,24 @@ def solve_chip(
         peak_temperature=float(temperature.highest(heat.liquid)[0]),
         mean_temperature=heat.mean(warmth),
         feedback=solve_feedback(coarse, potentials, fields, heat, temperature, warmth),
+        response=ElectrodeResponse.of(_modes(section, potentials)),
+        wall_factors={
+            name: section.cells_per_gap * wall_energy(section, potentials, name)
+            for name in ("floor", "lid")
+            if name in section.wall_conductivities
+        },
         fold=section.fold,
         rests=section.rests,
         table=sample_lines(section, **patterns),
         **patterns,
+    )
+
+
+def _modes(section: Section, potentials: list[Potential]) -> tuple[Modes, ...]:
+    """Few modes of the electrodes for each component of the drive."""
+    return tuple(
+        combined(electrode_modes(potential, held, section.electrodes))
+        for potential, held in zip(potentials, section.potentials, strict=True)
     )
 
 

@@ -40,8 +40,3 @@ class BarsUnderPlate(OpposedBars):
             outsides=piece.outsides,
             rests=piece.rests,
         )
-
-    @property
-    def double_layer_width(self) -> float:
-        """A bar and a pitch of the plate, in series, m."""
-        return 1.0 / (1.0 / self.bar_width + 1.0 / self.pitch)

@@ -70,8 +70,3 @@ class FacingBars(OpposedBars):
             rests=piece.rests,
             joined=None if mirrored else ("left", "right"),
         )
-
-    @property
-    def double_layer_width(self) -> float:
-        """A bar on the floor and one on the lid, in series, m."""
-        return self.bar_width / 2.0

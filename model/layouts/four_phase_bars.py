@@ -100,8 +100,3 @@ class FourPhaseBars(Bars):
     def narrowest(self) -> float:
         """The gap, m."""
         return self.gap
-
-    @property
-    def double_layer_width(self) -> float:
-        """Half a bar at either end of each gap, in series, m."""
-        return self.bar_width / 4.0

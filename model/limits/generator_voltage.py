@@ -2,8 +2,7 @@
 
 from typing import TYPE_CHECKING
 
-import numpy as np
-
+from model.generator import open_circuit
 from model.law import Law
 from model.limit import Limit
 from model.voltage import PEAK_TO_PEAK
@@ -28,5 +27,5 @@ class GeneratorVoltage(Limit):
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
         """One law, power 1."""
         drive = at.design.drive
-        gain = PEAK_TO_PEAK * np.abs(1.0 + drive.source_resistance * at.terminal_admittance)
+        gain = PEAK_TO_PEAK * open_circuit(drive.source_resistance, at.terminal_admittance)
         return (Law(gain, 1, drive.voltage_limit),)

@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 
 from model.fields.assembly import space
 from model.fields.electric import solve_potential
-from model.fields.response import combined, electrode_modes
+from model.fields.modes import combined, electrode_modes
 from model.layouts.bars_under_plate import BarsUnderPlate
 from model.layouts.coplanar_bars import CoplanarBars
 from model.layouts.facing_bars import FacingBars
@@ -45,8 +45,8 @@ def solved(name):
     if name not in KEPT:
         section = LAYOUTS[name].section()
         functions = space(section.liquid(), 8, 16, section.joined)
-        potential = solve_potential(functions, section.potentials)
-        modes = electrode_modes(potential, section.potentials, section.electrodes)
+        potential = solve_potential(functions, section.potentials[0])
+        modes = electrode_modes(potential, section.potentials[0], section.electrodes)
         KEPT[name] = potential.energy, modes, combined(modes)
     return KEPT[name]
 
@@ -130,7 +130,7 @@ def test_reciprocity():
     """The matrix of the liquid between electrode unknowns is symmetric and none too much."""
     section = LAYOUTS["plate"].section()
     functions = space(section.liquid(), 4, 8, section.joined)
-    potential = solve_potential(functions, section.potentials)
+    potential = solve_potential(functions, section.potentials[0])
     kept = functions.on(*section.electrodes)
     matrix = potential.factor.schur(kept)
     drive = potential.solution[kept]

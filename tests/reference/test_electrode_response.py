@@ -8,10 +8,13 @@ from scipy.interpolate import PchipInterpolator
 from skfem import Basis, BilinearForm, ElementTriP2, FacetBasis, LinearForm, MeshTri, solve
 from skfem.helpers import dot, grad
 
+from model.cautions import rms_and_peak
+from model.design import Drive
 from model.fields.assembly import space
 from model.fields.electric import solve_potential
 from model.fields.layered import Channel, Span, layered
-from model.fields.response import combined, electrode_modes
+from model.fields.modes import combined, electrode_modes
+from model.generator import displayed
 from model.layouts.bars_under_plate import BarsUnderPlate
 from model.layouts.coplanar_bars import CoplanarBars
 from model.walls import Wall
@@ -126,7 +129,7 @@ def test_bars_against_a_direct_solve(plate, length):
         channel_width=2e-3,
     )
     section = chip.section()
-    found = modes_of(section.liquid(), section.potentials, section.electrodes)
+    found = modes_of(section.liquid(), section.potentials[0], section.electrodes)
     share = found.share(np.array(length * UM))
     assert abs(found.conductance * share / current - 1) < 3e-5
     on_bar = np.array(found.electrodes) == "bar"
@@ -138,3 +141,28 @@ def test_bars_against_a_direct_solve(plate, length):
     expected = PchipInterpolator(spots[order], level.real)(place)
     expected = expected + 1j * PchipInterpolator(spots[order], level.imag)(place)
     assert np.max(np.abs(drop - expected)) < 2e-3 * np.abs(expected).max()
+
+
+#: Load behind 50 Ω: its share of the open-circuit voltage, and its voltage over a display that
+#: means 50 Ω; voltage dividers, exact.
+LOADS = [
+    (1 / 50.0, 0.5, 1.0),
+    (1 / 100.0, 0.666667, 1.33333),
+    (1 / 1e3, 0.952381, 1.90476),
+    (1 / 1e4, 0.995025, 1.99005),
+    (2j * np.pi * 10e6 * 100e-12, 0.954028, 2 * 0.954028),
+    (2j * np.pi * 10e6 * 300e-12, 0.727727, 2 * 0.727727),
+]
+
+
+@pytest.mark.parametrize(("admittance", "of_open", "of_matched"), LOADS)
+def test_what_a_display_means(admittance, of_open, of_matched):
+    drive = {"voltage": 1.0, "frequency": 1e6, "source_resistance": 50.0}
+    for setting, expected in (("open-circuit", of_open), ("into-50-ohm", of_matched)):
+        found = displayed(Drive(**drive, generator_setting=setting), admittance)
+        assert 1 / found == pytest.approx(expected, rel=5e-6)
+
+
+def test_a_sine_of_20_volts_peak_to_peak():
+    """10 V peak, 7.0710678 V rms, exact."""
+    assert rms_and_peak(20.0) == "7.07 V rms, 10 V peak"
