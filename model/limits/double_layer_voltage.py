@@ -19,7 +19,7 @@ class DoubleLayerVoltage(Limit):
     """
 
     id = "double_layer_voltage"
-    label = "double layer"
+    label = "double-layer voltage"
     why = (
         "Beyond it electrons cross between metal and water: gas forms, pH shifts, metal dissolves."
     )
@@ -30,7 +30,7 @@ class DoubleLayerVoltage(Limit):
     remedy = "Raise the frequency, lower the voltage or the conductivity, or cover the electrodes."
     unit = "V"
     threshold = Quantity(
-        "Double layer voltage, peak",
+        "Double-layer voltage, peak",
         "Most peak voltage across the double layer of any electrode.",
         unit="V",
         low="0.001 V",

@@ -33,7 +33,13 @@ KEYS = {
     "particles",
     "limits",
 }
-CHIP = {"liquid_resistance_ohm", "liquid_capacitance_pF", "current_mA_rms", "power_mW"}
+CHIP = {
+    "liquid_resistance_ohm",
+    "liquid_capacitance_pF",
+    "current_mA_rms",
+    "power_mW",
+    "share_of_voltage",
+}
 PARTICLE = {"name", "re_k", "im_k", "crossovers_Hz", "force_pN", "membrane_voltage_V_peak"}
 LIMIT = {"id", "value", "allowed", "unit", "headroom"}
 
@@ -97,9 +103,12 @@ def test_units_of_the_object(yeast, patterns):
     data = check_object(result)
     assert data["floor_Vpp"] < yeast.drive.voltage < data["ceiling_Vpp"]
     assert data["chip"]["power_mW"] == pytest.approx(1e3 * result.load.power)
-    # P = V²/R, 10 V peak to peak
-    watts = (10.0 / (2.0 * 2.0**0.5)) ** 2 / data["chip"]["liquid_resistance_ohm"]
-    assert data["chip"]["power_mW"] == pytest.approx(1e3 * watts)
+    # P = V²/R, 10 V peak to peak, of which a share reaches the liquid: the least that the
+    # current dissipates, as the interface also bends its paths
+    rms = 10.0 / (2.0 * 2.0**0.5) * data["chip"]["share_of_voltage"]
+    watts = rms**2 / data["chip"]["liquid_resistance_ohm"]
+    assert data["chip"]["power_mW"] == pytest.approx(1e3 * watts, rel=1e-3)
+    assert data["chip"]["power_mW"] >= 1e3 * watts
     limits = {limit["id"]: limit for limit in data["limits"]}
     assert limits["highest_temperature"]["allowed"] == pytest.approx(30.0)
     assert limits["highest_temperature"]["unit"] == "degC"
