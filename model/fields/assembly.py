@@ -215,6 +215,12 @@ def _straight_stiffness(functions: Space, weights: Real) -> Real:
     return np.asarray(blocks.reshape(-1, len(steep), len(steep)))
 
 
+def mass(functions: Space, coefficient: float) -> Real:
+    """Cell matrices of ∫ c u v, (n_cell, n_local, n_local)."""
+    weighted = functions.values * (coefficient * functions.weights)[:, None, :]
+    return np.asarray(weighted @ functions.values.T)
+
+
 def load(functions: Space, density: Real) -> Real:
     """Vector of ∫ f v, `density` f at the quadrature points, (n_cell, n_point)."""
     parts = functions.values @ (density * functions.weights).T  # (i, cell)

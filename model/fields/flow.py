@@ -7,7 +7,7 @@ import numpy as np
 from skfem import Mesh
 
 from model.arrays import Real
-from model.fields.assembly import Space, gather, load, space, stiffness
+from model.fields.assembly import Space, gather, load, mass, space, stiffness
 from model.fields.cells import Index
 from model.fields.condensed import CellSystem, factorise
 from model.fields.sides import project_on_side
@@ -43,13 +43,14 @@ def solve_flow(
     mirrors: Mapping[str, int],
     moving: Mapping[str, Callable[[Real], Real]] | None = None,
     *,
-    odd: bool = False,
+    friction: float = 0.0,
+    crossed: Mapping[str, int] | None = None,
 ) -> list[Real]:
-    """Solve −∇²u + ∇p = f, ∇·u = 0 for several forces with one factorisation.
+    """Solve −∇²u + gu + ∇p = f, ∇·u = 0 for several forces with one factorisation.
 
-    No slip holds on every side of the mesh but the mirror planes. A flow like its mirror image
-    does not cross them and slips freely along them; an odd one crosses them at right angles,
-    with no pressure there. Joined sides are no sides.
+    No slip holds on every side of the mesh but the mirror planes, which the flow does not cross
+    and along which it slips freely, and planes that it crosses straight. Joined sides are no
+    sides.
 
     Parameters
     ----------
@@ -59,8 +60,11 @@ def solve_flow(
         Named straight mirror planes and the axis (0 for x, 1 for y) they stand across.
     moving
         Velocity of named sides, x (2, n…) ↦ (2, n…), instead of rest.
-    odd
-        Whether forces and flow are the reverse of their mirror images.
+    friction
+        g, 1/m²: 12/h² in the plan of a channel of depth h, where u is the mean over the depth.
+    crossed
+        Named straight planes, and the axis they stand across, that the flow crosses at right
+        angles and p = 0: those about which the whole flow is the negative of a mirror image.
 
     Returns
     -------
@@ -70,8 +74,9 @@ def solve_flow(
     """
     velocity = pair.velocity
     size = velocity.size
-    system, scale = _system(pair)
-    held = _held(velocity, mirrors, odd)
+    system, scale = _system(pair, friction)
+    # along a plane that is crossed, the velocity vanishes, and it is free across
+    held = _held(velocity, [*mirrors.items(), *((n, 1 - a) for n, a in (crossed or {}).items())])
     factor = factorise(system, np.concatenate([held[0], size + held[1]]))
     sides = [_side_velocity(velocity, moving or {}, axis) for axis in (0, 1)]
     rest = np.concatenate([*sides, np.zeros(scale.size)])
@@ -83,13 +88,15 @@ def solve_flow(
     return flows
 
 
-def _system(pair: FlowSpace) -> tuple[CellSystem, Real]:
+def _system(pair: FlowSpace, friction: float) -> tuple[CellSystem, Real]:
     """Cell matrices of viscosity and continuity for (u_x, u_y, p), and the scales of p.
 
     Pressure unknowns are scaled so that cells of every size weigh alike.
     """
     velocity, pressure = pair.velocity, pair.pressure
     viscous = stiffness(velocity)
+    if friction:
+        viscous += mass(velocity, friction)
     tests = pressure.values * pressure.weights[:, None, :]  # (cell, i, point)
     masses = (tests * pressure.values).sum(axis=2).T
     sizes = gather(pressure.dofs, masses, pressure.size)
@@ -119,16 +126,19 @@ def _system(pair: FlowSpace) -> tuple[CellSystem, Real]:
     return CellSystem(blocks, numbers[order], count, 2 * velocity.size + pressure.size), scale
 
 
-def _held(velocity: Space, mirrors: Mapping[str, int], odd: bool) -> list[Index]:
-    """Unknowns of each component that stand still (or move with a side)."""
+def _held(velocity: Space, planes: Sequence[tuple[str, int]]) -> list[Index]:
+    """Unknowns of each component that stand still (or move with a side).
+
+    `planes` are the sides on which only one component does, and that component.
+    """
     mesh = velocity.mesh
-    free_sides = [mesh.boundaries[name] for name in mirrors]
+    free_sides = [mesh.boundaries[name] for name, _ in planes]
     if velocity.joined is not None:
         free_sides += [mesh.boundaries[name] for name in velocity.joined]
     walls = np.setdiff1d(mesh.boundary_facets(), np.concatenate([*free_sides, []]))
     still = velocity.on_facets(walls.astype(int))
     across = [
-        velocity.on(*(name for name, normal in mirrors.items() if (normal == axis) != odd))
+        velocity.on(*(name for name, still_axis in planes if still_axis == axis))
         for axis in (0, 1)
     ]
     return [np.union1d(still, part) for part in across]

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from model.arrays import Real
-from model.fields.assembly import Space, load, stiffness
+from model.fields.assembly import Space, load, mass, stiffness
 from model.fields.cells import Index
 from model.fields.condensed import CellSystem, Factor, factorise
 from model.fields.sides import side_masses
@@ -48,8 +48,10 @@ class Conduction:
         return self.factor.solve(load(self.functions, density), np.zeros(self.functions.size))
 
 
-def conduction(functions: Space, conductivity: Real, cooling: Cooling) -> Conduction:
-    """Prepare −∇·(k∇Θ) = q with k ∂Θ/∂n = −hΘ on cooled sides.
+def conduction(
+    functions: Space, conductivity: Real, cooling: Cooling, sink: float = 0.0
+) -> Conduction:
+    """Prepare −∇·(k∇Θ) + gΘ = q with k ∂Θ/∂n = −hΘ on cooled sides.
 
     Parameters
     ----------
@@ -59,15 +61,19 @@ def conduction(functions: Space, conductivity: Real, cooling: Cooling) -> Conduc
         k of each cell, (n_cell,), W/(m K).
     cooling
         Of the sides.
+    sink
+        g, heat that leaves across the plane of the mesh, W/(m³ K).
 
     Raises
     ------
     ValueError
         If no heat can leave, so that no steady state exists.
     """
-    if not cooling.held and not cooling.cooled:
+    if not (cooling.held or cooling.cooled or sink):
         raise ValueError("no side lets heat leave, so there is no steady temperature")
     blocks = stiffness(functions, conductivity)
+    if sink:
+        blocks += mass(functions, sink)
     for name, transfer in cooling.cooled.items():
         cells, masses = side_masses(functions, name)
         np.add.at(blocks, cells, transfer * masses)
@@ -113,6 +119,7 @@ def solve_temperature(
     conductivity: Real,
     density: Real,
     cooling: Cooling,
+    sink: float = 0.0,
 ) -> Real:
     """Solve once for a single source; arguments, result and errors as of :func:`conduction`."""
-    return conduction(functions, conductivity, cooling).solve(density)
+    return conduction(functions, conductivity, cooling, sink).solve(density)

@@ -108,7 +108,7 @@ def _flows(
     flows = solve_flow(pair, forces, section.mirrors)
     if len(fields) == 2:
         mixed = along[1] * fields[0] - along[0] * fields[1]
-        flows += solve_flow(pair, [mixed], section.mirrors, odd=True)
+        flows += solve_flow(pair, [mixed], {}, crossed=section.mirrors)
     return flows
 
 
