@@ -61,7 +61,7 @@ def joined(
     mesh = MeshQuad(np.ascontiguousarray(corners[kept].T), number[cells])
     if refinement:
         mesh = mesh.refined(refinement)
-    mesh = MeshQuad(mesh.p, oriented(mesh.t))
+    mesh = MeshQuad(mesh.p, _righted(mesh.p, oriented(mesh.t)))
     if np.bincount(mesh.t2f.ravel()).max() > 2:
         raise ValueError("three cells share a side")
     return mesh.with_boundaries(sides).with_subdomains({"liquid": np.arange(mesh.nelements)})
@@ -83,8 +83,13 @@ def oriented(cells: Index) -> Index:
     strip = connected_components(links, directed=False)[1]
     forward = strip[directed[0]] < strip[directed[1]]
     turned: Index = np.where(forward[0], cells, cells[[1, 0, 3, 2]])
-    turned = np.where(forward[2], turned, turned[[3, 2, 1, 0]])
-    return np.where(forward[0] == forward[2], turned, turned[[0, 3, 2, 1]])
+    return np.where(forward[2], turned, turned[[3, 2, 1, 0]])
+
+
+def _righted(corners: Real, cells: Index) -> Index:
+    """Number the corners (2, n) of cells (4, n) anticlockwise, from the same one."""
+    across, along = (corners[:, cells[i]] - corners[:, cells[i - 2]] for i in (2, 3))
+    return np.where(across[0] * along[1] > across[1] * along[0], cells, cells[[0, 3, 2, 1]])
 
 
 def _cells(block: Real) -> Index:
@@ -102,4 +107,3 @@ def _merged(corners: Real) -> tuple[Index, Index]:
     _, number = connected_components(links, directed=False)
     kept = np.unique(number, return_index=True)[1]
     return number, kept
-

@@ -138,8 +138,7 @@ def _held(velocity: Space, planes: Sequence[tuple[str, int]]) -> list[Index]:
     walls = np.setdiff1d(mesh.boundary_facets(), np.concatenate([*free_sides, []]))
     still = velocity.on_facets(walls.astype(int))
     across = [
-        velocity.on(*(name for name, still_axis in planes if still_axis == axis))
-        for axis in (0, 1)
+        velocity.on(*(name for name, still_axis in planes if still_axis == axis)) for axis in (0, 1)
     ]
     return [np.union1d(still, part) for part in across]
 
