@@ -79,7 +79,7 @@ def _turns(radius: float, opening: float) -> Real:
     def step(short: float) -> float:
         """Angle up to which a chord may reach at `short` of 90°."""
         gap = opening + radius * (1 - np.cos(short))
-        return min(TURN, STEP * gap / radius)
+        return float(min(TURN, STEP * gap / radius))
 
     right, half = 0.5 * np.pi, 0.25 * np.pi
     late = right - march(half, step(0.0), step)[::-1]
@@ -96,12 +96,12 @@ def _arc(radius: float, turns: Real) -> Real:
     steps = np.diff(turns)
     squares = 0.5 * (np.append(steps[0], steps) ** 2 + np.append(steps, steps[-1]) ** 2)
     sizes = radius * (1 + squares / 12)
-    return np.stack([sizes * np.cos(turns), sizes * np.sin(turns)], axis=-1) * (
-        np.stack([turns < turns[-1], turns > 0], axis=-1)  # on the axes without rounding
-    )
+    corners = sizes[:, None] * np.stack([np.cos(turns), np.sin(turns)], axis=-1)
+    corners[0, 1] = corners[-1, 0] = 0.0  # on the axes, without rounding
+    return np.asarray(corners)
 
 
 def _line(start: tuple[float, float], end: tuple[float, float], places: Real) -> Real:
     """Points (n, 2) on a straight line, spread as `places` are."""
     shares = (places - places[0]) / (places[-1] - places[0])
-    return np.asarray(start) + shares[:, None] * (np.asarray(end) - np.asarray(start))
+    return np.asarray((1 - shares)[:, None] * start + shares[:, None] * end)

@@ -48,7 +48,7 @@ class Pole:
 
     @property
     def waist(self) -> float:
-        """y of the pole's face where it ends along x, m."""
+        """Height y of the pole's face where it ends along x, m."""
         return self.tip**2 / self.back if self.hyperbolic else self.tip
 
 

@@ -73,7 +73,7 @@ def test_area_and_outline_around_a_pole(tip, width, beside, hyperbolic):
     mesh = checked(pole_quarter(pole))
     solid = back**2 - tip**2 * (1 + 2 * np.log(back / tip)) if hyperbolic else width**2
     assert area(mesh) == pytest.approx((back + beside) * (back + 40) - solid, rel=1e-4)
-    named = np.concatenate([facets for facets in mesh.boundaries.values()])
+    named = np.concatenate(list(mesh.boundaries.values()))
     assert np.array_equal(np.sort(named), mesh.boundary_facets())
     ends = mesh.p[:, mesh.facets[:, mesh.boundaries["pole"]]]
     x = np.linspace(tip, back, 20001)
@@ -132,7 +132,7 @@ def test_heat_that_leaves_across_the_plane():
 
 
 def test_pressure_drives_liquid_straight_through():
-    """u = (1 − cosh(y√g)/cosh(√g/2))/g per pressure gradient, between walls at y = ±½.
+    """Between walls at y = ±½ u = (1 − cosh(y√g)/cosh(√g/2))/g per pressure gradient.
 
     Brinkman's equation with the friction g of floor and lid, solved by hand.
     """
