@@ -32,7 +32,7 @@ def outline(mesh):
 
 def checked(mesh):
     """The mesh, once a section has taken it: every shared side in one sense."""
-    return Section(mesh, {}, (), length=1.0, height=1.0).mesh
+    return Section(mesh, ({},), (), length=1.0, height=1.0).mesh
 
 
 def test_blocks_of_any_sense_become_one_mesh():
