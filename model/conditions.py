@@ -88,7 +88,8 @@ class Conditions:
     @cached_property
     def line(self) -> Line:
         """Patterns along one period of the electrodes at the height where forces are taken."""
-        return self.patterns.line(self.design.task.force_height)
+        level = self.design.chip.force_level(self.design.task.force_height)
+        return self.patterns.line(level)
 
     def polarisation(self, particle: Particle) -> Complex:
         """Polarisation factor K of a particle, computed once."""
@@ -108,8 +109,10 @@ class Conditions:
         quadrupole 5/3·a²E′/2 with E′ = |∇E²|/(2E), from the multipoles of an insulating sphere).
         """
         radius = particle.equivalent_radius
-        heights = self.design.task.exposure_heights(particle, self.design.chip)
-        field = max(_with_gradient(self.patterns.line(height), radius) for height in heights)
+        lines = [self.line]
+        if self.design.task.may_touch(particle):
+            lines += self.design.chip.contact_lines(self.patterns, radius)
+        field = max(_with_gradient(line, radius) for line in lines)
         return np.asarray(field * np.abs(self.share))
 
     def _force_scale(self, particle: Particle) -> Real:

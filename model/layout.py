@@ -1,11 +1,15 @@
 """What every electrode layout provides; the layouts themselves stand in ``model/layouts/``."""
 
 from abc import ABC, abstractmethod
-from typing import Annotated, ClassVar, Literal
+from typing import TYPE_CHECKING, Annotated, ClassVar, Literal
 
 from model.declare import Part, Quantity
+from model.fields.lines import Line
 from model.fields.section import Section
 from model.walls import Wall
+
+if TYPE_CHECKING:
+    from model.fields.patterns import ChipPatterns
 
 #: A face of the channel.
 Face = Literal["floor", "lid"]
@@ -66,8 +70,12 @@ class Layout(Part, ABC):
         """Smallest opening that a particle meets between electrodes, m."""
 
     @abstractmethod
-    def contact_heights(self, radius: float) -> tuple[float, ...]:
-        """Heights of the centre of a sphere that touches a face with electrodes, m."""
+    def force_level(self, height: float) -> float:
+        """Place y of the line where forces are taken, for centres at a height above the floor."""
+
+    @abstractmethod
+    def contact_lines(self, patterns: "ChipPatterns", radius: float) -> tuple[Line, ...]:
+        """Patterns of this chip where the centre of a touching sphere meets the strongest field."""
 
 
 class FlatChannel(Layout):
@@ -90,6 +98,14 @@ class FlatChannel(Layout):
     def height(self) -> float:
         """The channel height, m."""
         return self.channel_height
+
+    def force_level(self, height: float) -> float:
+        """The height itself, m."""
+        return height
+
+    def contact_lines(self, patterns: "ChipPatterns", radius: float) -> tuple[Line, ...]:
+        """Lines along the faces with electrodes, a radius away."""
+        return tuple(patterns.line(height) for height in self.contact_heights(radius))
 
     def contact_heights(self, radius: float) -> tuple[float, ...]:
         """Heights of the centre of a sphere that touches a face with electrodes, m.

@@ -8,7 +8,6 @@ from model.law import Law
 
 if TYPE_CHECKING:
     from model.conditions import Conditions
-    from model.layout import Layout
     from model.particle import Particle
 
 
@@ -43,5 +42,5 @@ class Task(Part, ABC):
         """Height of particle centres above the floor at which forces are taken, m."""
 
     @abstractmethod
-    def exposure_heights(self, particle: "Particle", chip: "Layout") -> tuple[float, ...]:
-        """Heights at one of which the particle meets the strongest field it has to endure, m."""
+    def may_touch(self, particle: "Particle") -> bool:
+        """Whether the particle has to endure the field where it touches what is solid."""

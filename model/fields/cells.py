@@ -76,6 +76,18 @@ class Cells(Stored):
             return np.zeros((2, len(cells)))
         return (c[:, 0] - c[:, 1] + c[:, 2] - c[:, 3]).T
 
+    def crossings(self, y: float) -> Real:
+        """Increasing places where sides of cells meet the line at height `y`, (n,), m."""
+        start = self.corners.reshape(-1, 2)
+        end = np.roll(self.corners, -1, axis=1).reshape(-1, 2)
+        met = (np.minimum(start[:, 1], end[:, 1]) <= y) & (y <= np.maximum(start[:, 1], end[:, 1]))
+        start, end = start[met], end[met]
+        rise = end[:, 1] - start[:, 1]
+        level = rise == 0  # its other end is another side's start
+        share = np.where(level, 0.0, (y - start[:, 1]) / np.where(level, 1.0, rise))
+        x = np.sort(start[:, 0] + share * (end[:, 0] - start[:, 0]))
+        return x[np.diff(x, prepend=-np.inf) > 1e-9 * np.ptp(self.corners[..., 0])]
+
     def _contains(self, local: Real) -> NDArray[np.bool_]:
         highest = local.sum(axis=0) if self.corners.shape[1] == 3 else local.max(axis=0)
         inside: NDArray[np.bool_] = (local.min(axis=0) >= -TOLERANCE) & (highest <= 1 + TOLERANCE)

@@ -67,7 +67,9 @@ class Rows:
 
 @dataclass(frozen=True, eq=False, repr=False)
 class Line(Stored):
-    """Patterns at one height over one period; see :class:`ChipPatterns` for their units.
+    """Patterns at one height over one period, or along any path.
+
+    See :class:`ChipPatterns` for their units.
 
     Parameters
     ----------
@@ -84,6 +86,8 @@ class Line(Stored):
         U₁ and U₂, (2, n).
     travelling, flow_3
         What two components add, (2, n); None if there is one.
+    through
+        In plan, mean velocity over the depth per flow rate, (2, n), 1/m²; else None.
     """
 
     x: Real
@@ -94,6 +98,7 @@ class Line(Stored):
     flow_2: Real
     travelling: Real | None = None
     flow_3: Real | None = None
+    through: Real | None = None
 
     @classmethod
     def of(cls, x: Real, values: Real, rows: Rows) -> "Line":

@@ -1,7 +1,8 @@
 """A solved chip: patterns that any voltage, liquid and frequency merely scale."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Hashable, Mapping
 from dataclasses import dataclass
+from functools import cached_property
 from typing import TYPE_CHECKING, TypeVar
 
 import numpy as np
@@ -9,11 +10,15 @@ from numpy.typing import ArrayLike, NDArray
 
 from model.arrays import Complex, Phasor, Real
 from model.fields.feedback import Feedback
+from model.fields.grading import split
 from model.fields.lines import Line, LineTable
 from model.fields.piecewise import Piecewise
 from model.fields.response import ElectrodeResponse
-from model.fields.section import Fold, Rest
+from model.fields.section import Fold, Folded, Rest
 from model.fields.stored import Stored
+
+#: Lines of a plan that are kept: some particles, some radii tried.
+MOST_KEPT = 64
 
 Values = TypeVar("Values", Real, Complex, Phasor)
 
@@ -41,7 +46,8 @@ class ChipPatterns(Stored):
     A drive of several phases gives a complex Ê = Ê₀ + jÊ₁; S and U₃ are what its two components
     add together, and vanish for a drive of one phase.
 
-    Coordinates in m: x from a bar's centre along the flow, any x; y from the floor.
+    Coordinates in m: x from a bar's centre along the flow, any x; y from the floor. In plan, both
+    from the middle of the chip; all is the same over the depth, flows are means over it.
     Ohmic heat alone is counted. That warm liquid conducts better enters the hottest rise, through
     `feedback`, and nothing else: right for rises of a few kelvin.
 
@@ -87,7 +93,8 @@ class ChipPatterns(Stored):
     potential: Piecewise
     heat: Piecewise
     flows: Piecewise
-    table: LineTable
+    table: LineTable | None
+    through: Piecewise | None = None
 
     @property
     def period(self) -> float | None:
@@ -110,10 +117,11 @@ class ChipPatterns(Stored):
             If a place is not in the liquid.
         """
         spots = _spots(x, y)
-        place, side, signs = self.fold.fold(spots.x)
-        field = -self.potential.slopes(*_within(self.potential, place, spots.y))
-        field = field * signs[:, None]
-        field[:, 0] *= side
+        at = self.fold.place(spots.x, spots.y)
+        field = -self.potential.slopes(*_within(self.potential, at.x, at.y))
+        field = field * at.signs[:, None]
+        field[:, 0] *= at.along
+        field[:, 1] *= at.up
         return spots.shaped(_phasor(field[:, 0])), spots.shaped(_phasor(field[:, 1]))
 
     def gradient_e2(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
@@ -129,18 +137,17 @@ class ChipPatterns(Stored):
 
     def _force_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
         spots = _spots(x, y)
-        place, side, signs = self.fold.fold(spots.x)
-        found = self.potential.force_patterns(*_within(self.potential, place, spots.y))
+        at = self.fold.place(spots.x, spots.y)
+        found = self.potential.force_patterns(*_within(self.potential, at.x, at.y))
         if which == len(found):
             return np.zeros(spots.shape), np.zeros(spots.shape)
-        lift = signs.prod(axis=0) if which else 1.0
-        return spots.shaped(found[which][0] * side * lift), spots.shaped(found[which][1] * lift)
+        return _turned(spots, at, found[which], odd=which == 1)
 
     def inside(self, x: ArrayLike, y: ArrayLike) -> NDArray[np.bool_]:
         """Whether places are in the liquid."""
         spots = _spots(x, y)
-        place, _, _ = self.fold.fold(spots.x)
-        cell, _ = self.potential.cells.locate(np.stack([place, spots.y]))
+        at = self.fold.place(spots.x, spots.y)
+        cell, _ = self.potential.cells.locate(np.stack([at.x, at.y]))
         return (cell >= 0).reshape(spots.shape)
 
     def temperature(self, x: ArrayLike, y: ArrayLike) -> Real:
@@ -152,14 +159,14 @@ class ChipPatterns(Stored):
             If a place is outside the chip.
         """
         spots = _spots(x, y)
-        place, _, _ = self.fold.fold(spots.x)
-        level, factor = spots.y.copy(), np.ones_like(spots.y)
+        at = self.fold.place(spots.x, spots.y)
+        level, factor = at.y.copy(), np.ones_like(at.y)
         for rest in self.rests:
             low, high = sorted((rest.level, rest.outside))
             beyond = (level >= low) & (level <= high)
             factor[beyond] = 1 - rest.falloff * np.abs(level[beyond] - rest.level)
             level[beyond] = rest.level
-        values = self.heat.values(*_within(self.heat, place, level))[0]
+        values = self.heat.values(*_within(self.heat, at.x, level))[0]
         return spots.shaped(values * factor)
 
     def electrothermal(
@@ -179,23 +186,89 @@ class ChipPatterns(Stored):
 
     def _flow_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
         spots = _spots(x, y)
-        place, side, signs = self.fold.fold(spots.x)
-        u = self.flows.values(*_within(self.flows, place, spots.y))
+        at = self.fold.place(spots.x, spots.y)
+        u = self.flows.values(*_within(self.flows, at.x, at.y))
         if 2 * which == len(u):
             return np.zeros(spots.shape), np.zeros(spots.shape)
-        lift = signs.prod(axis=0) if which == 2 else 1.0
-        along, up = u[2 * which : 2 * which + 2]
-        return spots.shaped(along * side * lift), spots.shaped(up * lift)
+        return _turned(spots, at, u[2 * which : 2 * which + 2], odd=which == 2)
+
+    def flow_through(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
+        """Mean velocity over the depth of the flow through a plan, over the flow rate, 1/m².
+
+        Brinkman's equation with the friction 12/h² of floor and lid at depth h and no slip on
+        the sides: exact far from the sides and for a channel much deeper than wide. Arguments
+        and errors as :meth:`electric_field`.
+
+        Raises
+        ------
+        ValueError
+            Also if the chip is not seen in plan.
+        """
+        if self.through is None:
+            raise ValueError("only a chip that is seen in plan has a pattern of its flow")
+        spots = _spots(x, y)
+        at = self.fold.place(spots.x, spots.y)
+        u = self.through.values(*_within(self.through, at.x, at.y))
+        return spots.shaped(u[0]), spots.shaped(u[1] * at.along * at.up)
 
     def line(self, y: float) -> Line:
         """All patterns along one period at the height `y`, in tens of microseconds.
+
+        In plan, along the whole piece and its mirror image at this y; kept once found.
 
         Raises
         ------
         ValueError
             If the height is not in the liquid.
         """
-        return self.table.line(y)
+        if self.table is not None:
+            return self.table.line(y)
+        return self._remembered(y, lambda: self._row(y))
+
+    def path(self, x: Real, y: Real) -> Line:
+        """All patterns at any places in the liquid, (n,) each, m; kept once found.
+
+        Raises
+        ------
+        ValueError
+            If a place is not in the liquid.
+        """
+        return self._remembered((x.tobytes(), y.tobytes()), lambda: self._at(x, y))
+
+    def _row(self, y: float) -> Line:
+        """Patterns where a level line of a plan meets the sides of cells, and between."""
+        piece = abs(y) if self.fold.upright else y
+        x = split(self.potential.cells.crossings(piece), 2)
+        x = np.concatenate([-x[x > 0][::-1], x])
+        return self._at(*np.broadcast_arrays(x[self.inside(x, y)], y))
+
+    def _at(self, x: Real, y: Real) -> Line:
+        first, second = self.electrothermal(x, y)
+        moving = len(self.fold.parities) == 2
+        return Line(
+            x,
+            np.asarray(self.electric_field(x, y), dtype=complex if moving else float),
+            np.array(self.gradient_e2(x, y)),
+            self.temperature(x, y),
+            np.array(first),
+            np.array(second),
+            np.array(self.travelling(x, y)) if moving else None,
+            np.array(self.electrothermal_travelling(x, y)) if moving else None,
+            None if self.through is None else np.array(self.flow_through(x, y)),
+        )
+
+    def _remembered(self, key: Hashable, make: Callable[[], Line]) -> Line:
+        found = self._kept.get(key)
+        if found is None:
+            if len(self._kept) >= MOST_KEPT:
+                self._kept.clear()
+            found = self._kept[key] = make()
+        return found
+
+    @cached_property
+    def _kept(self) -> dict[Hashable, Line]:
+        """Lines of a plan that were asked for."""
+        return {}
 
 
 @dataclass(frozen=True)
@@ -208,6 +281,15 @@ class _Spots:
 
     def shaped(self, values: Values) -> Values:
         return values.reshape(self.shape)
+
+
+def _turned(spots: _Spots, at: Folded, values: Real, odd: bool) -> tuple[Real, Real]:
+    """Vectors (2, n) of the piece as they stand at the places that were asked for.
+
+    `odd` if they have the parity of both components of the drive together.
+    """
+    lift = at.signs.prod(axis=0) if odd else np.ones_like(at.x)
+    return spots.shaped(values[0] * at.along * lift), spots.shaped(values[1] * at.up * lift)
 
 
 def _phasor(components: Real) -> Phasor:

@@ -2,6 +2,7 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from typing import NamedTuple
 
 import numpy as np
 from skfem import Mesh, MeshQuad
@@ -9,9 +10,23 @@ from skfem import Mesh, MeshQuad
 from model.arrays import Real
 
 
+class Folded(NamedTuple):
+    """Places `x`, `y` in the piece, and what turns patterns there into those that are asked for.
+
+    Components along x and y of a force or velocity are multiplied by `along` and `up` (±1), φ of
+    each component of the drive by its row of `signs` (±1), (n_component, n).
+    """
+
+    x: Real
+    y: Real
+    along: Real
+    up: Real
+    signs: Real
+
+
 @dataclass(frozen=True)
 class Fold:
-    """How the solved piece stands for every x.
+    """How the solved piece stands for every x and, of a plan, for every y.
 
     Quadratic patterns (|Ê|², heat, flow) repeat with `period`; the field itself comes back
     multiplied by `alternation`. A drive of several phases has two components, in phase and a
@@ -28,12 +43,24 @@ class Fold:
         φ(x + period)/φ(x): −1 if neighbours are opposite, else 1.
     parities
         φ(−x)/φ(x) of a mirrored piece, 1 or −1, for each component.
+    upright
+        φ(−y)/φ(y) likewise, if the piece is the half y ≥ 0 of the chip; else None.
     """
 
     period: float | None = None
     mirrored: bool = False
     alternation: int = 1
     parities: tuple[int, ...] = (1,)
+    upright: tuple[int, ...] | None = None
+
+    def place(self, x: Real, y: Real) -> Folded:
+        """Place any x and y, (n,) each, into the piece."""
+        within, along, signs = self.fold(x)
+        if self.upright is None:
+            return Folded(within, y, along, np.ones_like(y), signs)
+        up = np.where(y < 0, -1.0, 1.0)
+        signs = signs * np.where(y < 0, np.array(self.upright, dtype=float)[:, None], 1.0)
+        return Folded(within, np.abs(y), along, up, signs)
 
     def fold(self, x: Real) -> tuple[Real, Real, Real]:
         """Place any x into the piece.
@@ -78,11 +105,29 @@ class Rest:
     falloff: float
 
 
+@dataclass(frozen=True)
+class Plan:
+    """What a piece that is seen in plan has besides its mesh; all is uniform over the depth.
+
+    Parameters
+    ----------
+    walls
+        Thermal resistance of floor and lid with their outsides, straight outward, m² K/W;
+        infinite if no heat leaves there.
+    ends
+        Sides that the flow through the channel crosses straight, and the axis they stand across.
+    """
+
+    walls: tuple[float, float]
+    ends: Mapping[str, int]
+
+
 @dataclass(frozen=True, eq=False)
 class Section:
     """Smallest piece of a chip that symmetry leaves, ready for the solves.
 
-    Lengths in m, x along the flow from a bar's centre, y upward from the floor.
+    Lengths in m, x along the flow from a bar's centre, y upward from the floor. In plan, x and y
+    from the middle of the chip, y across the flow.
 
     Parameters
     ----------
@@ -118,6 +163,8 @@ class Section:
         What lies beyond a mesh that stands for thicker walls.
     joined
         The two sides that are one and the same, of a piece that repeats without mirror planes.
+    plan
+        Of a piece that is seen in plan: it has no walls in its mesh.
     """
 
     mesh: Mesh
@@ -132,12 +179,13 @@ class Section:
     outsides: Mapping[str, float | None] = field(default_factory=dict)
     rests: tuple[Rest, ...] = ()
     joined: tuple[str, str] | None = None
+    plan: Plan | None = None
 
     def __post_init__(self) -> None:
         subdomains = self.mesh.subdomains or {}
         boundaries = self.mesh.boundaries or {}
         named = {*self.electrodes, *self.mirrors, *self.outsides}.union(*self.potentials)
-        named |= set(self.joined or ())
+        named |= set(self.joined or ()) | set(self.plan.ends if self.plan else ())
         if missing := named - set(boundaries):
             raise ValueError(f"the mesh names no boundary {sorted(missing)}")
         if missing := {"liquid", *self.wall_conductivities} - set(subdomains):
@@ -146,6 +194,23 @@ class Section:
             raise ValueError("two quadrilaterals traverse a shared side in opposite sense")
         if len(self.potentials) != len(self.fold.parities):
             raise ValueError("each component of the drive needs its parity")
+
+    def sink(self, thermal_conductivity: float) -> float:
+        """Heat that leaves across the plane of the mesh, W/(m³ K) of the liquid's volume.
+
+        In plan, from mid-depth straight outward through half the liquid, h/(2k), the wall and
+        its outside. That heat spreads along the walls is left out, and mid-depth is the warmest
+        place only between two like walls: the rise is never lower than the true one.
+        """
+        if self.plan is None:
+            return 0.0
+        half = 0.5 * self.height / thermal_conductivity
+        return sum(1.0 / (half + wall) for wall in self.plan.walls) / self.height
+
+    @property
+    def friction(self) -> float:
+        """12/h² of floor and lid on the mean of the flow over the depth h, 1/m²; 0 but in plan."""
+        return 0.0 if self.plan is None else 12.0 / self.height**2
 
     def liquid(self) -> Mesh:
         """Mesh of the liquid alone, with the same names."""

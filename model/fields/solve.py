@@ -5,7 +5,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from model.arrays import Real
-from model.fields.assembly import space
+from model.fields.assembly import load, space
 from model.fields.cells import Cells
 from model.fields.electric import Potential, solve_potential
 from model.fields.feedback import solve_feedback
@@ -86,7 +86,8 @@ def solve_chip(
         },
         fold=section.fold,
         rests=section.rests,
-        table=sample_lines(section, **patterns),
+        table=None if section.plan else sample_lines(section, **patterns),
+        through=_through(section, pair, cells),
         **patterns,
     )
 
@@ -105,11 +106,31 @@ def _flows(
     """U₁, U₂ and, of two components, U₃ per unit of force, from fields and ∇Θ."""
     along = np.einsum("ckq,fckq->fkq", slopes, fields)
     forces = [np.einsum("fkq,fckq->ckq", along, fields), square * slopes]
-    flows = solve_flow(pair, forces, section.mirrors)
+    friction = section.friction
+    flows = solve_flow(pair, forces, section.mirrors, friction=friction)
     if len(fields) == 2:
         mixed = along[1] * fields[0] - along[0] * fields[1]
-        flows += solve_flow(pair, [mixed], {}, crossed=section.mirrors)
+        flows += solve_flow(pair, [mixed], {}, crossed=section.mirrors, friction=friction)
     return flows
+
+
+def _through(section: Section, pair: FlowSpace, cells: Cells) -> Piecewise | None:
+    """Flow through a plan: its mean over the depth for a flow rate of 1, 1/m².
+
+    A uniform push stands for the pressure that falls from end to end. The same liquid passes
+    every x, so that the mean of the velocity over the piece gives the rate.
+    """
+    if section.plan is None:
+        return None
+    ends = section.plan.ends
+    beside = {name: axis for name, axis in section.mirrors.items() if name not in ends}
+    push = np.zeros((2, *pair.velocity.weights.shape))
+    push[0] = 1.0
+    (flow,) = solve_flow(pair, [push], beside, crossed=ends, friction=section.friction)
+    sums = load(pair.velocity, np.ones_like(push[0]))
+    sides = 1 if section.fold.upright is None else 2
+    rate = sides * section.height * float(flow[0] @ sums) / float(np.ptp(section.mesh.p[0]))
+    return Piecewise.of(pair.velocity, flow / rate, cells)
 
 
 def _liquid_heat(section: Section, thermal_conductivity: float) -> LiquidHeat:
@@ -119,5 +140,6 @@ def _liquid_heat(section: Section, thermal_conductivity: float) -> LiquidHeat:
     for name, value in section.wall_conductivities.items():
         conductivity[mesh.subdomains[name]] = value
     functions = space(mesh, HEAT_DEGREE, ORDER, section.joined)
-    found = conduction(functions, conductivity, Cooling(section.outsides))
+    sink = section.sink(thermal_conductivity)
+    found = conduction(functions, conductivity, Cooling(section.outsides), sink)
     return LiquidHeat(found, mesh.subdomains["liquid"], thermal_conductivity)

@@ -12,7 +12,6 @@ from model.task import Task
 
 if TYPE_CHECKING:
     from model.conditions import Conditions
-    from model.layout import Layout
     from model.particle import Particle
 
 
@@ -83,12 +82,10 @@ class Hold(Task):
         """The working height."""
         return self.working_height
 
-    def exposure_heights(self, particle: "Particle", chip: "Layout") -> tuple[float, ...]:
-        """The working height and, if the task draws to the electrodes, touching any of them.
+    def may_touch(self, particle: "Particle") -> bool:
+        """If the task draws to the electrodes.
 
         Touching is the worst place, also for a particle that is pushed away: it meets it only
         if it settles there.
         """
-        if self.dielectrophoresis == "positive":
-            return (self.working_height, *chip.contact_heights(particle.equivalent_radius))
-        return (self.working_height,)
+        return self.dielectrophoresis == "positive"
