@@ -62,8 +62,8 @@ class Planar(Layout):
     def contact_path(self, radius: float) -> tuple[Real, Real]:
         """Places x and y, (n,) each, of the centre of a sphere that touches what is solid, m.
 
-        Of one pole or obstacle, for the others are its mirror images. Where a sphere does not
-        fit it counts as half-way.
+        Of one pole or obstacle, for the others are its mirror images. A sphere too large for
+        the narrowest place counts as one that just fits.
         """
 
     def force_level(self, height: float) -> float:

@@ -13,6 +13,8 @@ from model.fields.stored import Stored
 #: Points this far outside a cell, in units of the cell, still count as in it: rounding of a
 #: place that is far from 0, in the smallest cells.
 TOLERANCE = 1e-7
+#: Points this near a line of the search grid, over the size of the mesh, may be on either side.
+ROUNDING = 1e-12
 #: Most intervals per axis of the search grid.
 MOST_INTERVALS = 96
 
@@ -38,14 +40,29 @@ class Cells(Stored):
         cell, place
             Cell of each point (n,), −1 outside the mesh, and reference coordinates (2, n).
         """
+        found = np.full(points.shape[1], -1)
+        place = np.zeros_like(points)
+        self._look(points, points, found, place)
+        # beside a hole, a point on a grid line may belong to a cell on its other side
+        reach = ROUNDING * np.ptp(self.corners, axis=(0, 1))[:, None]
+        for senses in ((-1, -1), (-1, 1), (1, -1), (1, 1)):
+            missing = np.flatnonzero(found < 0)
+            if missing.size == 0:
+                break
+            there, spot = np.full(missing.size, -1), np.zeros((2, missing.size))
+            beside = points[:, missing] + reach * np.array(senses)[:, None]
+            self._look(points[:, missing], beside, there, spot)
+            found[missing], place[:, missing] = there, spot
+        return found, np.clip(place, 0.0, 1.0)
+
+    def _look(self, points: Real, near: Real, found: Index, place: Real) -> None:
+        """Find `points` among the cells of the boxes that `near` lie in; write what is found."""
         lines, table = self._search
         i, j = (
-            np.clip(np.searchsorted(lines[axis], points[axis], side="right") - 1, 0, None)
+            np.clip(np.searchsorted(lines[axis], near[axis], side="right") - 1, 0, None)
             for axis in (0, 1)
         )
         i, j = np.minimum(i, table.shape[0] - 1), np.minimum(j, table.shape[1] - 1)
-        found = np.full(points.shape[1], -1)
-        place = np.zeros_like(points)
         for candidate in range(table.shape[2]):
             cells = table[i, j, candidate]
             waiting = np.flatnonzero((found < 0) & (cells >= 0))
@@ -57,7 +74,6 @@ class Cells(Stored):
                 inside &= self._hits(cells[waiting], local, points[:, waiting])
             found[waiting[inside]] = cells[waiting[inside]]
             place[:, waiting[inside]] = local[:, inside]
-        return found, np.clip(place, 0.0, 1.0)
 
     def jacobian(self, cells: Index, place: Real) -> Real:
         """∂(x, y)/∂(reference), (2, 2, n), first index the component."""

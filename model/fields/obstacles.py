@@ -15,7 +15,7 @@ CORNER_CELL = 4e-3
 #: First cell at a smooth wall over the opening.
 WALL_CELL = 0.1
 #: Longest step along the post, rad, and over the opening there.
-TURN, STEP = 0.12, 0.5
+TURN, STEP = 0.06, 0.4
 
 
 def ridge_quarter(

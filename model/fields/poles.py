@@ -11,7 +11,7 @@ from model.fields.grading import march
 
 #: First cell over the size of the corner. φ grows as r^(2/3) from a corner of 270°, so that the
 #: capacitance is off by some thousandth of it.
-TIP_CELL, BACK_CELL = 4e-3, 2e-2
+TIP_CELL, BACK_CELL = 4e-3, 1e-2
 #: Step along a smooth pole over the distance from the axis, and at least so many steps.
 SMOOTH_STEP = 0.1
 

@@ -144,10 +144,11 @@ class FourPole(Planar):
         return 0.0
 
     def contact_path(self, radius: float) -> tuple[Real, Real]:
-        """Around one pole, as far as the axes and half-way to the wall."""
+        """Around one pole, as far as half-way to the wall."""
         pole = self._pole
-        x, y = around(np.array(self._outline()), radius)
-        return np.maximum(x, 0.0), np.clip(y, 0.0, 0.5 * (pole.back + pole.half_width))
+        x, y = around(np.array(self._outline()), min(radius, pole.waist))
+        kept = y <= 0.5 * (pole.back + pole.half_width)
+        return np.maximum(x[kept], 0.0), np.maximum(y[kept], 0.0)
 
     def _outline(self) -> tuple[tuple[float, float], ...]:
         """Outline of the first pole, anticlockwise."""

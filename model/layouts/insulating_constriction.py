@@ -138,14 +138,12 @@ class InsulatingConstriction(Planar):
         return 0.0 if self.obstacle == "ridge" else 0.5 * (self.channel_width - self.opening)
 
     def contact_path(self, radius: float) -> tuple[Real, Real]:
-        """Around one obstacle, as far as x = 0 and the middle of the opening or the wall."""
-        x, y = around(np.array(self._outlines()[0]), radius)
-        if self.obstacle == "ridge":
-            highest = 0.5 * self.channel_width - min(radius, 0.5 * self._protrusion)
-            kept = (x >= 0.0) & (y <= highest)
-            return x[kept], np.maximum(y[kept], 0.0)
-        kept = (x >= 0.0) & (y >= 0.0)
-        return x[kept], np.minimum(y[kept], self.force_line)
+        """Around a quarter of the obstacles, in the liquid."""
+        near = min(radius, 0.5 * self.opening)
+        x, y = around(np.array(self._outlines()[0]), near)
+        highest = 0.5 * self.channel_width - min(near, 0.5 * self._protrusion)
+        kept = (x >= 0.0) & (y >= 0.0) & (y <= highest + 1e-9 * near)
+        return x[kept], y[kept]
 
     def _outlines(self) -> tuple[tuple[tuple[float, float], ...], ...]:
         """Outline of each obstacle, anticlockwise."""

@@ -9,6 +9,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from pydantic import ValidationError
+from skfem.quadrature import get_quadrature
 
 from model.declare import Quantity, declarations
 from model.errors import DesignError
@@ -21,6 +22,7 @@ from model.layouts.coplanar_bars import CoplanarBars
 from model.layouts.facing_bars import FacingBars
 from model.profile import document, parse_design
 from model.walls import Wall
+from tests.model import plan_checks
 
 UM = 1e-6
 LENGTHS = ("um", "mm")
@@ -39,7 +41,7 @@ EXAMPLES = {
     "coplanar-bars": (BARS,),
     "facing-bars": (BARS, BARS | {"offset": 17 * UM}),
     "four-phase-bars": (BARS | {"phases": "three", "wave": "with-flow"}, BARS),
-}
+} | plan_checks.EXAMPLES
 NAMED = [
     pytest.param(LAYOUTS[name], arguments, id=f"{name} {index}")
     for name, examples in EXAMPLES.items()
@@ -69,6 +71,10 @@ class Case:
     def patterns(self):
         """Its solution."""
         return solve_chip(self.chip)
+
+    def all_patterns(self, x, y):
+        """Its patterns at places."""
+        return all_patterns(self.patterns, x, y)
 
     @cached_property
     def held(self):
@@ -126,18 +132,29 @@ POWERS = (1, 3, 0, 0, 0, 3, 0)
 
 def places(case, count=400):
     """Places in the liquid, away from walls and electrodes, over more than two periods."""
+    if case.kind.view == "plan":
+        return plan_checks.places(case, count)
     rng = np.random.default_rng(1)
     span = 2.3 * case.patterns.period
     height = case.patterns.height
     return rng.uniform(-span, span, count), rng.uniform(0.1, 0.9, count) * height
 
 
-def around_a_box(case, start):
+def boxes(case):
+    """Boxes in the liquid that cross seams: west, east, south, north."""
+    if case.kind.view == "plan":
+        return plan_checks.boxes(case)
+    period, height = case.patterns.period, case.patterns.height
+    return [
+        (start * period, (start + 0.83) * period, 0.3 * height, 0.8 * height)
+        for start in (-0.7, -0.21, 0.13, 0.44)
+    ]
+
+
+def around_a_box(case, west, east, south, north):
     """Outward flux and circulation of Ê around a box that crosses seams, over the sum of |Ê|."""
     nodes, weights = np.polynomial.legendre.leggauss(120)
     share, weights = 0.5 * (nodes + 1), 0.5 * weights
-    west, east = start, start + 0.83 * case.patterns.period
-    south, north = np.array([0.3, 0.8]) * case.patterns.height
     corners = np.array([[west, south], [east, south], [east, north], [west, north], [west, south]])
     total = np.zeros(3, dtype=complex)
     for corner, step in zip(corners, np.diff(corners, axis=0), strict=False):
@@ -178,8 +195,8 @@ def check_electrode_faces(case):
 
 def check_current(case):
     """Current in is current out, and Ê has no curl, also across what the symmetry puts together."""
-    for start in np.array([-0.7, -0.21, 0.13, 0.44]) * case.patterns.period:
-        assert np.abs(around_a_box(case, start)).max() < 1e-4
+    for box in boxes(case):
+        assert np.abs(around_a_box(case, *box)).max() < 1e-4
 
 
 def check_symmetry(case):
@@ -202,15 +219,23 @@ def check_symmetry(case):
             assert np.abs(after - before).max() < 2e-3 * size
 
 
+def integral(mesh, function):
+    """Of a pattern over a mesh."""
+    places, weights = get_quadrature(mesh.refdom, 8)
+    areas = np.abs(mesh.mapping().detDF(places)) * weights
+    cells = np.repeat(np.arange(mesh.nelements), weights.size)
+    return function.values(cells, np.tile(places, mesh.nelements))[0] @ areas.ravel()
+
+
 def check_heat(case):
-    """What the field heats, in the piece that is solved, leaves through the outsides."""
+    """What the field heats, in the piece that is solved, leaves outward."""
     section, patterns = case.section, case.patterns
     mesh = section.mesh
     conductivity = np.full(mesh.nelements, patterns.thermal_conductivity)
     for name, value in section.wall_conductivities.items():
         conductivity[mesh.subdomains[name]] = value
     nodes, weights = np.polynomial.legendre.leggauss(6)
-    leaving = 0.0
+    leaving = section.sink(patterns.thermal_conductivity) * integral(mesh, patterns.heat)
     for name in section.outsides:
         for facet in mesh.boundaries[name]:
             cell = mesh.f2t[0, facet]
@@ -229,7 +254,7 @@ def check_heat(case):
 
 
 def check_flow(case):
-    """No sources, no slip on walls and electrodes, nothing through them, one flow everywhere."""
+    """No sources, no slip on walls and electrodes, nothing through them."""
     patterns, section = case.patterns, case.section
     liquid = section.liquid()
     centres = np.full((2, liquid.nelements), 0.37)
@@ -246,6 +271,11 @@ def check_flow(case):
     spots = liquid.p[:, liquid.facets[:, facets]].mean(axis=1)
     fastest = np.abs(patterns.electrothermal(*places(case))).max()
     assert np.abs(patterns.electrothermal(*spots)).max() < 1e-9 * fastest
+
+
+def check_net_flow(case):
+    """The same liquid passes every x, and none where mirror planes forbid it."""
+    patterns, section = case.patterns, case.section
     heights = np.linspace(0, patterns.height, 801)
     for which in (0, 1):
         speeds = [
@@ -307,15 +337,12 @@ def check_convergence(case):
         np.testing.assert_allclose(one, other, atol=5e-3 * np.abs(other).max())
 
 
-CHECKS = [
-    check_declarations,
-    check_electrode_faces,
-    check_current,
-    check_symmetry,
-    check_heat,
-    check_flow,
-    check_lines,
-    check_storage,
+OF_ALL = [check_declarations, check_current, check_heat, check_flow, check_storage]
+OF_SECTIONS = [check_electrode_faces, check_symmetry, check_net_flow, check_lines]
+CHECKED = [
+    pytest.param(tuple(item.values), check, id=f"{item.id} {check.__name__}")
+    for item in NAMED
+    for check in OF_ALL + (plan_checks.OF_PLANS if item.values[0].view == "plan" else OF_SECTIONS)
 ]
 
 
@@ -325,8 +352,7 @@ def test_every_layout_has_an_example(name):
     assert all(LAYOUTS[name](**arguments).layout == name for arguments in EXAMPLES[name])
 
 
-@each_example
-@pytest.mark.parametrize("check", CHECKS, ids=lambda check: check.__name__)
+@pytest.mark.parametrize(("case", "check"), CHECKED, indirect=["case"])
 def test_layout(case, check):
     check(case)
 
@@ -368,13 +394,14 @@ def test_current_crosses_one_pitch_for_each_bar(kind):
 
 def test_particles_meet_the_strongest_field_at_any_electrode(yeast, vary):
     """Drawn to the electrodes they may touch floor or lid; pushed away they stay where they are."""
-    viable = yeast.particles[0]
-    height, radius = yeast.task.working_height, viable.equivalent_radius
+    assert yeast.task.may_touch(yeast.particles[0])
+    assert not vary(yeast, {"task.dielectrophoresis": "negative"}).task.may_touch(
+        yeast.particles[0]
+    )
+    radius = yeast.particles[0].equivalent_radius
     flat, facing = CoplanarBars(**BARS), FacingBars(**BARS)
-    assert yeast.task.exposure_heights(viable, flat) == (height, radius)
-    assert yeast.task.exposure_heights(viable, facing) == (height, radius, 25e-6 - radius)
-    pushed = vary(yeast, {"task.dielectrophoresis": "negative"}).task
-    assert pushed.exposure_heights(viable, facing) == (height,)
+    assert flat.contact_heights(radius) == (radius,)
+    assert facing.contact_heights(radius) == (radius, 25e-6 - radius)
     assert facing.contact_heights(1.0) == (12.5e-6, 12.5e-6)  # it does not fit
 
 
