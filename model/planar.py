@@ -17,9 +17,9 @@ from model.walls import Wall
 if TYPE_CHECKING:
     from model.fields.patterns import ChipPatterns
 
-#: Half the width of the channel beyond the electrodes in which their field dies out, and so many
-#: lengths over which heat leaves: Θ and φ are e⁻⁶ or less there.
-FIELD_REACH, HEAT_REACH = 4.0, 6.0
+#: Channel widths beyond the poles in which their field dies out, and so many lengths over which
+#: heat leaves.
+FIELD_REACH, HEAT_REACH = 3.0, 6.0
 #: Water, W/(m K): near enough to tell how far heat spreads.
 _WATER = 0.6
 
@@ -87,7 +87,7 @@ class Planar(Layout):
         """
         leaving = sum(1.0 / resistance for resistance in self._plan.walls)
         heat = math.sqrt(_WATER * self.depth / leaving) if leaving else 0.0
-        return solid + max(0.5 * FIELD_REACH * self.channel_width, HEAT_REACH * heat)
+        return solid + max(FIELD_REACH * self.channel_width, HEAT_REACH * heat)
 
 
 def _resistance(wall: Wall) -> float:

@@ -13,7 +13,7 @@ from model.fields.grading import march
 #: thousandth of it, as φ grows as r^(2/3) there.
 CORNER_CELL = 4e-3
 #: First cell at a smooth wall over the opening.
-WALL_CELL = 0.1
+WALL_CELL = 0.06
 #: Longest step along the post, rad, and over the opening there.
 TURN, STEP = 0.06, 0.4
 

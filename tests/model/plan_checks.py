@@ -1,6 +1,7 @@
 """What every layout that is seen in plan must keep; test_layouts.py runs it."""
 
 from dataclasses import replace
+from functools import partial
 
 import numpy as np
 import pytest
@@ -23,7 +24,7 @@ POLES = WALLS | {
 CONSTRICTION = WALLS | {
     "electrode_spacing": 3e-3,
     "channel_width": 0.4e-3,
-    "depth": 30 * UM,
+    "depth": 60 * UM,
     "opening": 90 * UM,
     "obstacle_length": 50 * UM,
 }
@@ -52,13 +53,19 @@ def places(case, count):
     rng = np.random.default_rng(1)
     west, east, south, north = case.chip.drawing().window
     x, y = rng.uniform(west, east, 20 * count), rng.uniform(south, north, 20 * count)
-    margin = 0.06 * min(case.chip.narrowest, case.section.length)
-    free = np.full(x.size, True)
-    for turn in np.linspace(0, 2 * np.pi, 9)[:-1]:
-        free &= case.patterns.inside(x + margin * np.cos(turn), y + margin * np.sin(turn))
+    free = clear(case, x, y)
     x, y = x[free], y[free]
     assert x.size > count
     return x[:count], y[:count]
+
+
+def clear(case, x, y):
+    """Whether places are in the liquid and farther from solid parts than a side of a polygon."""
+    margin = 0.15 * case.chip.narrowest
+    free = np.full(x.size, True)
+    for turn in np.linspace(0, 2 * np.pi, 9)[:-1]:
+        free &= case.patterns.inside(x + margin * np.cos(turn), y + margin * np.sin(turn))
+    return free
 
 
 def boxes(case):
@@ -75,6 +82,11 @@ def flux(case, x, flow):
     speed = np.zeros_like(y)
     speed[inside] = flow(np.full(inside.sum(), x), y[inside])[0]
     return np.trapezoid(speed, y), np.trapezoid(np.abs(speed), y)
+
+
+def flow_pattern(patterns, which, x, y):
+    """U₁ or U₂."""
+    return patterns.electrothermal(x, y)[which]
 
 
 def columns(case):
@@ -98,7 +110,7 @@ def check_mirrors(case):
     assert patterns.period is None
     step = 1e-7 * case.section.length
     x, y = np.linspace(-0.47, 0.47, 31) * wide, np.linspace(-0.49, 0.49, 31) * tall
-    x, y = x[patterns.inside(x, 0 * x)], y[patterns.inside(0 * y, y)]
+    x, y = x[clear(case, x, 0 * x)], y[clear(case, 0 * y, y)]
     size = [np.abs(one).max() for one in case.all_patterns(*places(case, 100))]
     if level == 0.0:
         pairs = [((x, step + 0 * x), (x, 0 * x - step)), ((step + 0 * y, y), (0 * y - step, y))]
@@ -117,10 +129,8 @@ def check_through_flow(case):
     np.testing.assert_allclose(rates[:, 0] * chip.depth, 1.0, rtol=1e-3)
     np.testing.assert_allclose(rates[:, 1], rates[:, 0], rtol=1e-2)  # next to none runs backward
     for which in (0, 1):
-        driven = [
-            flux(case, x, lambda *at: patterns.electrothermal(*at)[which]) for x in columns(case)
-        ]  # noqa: B023
-        net, gross = np.array(driven).T
+        driven = partial(flow_pattern, patterns, which)
+        net, gross = np.array([flux(case, x, driven) for x in columns(case)]).T
         assert np.abs(net).max() < 2e-3 * gross.max()
     across = np.linspace(0, 0.499, 101) * chip.channel_width
     speeds = patterns.flow_through(-0.49 * window(case)[0], across)[0]
@@ -145,8 +155,8 @@ def check_contact(case):
         (line,) = chip.contact_lines(case.patterns, radius)
         assert line is chip.contact_lines(case.patterns, radius)[0]  # kept
         x, y = places(case, 400)
-        clear = np.min([distances(x, y, outline) for outline in solid], axis=0) >= radius
-        found = np.abs(case.patterns.path(x[clear], y[clear]).square).max()
+        away = np.min([distances(x, y, outline) for outline in solid], axis=0) >= radius
+        found = np.abs(case.patterns.path(x[away], y[away]).square).max()
         assert found < 1.001 * line.square.max()
     x, y = chip.contact_path(1.0)  # it does not fit
     assert np.all(case.patterns.inside(x, y))
@@ -175,7 +185,7 @@ def check_drawing(case):
 
 
 def enclosed(x, y, outline):
-    """Whether places lie in a polygon, so that a ray to the right meets it an odd number of times."""
+    """Whether places lie in a polygon: a ray to the right meets it an odd number of times."""
     corners = np.array(outline)
     inside = np.zeros(x.shape, dtype=bool)
     for (x1, y1), (x2, y2) in zip(corners, np.roll(corners, -1, axis=0), strict=True):

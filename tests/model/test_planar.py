@@ -1,0 +1,88 @@
+"""Fields of the layouts seen in plan that must fit one another, and what fills them at first."""
+
+import numpy as np
+import pytest
+
+from model.errors import DesignError
+from model.layouts import LAYOUTS
+from model.layouts.four_pole import FourPole
+from model.layouts.insulating_constriction import InsulatingConstriction
+from model.planar import around
+from model.profile import document, parse_design
+from webapp.state import open_layout
+
+UM = 1e-6
+PLANS = [name for name, kind in LAYOUTS.items() if kind.view == "plan"]
+
+
+def misfit(yeast, **chip):
+    """Path and problem of the one field that is refused."""
+    walls = {key: document(yeast)["chip"][key] for key in ("floor", "lid")}
+    with pytest.raises(DesignError) as told:
+        parse_design({**document(yeast), "chip": walls | chip})
+    (error,) = told.value.errors
+    return error.path, error.problem
+
+
+def test_poles_fit_into_the_channel(yeast):
+    """A tip gap of 100 µm puts the tips 35.36 µm from either axis."""
+    chip = {"layout": "four-pole", "tip_gap": "100 um", "pole_width": "50 um"}
+    path, problem = misfit(yeast, **chip, channel_width="170 um")
+    assert path == "chip.channel_width"
+    assert "at least 170.71" in problem
+    touching = 2 * (100e-6 / np.sqrt(8) + 50e-6)
+    assert FourPole(tip_gap=100e-6, pole_width=50e-6, channel_width=touching).section()
+
+
+@pytest.mark.parametrize(("obstacle", "bound"), [("ridge", "400 µm"), ("post", "200 µm")])
+def test_an_obstacle_leaves_an_opening_and_is_there(yeast, obstacle, bound):
+    chip = {"layout": "insulating-constriction", "obstacle": obstacle, "channel_width": "400 um"}
+    path, problem = misfit(yeast, **chip, opening=bound.replace("µ", "u"))
+    assert path == "chip.opening"
+    assert bound in problem
+
+
+def test_electrodes_are_remote(yeast):
+    path, problem = misfit(
+        yeast,
+        layout="insulating-constriction",
+        channel_width="1 mm",
+        opening="100 um",
+        obstacle_length="500 um",
+        electrode_spacing="1.4 mm",
+    )
+    assert path == "chip.electrode_spacing"
+    assert "1500 µm" in problem or "1.5 mm" in problem
+
+
+@pytest.mark.parametrize("name", PLANS)
+def test_a_layout_in_plan_can_be_chosen_on_screen(yeast, name):
+    """Every field of its own has a value to begin with, which fits the rest."""
+    opened = open_layout({"design": document(yeast), "layout": name}, yeast)
+    assert opened.problems == ()
+    assert opened.design.chip.layout == name
+    assert opened.design.chip.channel_width == yeast.chip.channel_width
+
+
+def test_terminals_and_openings():
+    assert FourPole().terminals == 2
+    assert FourPole(drive="quadrature").terminals == 4
+    assert FourPole(tip_gap=80e-6).narrowest == pytest.approx(50e-6)  # the depth
+    assert FourPole(tip_gap=40e-6).narrowest == pytest.approx(40e-6 / np.sqrt(2))
+    assert FourPole(pole_width=100e-6).double_layer_width == pytest.approx(400e-6)
+    ridge = InsulatingConstriction(opening=30e-6)
+    assert ridge.narrowest == 30e-6
+    assert ridge.force_level(1e-6) == 0.0
+    post = InsulatingConstriction(opening=30e-6, obstacle="post")
+    assert post.force_level(1e-6) == pytest.approx(0.5 * post.channel_width - 15e-6)
+
+
+@pytest.mark.parametrize("corners", [3, 4, 50])
+def test_places_around_a_polygon(corners):
+    """Length of the parallel curve: that of the outline and 2π times the distance."""
+    turns = np.linspace(0, 2 * np.pi, corners, endpoint=False)
+    outline = np.stack([2 * np.cos(turns), np.sin(turns)], axis=-1)
+    x, y = around(outline, 0.7)
+    found = np.hypot(x - np.roll(x, 1), y - np.roll(y, 1)).sum()
+    own = np.hypot(*(outline - np.roll(outline, 1, axis=0)).T).sum()
+    assert found == pytest.approx(own + 2 * np.pi * 0.7, rel=3e-3)
