@@ -83,7 +83,7 @@ class FourPole(Planar):
     def _poles_fit(self) -> "FourPole":
         needed = 2.0 * self._pole.back
         if self.channel_width < needed * (1.0 - _ROUNDING):
-            raise misfit("channel_width", at_least(needed, "so that the poles fit in"))
+            raise misfit(("channel_width", at_least(needed, "so that the poles fit in")))
         return self
 
     @property

@@ -79,11 +79,11 @@ class InsulatingConstriction(Planar):
             share = 1.0 if self.obstacle == "ridge" else 0.5
             width = format_quantity(share * self.channel_width, "um")
             whole = "the channel width" if self.obstacle == "ridge" else "half the channel width"
-            raise misfit("opening", f"must be below {whole}, {width}")
+            raise misfit(("opening", f"must be below {whole}, {width}"))
         needed = 2.0 * self._half_length + self.channel_width
         if self.electrode_spacing < needed:
             why = "the obstacle and a channel width, so that the electrodes are remote"
-            raise misfit("electrode_spacing", at_least(needed, why))
+            raise misfit(("electrode_spacing", at_least(needed, why)))
         return self
 
     @property
