@@ -115,12 +115,12 @@ class Conditions:
         field = max(_with_gradient(line, radius) for line in lines)
         return np.asarray(field * np.abs(self.share))
 
-    def _force_scale(self, particle: Particle) -> Real:
+    def force_scale(self, particle: Particle) -> Real:
         """From Re K times a force pattern to force: 2π ε a³ |share|² · duty, F m²."""
         size = 2.0 * np.pi * self.liquid.permittivity * particle.equivalent_radius**3
         return np.asarray(size * self.design.drive.duty * self._square_share)
 
-    def _force_weights(self, particle: Particle) -> tuple[Real, ...]:
+    def force_weights(self, particle: Particle) -> tuple[Real, ...]:
         """Factors of the force patterns: Re K of ∇|Ê|² and Im K of a travelling field."""
         factor = self.polarisation(particle)
         return (factor.real, factor.imag)[: 1 if self.line.travelling is None else 2]
@@ -136,14 +136,14 @@ class Conditions:
 
         Where the field does not travel it is the largest along the flow as well.
         """
-        weights = self._force_weights(particle)
+        weights = self.force_weights(particle)
         if len(weights) == 1:
             pull = weights[0] * np.abs(self.line.gradient[0]).max()
         else:
             along = np.stack([pattern[0] for pattern in self._force_patterns])
             most = (-np.stack(weights, axis=-1) @ along).max(axis=-1)
             pull = np.copysign(np.maximum(most, 0.0), weights[0])
-        return np.asarray(self._force_scale(particle) * pull)
+        return np.asarray(self.force_scale(particle) * pull)
 
     def dielectrophoretic_speed(self, particle: Particle) -> Real:
         """Largest speed that the force gives at the force height, m/s per V².
@@ -155,9 +155,7 @@ class Conditions:
         slowed = np.array([drag_parallel(relative), drag_perpendicular(relative)])[:, None]
         patterns = [pattern / slowed for pattern in self._force_patterns]
         drag = 6.0 * np.pi * self.liquid.viscosity * radius
-        return (
-            self._force_scale(particle) / drag * _largest(self._force_weights(particle), patterns)
-        )
+        return self.force_scale(particle) / drag * _largest(self.force_weights(particle), patterns)
 
     def electrothermal_weights(self) -> tuple[Real, ...]:
         """Factors of U₁, U₂ and, of a travelling field, U₃ in the electrothermal velocity.
@@ -189,14 +187,19 @@ class Conditions:
             self.electrothermal_scale * _largest(self.electrothermal_weights(), flows)
         )
 
+    @property
+    def heat_scale(self) -> Real:
+        """From Θ to temperature rise at the stage's conductivity: duty · σ/k · |share|², K/V²."""
+        scale = self.design.drive.duty / self.patterns.thermal_conductivity
+        return np.asarray(scale * self.conductivity * self._square_share)
+
     @cached_property
     def heating(self) -> Real:
         """Rise of the hottest liquid at the conductivity of the stage temperature, K/V².
 
-        duty · Θ_max σ/k · |share|².
+        The same at every frequency, but for what the electrodes keep from the liquid.
         """
-        rise = self.patterns.peak_temperature / self.patterns.thermal_conductivity
-        return np.asarray(self.design.drive.duty * rise * self.conductivity * self._square_share)
+        return self.heat_scale * self.patterns.peak_temperature
 
     @cached_property
     def heat_growth(self) -> Real:

@@ -4,6 +4,7 @@ from abc import ABC, abstractmethod
 from typing import TYPE_CHECKING, Annotated, ClassVar, Literal
 
 from model.declare import Part, Quantity
+from model.drawing import Drawing
 from model.fields.lines import Line
 from model.fields.section import Section
 from model.walls import Wall
@@ -45,6 +46,10 @@ class Layout(Part, ABC):
 
         `refinement` adds levels of uniform refinement, for convergence tests.
         """
+
+    @abstractmethod
+    def drawing(self) -> Drawing:
+        """What the chip looks like, over whole repeats, in the coordinates of its patterns."""
 
     @property
     @abstractmethod

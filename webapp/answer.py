@@ -13,13 +13,14 @@ from model.quantity import DIGITS, format_quantity, format_si
 from model.verdict import verdict
 from model.version import VERSION
 from webapp.controls import all_fields, summaries
+from webapp.figures.chip import chip_drawing
 from webapp.figures.theme import THEMES, Theme, particle_line
 from webapp.link import encode
 from webapp.services import Services
-from webapp.state import design_of, read_request
+from webapp.state import Options, design_of, read_request
 
 #: A view's own part of an answer: figures, sentences and whatever else it shows.
-ViewPart = Callable[[Evaluation, Theme], dict[str, Any]]
+ViewPart = Callable[[Evaluation, Theme, Options], dict[str, Any]]
 
 
 def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
@@ -40,7 +41,7 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
         **state_answer(request.number, result),
         "texts": tidied(design, request.values),
         "colours": [particle_line(theme, index)["color"] for index in range(len(design.particles))],
-        **view(result, theme),
+        **view(result, theme, request.options),
     }
 
 
@@ -57,6 +58,7 @@ def state_answer(number: int, result: Evaluation) -> dict[str, Any]:
         "verdict": {"inside": found.inside, "headline": found.headline, "sentence": found.sentence},
         "knobs": knobs(design),
         "summaries": summaries(design),
+        "drawing": chip_drawing(design.chip),
         "names": [particle.name for particle in design.particles],
         "cautions": list(cautions(result)),
         "notes": list(notes(result)),

@@ -83,7 +83,11 @@ def inputs_panel(design: Design) -> list[Component]:
     """Every section of the inputs, folded by part."""
     sections = [
         ("task", "Task", [*_question(design), *part_controls(design.task, "task")]),
-        ("chip", "Chip", [_layout(design), *part_controls(design.chip, "chip")]),
+        (
+            "chip",
+            "Chip",
+            [_layout(design), html.Div(id="chip-drawing"), *part_controls(design.chip, "chip")],
+        ),
         ("liquid", "Liquid", part_controls(design.liquid, "liquid")),
         ("particles", "Particles", _particles(design)),
         ("drive", "Drive", part_controls(design.drive, "drive")),

@@ -18,6 +18,8 @@ from webapp.link import LinkError, decode
 #: Most controls in a request and most characters in one; more is no browser of ours.
 MOST_VALUES, LONGEST_VALUE = 1000, 400
 THEMES = ("light", "dark")
+#: No place of a chip is further from its middle, m.
+FARTHEST = 1.0
 
 
 class BadRequestError(ValueError):
@@ -25,13 +27,40 @@ class BadRequestError(ValueError):
 
 
 @dataclass(frozen=True)
+class Options:
+    """What a visitor looks at, which is no part of the design.
+
+    Parameters
+    ----------
+    show
+        Panel of the section that is wanted alone; all of them if it is none.
+    particle
+        Place in the design of the particle whose force is drawn.
+    probe
+        Place (x, y) to be read out, m.
+    held
+        Key of the maps that the page holds already, so that they need not be sent again.
+    """
+
+    show: str = "four"
+    particle: int = 0
+    probe: tuple[float, float] | None = None
+    held: str = ""
+
+
+#: Of a visitor who has chosen nothing.
+NO_OPTIONS = Options()
+
+
+@dataclass(frozen=True)
 class Request:
-    """One request of the page: the document, the controls' values by path, and the theme."""
+    """One request: the document, the controls' values by path, the theme, what is looked at."""
 
     number: int
     document: Mapping[str, Any]
     values: Mapping[str, str | bool]
     theme: str
+    options: Options = NO_OPTIONS
 
 
 def read_request(data: Any) -> Request:
@@ -52,7 +81,37 @@ def read_request(data: Any) -> Request:
             raise BadRequestError("a value is neither text nor yes or no")
         if isinstance(value, str) and len(value) > LONGEST_VALUE:
             raise BadRequestError("a value is too long")
-    return Request(number, base, values, theme)
+    return Request(number, base, values, theme, read_options(data.get("options", {})))
+
+
+def read_options(data: Any) -> Options:
+    """Check what a browser says it looks at.
+
+    Raises
+    ------
+    BadRequestError
+        If no page of ours could have sent `data`.
+    """
+    if not isinstance(data, dict):
+        raise BadRequestError("the options are no table")
+    show, particle, held = data.get("show", "four"), data.get("particle", 0), data.get("held", "")
+    if not (isinstance(show, str) and isinstance(held, str) and len(show + held) < 120):
+        raise BadRequestError("an option is no short text")
+    if type(particle) is not int or not 0 <= particle <= MOST_VALUES:
+        raise BadRequestError("an option is no place in a list")
+    return Options(show, particle, _place(data.get("probe")), held)
+
+
+def _place(data: Any) -> tuple[float, float] | None:
+    """A place (x, y) in m; None if there is none."""
+    if data is None:
+        return None
+    pair: list[Any] = [data.get("x"), data.get("y")] if isinstance(data, dict) else []
+    if not pair or any(type(value) not in (int, float) for value in pair):
+        raise BadRequestError("a place needs x and y")
+    if not all(abs(value) <= FARTHEST for value in pair):  # what is no number fails too
+        raise BadRequestError("a place is beyond any chip")
+    return float(pair[0]), float(pair[1])
 
 
 def design_of(request: Request) -> Design:

@@ -3,6 +3,7 @@
 from typing import Literal
 
 from model.bars import OpposedBars
+from model.drawing import Strip
 from model.fields.layered import Channel, Span, layered
 from model.fields.section import Fold, Section
 
@@ -40,3 +41,7 @@ class BarsUnderPlate(OpposedBars):
             outsides=piece.outsides,
             rests=piece.rests,
         )
+
+    def _lid_strips(self, ends: tuple[float, float]) -> list[Strip]:
+        """The plate."""
+        return [Strip(*ends, phase=180.0, on_lid=True)]

@@ -6,6 +6,7 @@ from pydantic import model_validator
 
 from model.bars import OpposedBars
 from model.declare import Quantity, misfit
+from model.drawing import Dimension, Strip
 from model.fields.layered import Channel, Span, layered
 from model.fields.section import Fold, Section
 from model.quantity import format_quantity
@@ -70,3 +71,15 @@ class FacingBars(OpposedBars):
             rests=piece.rests,
             joined=None if mirrored else ("left", "right"),
         )
+
+    def _lid_strips(self, ends: tuple[float, float]) -> list[Strip]:
+        """Bars of the lid, shifted against the floor's."""
+        half, count = 0.5 * self.bar_width, round((ends[1] - ends[0]) / self.pitch)
+        centres = [self.offset + index * self.pitch for index in range(-1, count + 1)]
+        return [Strip(x - half, x + half, phase=180.0, on_lid=True) for x in centres]
+
+    def _lid_dimensions(self) -> list[Dimension]:
+        """The offset, where there is one, between the centres of two bars."""
+        if self.offset == 0.0:
+            return []
+        return [Dimension("offset", (0.0, self.channel_height), (self.offset, self.channel_height))]

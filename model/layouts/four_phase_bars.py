@@ -87,6 +87,12 @@ class FourPhaseBars(Bars):
         )
 
     @property
+    def floor_phases(self) -> tuple[float, ...]:
+        """Each bar behind the one before, or ahead if the wave runs against the flow."""
+        step = (-360.0 if self.wave == "with-flow" else 360.0) / self.terminals
+        return tuple(index * step % 360.0 for index in range(self.terminals))
+
+    @property
     def terminals(self) -> int:
         """Four or three."""
         return 4 if self.phases == "four" else 3

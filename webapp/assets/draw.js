@@ -15,7 +15,8 @@
     scrollZoom: false,
   };
   const RESTS = 400; // ms without a new figure, after which sketches are drawn in full
-  const NUMBERS = new Set(["x", "y", "text", "textfont"]); // what a sketch can change
+  const NUMBERS = new Set(["x", "y", "z", "text", "textfont"]); // what a sketch can change, or not
+  const GAP = 255; // of a map
   let resting = 0;
   const drawn = {};
   page.figures = drawn;
@@ -24,19 +25,26 @@
   page.draw = function (name, figure) {
     const place = document.getElementById("figure-" + name);
     if (!place) return;
-    const data = figure.data.map(unpack);
+    const kept = drawn[name];
+    const data = figure.data.map((trace, index) => unpack(trace, kept && kept.data[index]));
     const layout = JSON.stringify(figure.layout);
     const shape = JSON.stringify(data, withoutNumbers);
-    const kept = drawn[name];
-    const now = { data, layout, shape, parts: null, sketched: false };
+    const size = place.clientWidth + "×" + place.clientHeight;
+    const now = { data, layout, shape, parts: null, sketched: false, size };
     drawn[name] = now;
-    const alike = kept && kept.layout === layout && kept.shape === shape;
+    const alike =
+      kept &&
+      kept.layout === layout &&
+      kept.shape === shape &&
+      size === kept.size &&
+      data.every((trace, index) => trace.z === kept.data[index].z);
     if (alike && page.sketch(place, kept.parts, data)) {
       now.parts = kept.parts;
       now.sketched = true;
       clearTimeout(resting);
       resting = setTimeout(fullOne, RESTS);
     } else {
+      if (kept && kept.size !== size) window.Plotly.purge(place); // it would keep the old size
       full(place, now);
     }
   };
@@ -59,19 +67,37 @@
     return NUMBERS.has(key) ? undefined : value;
   }
 
-  /* Binary numbers become typed arrays, which the drawing library takes as they are. */
-  function unpack(trace) {
+  /* Binary numbers become typed arrays, which the drawing library takes as they are. A map that
+     the page holds already is not sent again. */
+  function unpack(trace, before) {
     const copy = { ...trace };
     for (const key of ["x", "y"]) {
-      const value = copy[key];
-      if (value && value.bdata !== undefined) {
-        const letters = atob(value.bdata);
-        const bytes = new Uint8Array(letters.length); // filled by hand: eight times faster
-        for (let k = 0; k < letters.length; k += 1) bytes[k] = letters.charCodeAt(k);
-        copy[key] = new Float32Array(bytes.buffer);
+      if (copy[key] && copy[key].bdata !== undefined) {
+        copy[key] = new Float32Array(bytesOf(copy[key]).buffer);
       }
     }
+    if (copy.z) copy.z = copy.z.kept ? before.z : rowsOf(copy.z, before && before.z);
     return copy;
+  }
+
+  /* Rows of a map, or those that are held if they came from the same text. */
+  function rowsOf(packed, held) {
+    if (held && held.text === packed.bdata) return held;
+    const bytes = bytesOf(packed);
+    const width = Number(packed.shape.split(",")[1]);
+    const rows = [];
+    for (let k = 0; k < bytes.length; k += width) {
+      rows.push(Float32Array.from(bytes.subarray(k, k + width), (byte) => (byte === GAP ? NaN : byte)));
+    }
+    rows.text = packed.bdata;
+    return rows;
+  }
+
+  function bytesOf(packed) {
+    const letters = atob(packed.bdata);
+    const bytes = new Uint8Array(letters.length); // filled by hand: eight times faster
+    for (let k = 0; k < letters.length; k += 1) bytes[k] = letters.charCodeAt(k);
+    return bytes;
   }
 
   /* The place on a logarithmic-logarithmic figure that a click meant, or null. */

@@ -11,7 +11,15 @@
   const AGAIN_AFTER = 3000;
   const page = (window.slackwater = window.slackwater || {});
 
-  const gate = { values: {}, profile: null, theme: "light", view: "corridor", number: 0 };
+  const gate = {
+    values: {},
+    profile: null,
+    theme: "light",
+    view: "corridor",
+    options: {}, // what is looked at in a view
+    held: "", // key of the maps that need not be sent again
+    number: 0,
+  };
   page.gate = gate;
   let waiting = false;
   let dirty = false;
@@ -30,13 +38,20 @@
 
   /* What a request carries. */
   gate.body = function () {
-    return { number: gate.number, document: gate.profile, values: gate.values, theme: gate.theme };
+    return {
+      number: gate.number,
+      document: gate.profile,
+      values: gate.values,
+      theme: gate.theme,
+      options: { ...gate.options, held: gate.held },
+    };
   };
 
   async function pump() {
     if (!dirty || waiting || !gate.profile) return;
     dirty = false;
-    const text = JSON.stringify([gate.profile, gate.values, gate.theme]);
+    const { profile, values, theme, view, options } = gate;
+    const text = JSON.stringify([profile, values, theme, view, options]);
     if (text === sent) return;
     sent = text;
     gate.number += 1;
@@ -45,7 +60,7 @@
     const busy = setTimeout(() => document.body.classList.add("busy"), BUSY_AFTER);
     let answer = null;
     try {
-      answer = await ask(gate.body());
+      answer = await ask(view, gate.body());
     } catch (problem) {
       sent = "";
       setTimeout(() => waiting || gate.push(), AGAIN_AFTER);
@@ -55,11 +70,11 @@
     document.getElementById("lost").hidden = answer !== null;
     waiting = false;
     pump(); // first of all, so that the server works while this page draws
-    if (answer) page.answered(answer, since);
+    if (answer) page.answered(answer, since, view);
   }
 
-  async function ask(body) {
-    const response = await fetch("answer/" + gate.view, {
+  async function ask(view, body) {
+    const response = await fetch("answer/" + view, {
       method: "POST",
       headers: { "Content-Type": "application/json" },
       body: JSON.stringify(body),

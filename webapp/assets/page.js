@@ -20,6 +20,8 @@
     const system = window.matchMedia("(prefers-color-scheme: dark)").matches ? "dark" : "light";
     appearance(wanted || system);
     props("dark", { checked: gate.theme === "dark" });
+    page.section.start();
+    page.tabs.start();
     page.knobs.make((path, text) => props(idOf(path), { value: text }));
     window.addEventListener("popstate", travelled);
     document.addEventListener("click", clicked);
@@ -66,14 +68,15 @@
 
   /* ---- answers ---- */
 
-  page.answered = function (answer, since) {
+  page.answered = function (answer, since, view) {
     const good = Object.keys(answer.errors).length === 0;
     mark(answer.errors);
     document.body.classList.toggle("stale", !good);
     byId("stale-label").hidden = good;
     if (!good) return;
     show(answer);
-    draw(answer);
+    if (view === gate.view) draw(answer); // else another view is seen by now, and asked for
+    page.shown = answer.number;
     // Told when the picture is on its way to the screen; benchmarks listen.
     requestAnimationFrame(() =>
       document.dispatchEvent(new CustomEvent("slackwater-drawn", { detail: { since } }))
@@ -92,10 +95,10 @@
   }
 
   function draw(answer) {
+    if (answer.probe) page.section.answered(answer);
     for (const [name, figure] of Object.entries(answer.figures)) page.draw(name, figure);
     for (const [name, words] of Object.entries(answer.sentences)) text("sentence-" + name, words);
     if (answer.ledger) page.ledger(answer.ledger);
-    page.shown = answer.number;
   }
 
   function show(answer) {
@@ -111,6 +114,7 @@
       const label = byId("particle-name-" + index);
       if (label) label.previousElementSibling.style.color = answer.colours[index];
     });
+    page.drawing(answer.drawing);
     tidy(answer.texts);
     items("notes", answer.notes);
     items("cautions", answer.cautions);

@@ -31,6 +31,7 @@
     }
     let before = null; // pixels of the trace before, for the fill between two
     data.forEach((trace, index) => {
+      if (trace.z) return; // a map stays as it was drawn
       const part = parts[index];
       const x = pixels(trace.x, part.x);
       const y = pixels(trace.y, part.y);
@@ -56,6 +57,7 @@
 
   function fits(trace, part, before) {
     if (!part) return false;
+    if (trace.z) return true;
     if (has(trace, "lines") && !part.lines.length && trace.line.width > 0) {
       return !trace.y.some(Number.isFinite); // nothing was drawn: fine if nothing is to be
     }

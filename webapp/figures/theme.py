@@ -12,10 +12,14 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike
 
+from model.arrays import Real
 from model.limits import LIMITS
 from model.quantity import format_si
 
 Figure = dict[str, Any]
+
+#: The highest shade of a packed map, and what stands for no value.
+MOST_SHADE, GAP = 254, 255
 
 
 @dataclass(frozen=True)
@@ -30,6 +34,11 @@ class Theme:
     paper: str
     particles: tuple[str, ...]
     limits: tuple[str, ...]
+    #: Floor, lid and obstacles; maps of field and of warmth run evenly from the paper's lightness
+    #: to its opposite, so that they read in grey and by weak eyes.
+    wall: str
+    field: tuple[str, ...]
+    warmth: tuple[str, ...]
 
 
 _OKABE_ITO = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#8C8C8C")
@@ -54,6 +63,9 @@ THEMES = {
             "#854d0e",
             "#a21caf",
         ),
+        wall="#e9edf1",
+        field=("#f4f8fb", "#cfe3ef", "#93c1dc", "#4b93c3", "#1f659e", "#0f3a66"),
+        warmth=("#fdf6ec", "#fbdcb4", "#f4ac6c", "#de6f35", "#ad3a17", "#6b1a0c"),
     ),
     "dark": Theme(
         text="#e8edf2",
@@ -75,6 +87,9 @@ THEMES = {
             "#d9b36c",
             "#e879f9",
         ),
+        wall="#222c36",
+        field=("#121a24", "#15324d", "#1d5a86", "#3a8fbf", "#86c5e2", "#ecf7fc"),
+        warmth=("#17191f", "#43201a", "#85351a", "#cc6527", "#f2a75c", "#fdebcb"),
     ),
 }
 DASHES = ("solid", "dash", "dot", "dashdot", "longdash", "longdashdot")
@@ -106,6 +121,17 @@ def numbers(values: ArrayLike) -> dict[str, str]:
     """Pack numbers as single-precision binary, which serialises thirty times faster than text."""
     data = np.ascontiguousarray(values, dtype="<f4")
     return {"dtype": "f4", "bdata": base64.b64encode(data.tobytes()).decode()}
+
+
+def shades(values: Real) -> dict[str, str]:
+    """Pack a map of values 0 to 1, (m, n), as one byte each, 0 to 254; 255 stands for a gap."""
+    levels = np.where(np.isfinite(values), np.clip(values, 0.0, 1.0) * MOST_SHADE, GAP)
+    data = np.ascontiguousarray(np.rint(levels), dtype="u1")
+    return {
+        "dtype": "u1",
+        "bdata": base64.b64encode(data.tobytes()).decode(),
+        "shape": ", ".join(map(str, values.shape)),
+    }
 
 
 def axis(theme: Theme, title: str, **more: Any) -> dict[str, Any]:

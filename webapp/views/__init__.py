@@ -2,6 +2,7 @@
 
 from webapp.answer import ViewPart
 from webapp.views.corridor import corridor_part
+from webapp.views.section import section_part
 
 #: What fills each view, by its name in a request.
-VIEWS: dict[str, ViewPart] = {"corridor": corridor_part}
+VIEWS: dict[str, ViewPart] = {"corridor": corridor_part, "section": section_part}

@@ -17,6 +17,7 @@ from webapp.figures.sweeps import (
     sweep_of,
 )
 from webapp.figures.theme import Theme
+from webapp.state import NO_OPTIONS, Options
 from webapp.views.card import card
 
 
@@ -46,8 +47,10 @@ def corridor_view() -> Component:
     )
 
 
-def corridor_part(result: Evaluation, theme: Theme) -> dict[str, Any]:
-    """Every figure of the view with its sentence, and the ledger's rows."""
+def corridor_part(
+    result: Evaluation, theme: Theme, options: Options = NO_OPTIONS
+) -> dict[str, Any]:
+    """Every figure of the view with its sentence, and the ledger's rows; all are always shown."""
     heating = sweep_of(result, "temperature_rise")
     electrothermal = sweep_of(result, "electrothermal_ratio")
     return {

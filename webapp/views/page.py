@@ -9,6 +9,10 @@ from dash.development.base_component import Component
 from model.design import Design
 from webapp.controls import HIDDEN, control_id
 from webapp.views.corridor import corridor_view
+from webapp.views.section import section_view
+
+#: Views in the order of their tabs: name in a request, word on the tab, what lays it out.
+TABS = (("corridor", "Corridor", corridor_view), ("section", "Section", section_view))
 
 #: Accent of the controls, ten shades from light to dark.
 _TEAL = [
@@ -53,6 +57,7 @@ def page(profiles: dict[str, Design]) -> Component:
                 html.Div(id="toast", role="status"),
                 _header(profiles),
                 _strip(),
+                _tabs(),
                 _inputs(),
                 html.Main(
                     [
@@ -63,7 +68,7 @@ def page(profiles: dict[str, Design]) -> Component:
                             role="status",
                             hidden=True,
                         ),
-                        corridor_view(),
+                        *_panels(),
                         _footer(),
                     ],
                     id="view",
@@ -165,6 +170,35 @@ def _knob(
         ],
         className="knob",
     )
+
+
+def _tabs() -> Component:
+    """One tab for each view; the page's script moves between them."""
+    tabs = []
+    for index, (name, word, _) in enumerate(TABS):
+        data: dict[str, Any] = {
+            "data-view": name,
+            "aria-controls": f"view-{name}",
+            "aria-selected": "true" if index == 0 else "false",
+        }
+        tabs.append(
+            html.Button(
+                word, id=f"tab-{name}", role="tab", tabIndex=0 if index == 0 else -1, **data
+            )
+        )
+    return html.Nav(html.Div(tabs, role="tablist", **_named("Views")), className="tabs")
+
+
+def _panels() -> list[Component]:
+    """What the tabs show; all but the first are hidden at first."""
+    panels: list[Component] = []
+    for index, (name, _, view) in enumerate(TABS):
+        attributes: dict[str, Any] = {"role": "tabpanel", "aria-labelledby": f"tab-{name}"}
+        content = view()
+        panels.append(
+            html.Div(content, id=f"view-{name}", className="panel", hidden=index > 0, **attributes)
+        )
+    return panels
 
 
 def _inputs() -> Component:
