@@ -131,16 +131,31 @@ class Conditions:
         moving = self.line.travelling
         return (self.line.gradient,) if moving is None else (self.line.gradient, moving)
 
+    @cached_property
+    def _best_place(self) -> int | None:
+        """Where on the line of a plan the force along the flow is largest over the local speed."""
+        if self.line.through is None:
+            return None
+        return int(np.argmax(np.abs(self.line.gradient[0]) / self.line.through[0]))
+
+    @cached_property
+    def _slower(self) -> Real:
+        """Speed of the flow at the best place over that along the line; 1 if it is the same."""
+        if self.line.through is None or self._best_place is None:
+            return np.array(1.0)
+        return np.asarray(self.line.through[0, self._best_place] / self.line.through[0])
+
     def force_along_flow(self, particle: Particle) -> Real:
         """Largest force against the flow over one period, N/V², with the sign of Re K.
 
-        Where the field does not travel it is the largest along the flow as well.
+        Where the field does not travel it is the largest along the flow as well. Where the flow
+        changes along the line (in plan) it is the force where it withstands most of the flow.
         """
         weights = self.force_weights(particle)
         if len(weights) == 1:
-            pull = weights[0] * np.abs(self.line.gradient[0]).max()
+            pull = weights[0] * np.abs(self.line.gradient[0] * self._slower).max()
         else:
-            along = np.stack([pattern[0] for pattern in self._force_patterns])
+            along = np.stack([pattern[0] * self._slower for pattern in self._force_patterns])
             most = (-np.stack(weights, axis=-1) @ along).max(axis=-1)
             pull = np.copysign(np.maximum(most, 0.0), weights[0])
         return np.asarray(self.force_scale(particle) * pull)
@@ -231,9 +246,17 @@ class Conditions:
         return np.asarray(2.0 / self.design.chip.terminals * self.admittance)
 
     def flow_speed(self, height: float) -> float:
-        """Speed of the undisturbed flow at a height, mid-width, m/s."""
-        chip = self.design.chip
-        return float(local_speed(self.design.flow.rate, chip.height, chip.channel_width, height))
+        """Speed of the undisturbed flow at a height, m/s, where the force is taken against it.
+
+        In a flat channel at mid-width; in plan at the best place of the line, the parabola
+        6s(1 − s) of its mean over the depth.
+        """
+        chip, rate = self.design.chip, self.design.flow.rate
+        if self.line.through is None:
+            return float(local_speed(rate, chip.height, chip.channel_width, height))
+        share = height / chip.height
+        mean = self.line.through[0, self._best_place]
+        return float(6.0 * share * (1.0 - share) * rate * mean)
 
 
 def _largest(weights: Sequence[Real], patterns: Sequence[Real]) -> Real:

@@ -133,12 +133,6 @@ class FourPole(Planar):
         return min(2.0 * self._pole.waist, self.depth)
 
     @property
-    def double_layer_width(self) -> float:
-        """Two poles and two others, in series, m."""
-        corners = np.array(self._outline())
-        return float(np.hypot(*(np.roll(corners, -1, axis=0) - corners).T).sum())
-
-    @property
     def force_line(self) -> float:
         """Through the centre, m."""
         return 0.0

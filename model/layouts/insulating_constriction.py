@@ -128,11 +128,6 @@ class InsulatingConstriction(Planar):
         return min(self.opening, self.depth)
 
     @property
-    def double_layer_width(self) -> float:
-        """The two electrodes in series, m."""
-        return 0.5 * self.channel_width
-
-    @property
     def force_line(self) -> float:
         """Along the middle of an opening, m."""
         return 0.0 if self.obstacle == "ridge" else 0.5 * (self.channel_width - self.opening)

@@ -3,7 +3,10 @@
 import numpy as np
 import pytest
 
+from model.design import Flow
 from model.errors import DesignError
+from model.evaluate import evaluate
+from model.fields.solve import solve_chip
 from model.layouts import LAYOUTS
 from model.layouts.four_pole import FourPole
 from model.layouts.insulating_constriction import InsulatingConstriction
@@ -58,7 +61,8 @@ def test_electrodes_are_remote(yeast):
 @pytest.mark.parametrize("name", PLANS)
 def test_a_layout_in_plan_can_be_chosen_on_screen(yeast, name):
     """Every field of its own has a value to begin with, which fits the rest."""
-    opened = open_layout({"design": document(yeast), "layout": name}, yeast)
+    request = {"number": 1, "document": document(yeast), "values": {}, "theme": "light"}
+    opened = open_layout({**request, "layout": name}, yeast)
     assert opened.problems == ()
     assert opened.design.chip.layout == name
     assert opened.design.chip.channel_width == yeast.chip.channel_width
@@ -69,7 +73,6 @@ def test_terminals_and_openings():
     assert FourPole(drive="quadrature").terminals == 4
     assert FourPole(tip_gap=80e-6).narrowest == pytest.approx(50e-6)  # the depth
     assert FourPole(tip_gap=40e-6).narrowest == pytest.approx(40e-6 / np.sqrt(2))
-    assert FourPole(pole_width=100e-6).double_layer_width == pytest.approx(400e-6)
     ridge = InsulatingConstriction(opening=30e-6)
     assert ridge.narrowest == 30e-6
     assert ridge.force_level(1e-6) == 0.0
@@ -86,3 +89,33 @@ def test_places_around_a_polygon(corners):
     found = np.hypot(x - np.roll(x, 1), y - np.roll(y, 1)).sum()
     own = np.hypot(*(outline - np.roll(outline, 1, axis=0)).T).sum()
     assert found == pytest.approx(own + 2 * np.pi * 0.7, rel=3e-3)
+
+
+@pytest.mark.parametrize(("obstacle", "opening"), [("ridge", 60e-6), ("post", 120e-6)])
+def test_the_flow_that_a_force_is_held_against_passes_the_opening(yeast, vary, obstacle, opening):
+    """Twice the flow asks for twice the force, and the same liquid passes every cross-section.
+
+    Between the ridges of a channel that is much shallower than wide the mean speed is the flow
+    rate over depth and opening; at mid-depth the parabola gives 3/2 of the mean.
+    """
+    chip = InsulatingConstriction(
+        obstacle=obstacle,
+        opening=opening,
+        obstacle_length=400e-6,
+        channel_width=600e-6,
+        depth=10e-6,
+    )
+    changes = {"task.working_height": "5 um", "particle.0.radius": "1.5 um"}
+    design = vary(yeast, changes | {"flow.rate": "0.1 uL/min"}).model_copy(update={"chip": chip})
+    patterns = solve_chip(chip)
+    once, twice = (
+        evaluate(design.model_copy(update={"flow": Flow(rate=rate)}), patterns)
+        for rate in (1e-12, 2e-12)
+    )
+    assert twice.point.flow_speed(5e-6) == pytest.approx(2.0 * once.point.flow_speed(5e-6))
+    assert twice.floor_pp == pytest.approx(2.0**0.5 * once.floor_pp)
+    fastest = patterns.line(chip.force_level(5e-6)).through[0].max() * 1e-12
+    openings = 1 if obstacle == "ridge" else 2
+    # the post's opening is narrow at one place only, and the sides slow the liquid by some depths
+    assert fastest == pytest.approx(1e-12 / (10e-6 * opening * openings), rel=0.12)
+    assert 1e-12 / (10e-6 * 600e-6) < once.point.flow_speed(5e-6) / 1.5 <= fastest
