@@ -45,7 +45,7 @@ class PatternMaps(Stored):
         Coarse grid and ∇|Ê|² and the travelling pattern there, (2, 2, m, n).
     nodes, flows, streams
         Nodes from wall to wall, U₁, U₂ and U₃ there, (3, 2, m, n), and their stream functions
-        ψ in m, (3, m, n), with u = (∂ψ/∂y, −∂ψ/∂x) and ψ = 0 on the lower wall.
+        ψ in m, (3, m, n), with u = (∂ψ/∂y, −∂ψ/∂x) and ψ = 0 on the floor or in the middle.
 
     What lies outside the liquid, or for Θ outside the chip, is NaN.
     """
@@ -123,7 +123,7 @@ def pattern_maps(patterns: ChipPatterns) -> PatternMaps:
     places = Grid(_centres(left, right, wide), _centres(low, high, _tall(wide, high - low)))
     nodes = Grid(
         np.linspace(left, right, NODES + 1),
-        np.linspace(low, high, min(max(round((high - low) / (2 * step)), 40), 90) + 1),
+        np.linspace(low, high, 2 * min(max(round((high - low) / (4 * step)), 20), 45) + 1),
     )
 
     flow = _laid(patterns, nodes, _flows)
@@ -136,7 +136,7 @@ def pattern_maps(patterns: ChipPatterns) -> PatternMaps:
         forces=_laid(patterns, places, _forces),
         nodes=nodes,
         flows=flow,
-        streams=_streams(nodes, flow[:, 0], closed=chip.view == "section"),
+        streams=_streams(nodes, flow, closed=chip.view == "section"),
     )
 
 
@@ -298,17 +298,27 @@ def _one_period(x: Real, period: float | None) -> tuple[Real, np.ndarray]:
     return x[first], index
 
 
-def _streams(nodes: Grid, along: Real, *, closed: bool) -> Real:
-    """Stream functions ψ = ∫ u_x dy of flows (k, m, n), from the lower wall up.
+def _streams(nodes: Grid, flows: Real, *, closed: bool) -> Real:
+    """Stream functions ψ = ∫ u_x dy − ∫ u_y dx of flows (k, 2, m, n), along the lowest row and up.
 
-    As much liquid passes every x; of a channel with flat walls, whose upper one is then a line
-    of one ψ, what the sums miss of that is spread over the height.
+    In a channel between a flat floor and lid (`closed`) as much liquid passes every x, and what
+    the sums miss of that is spread over the height; ψ is 0 on the floor. Else ψ is 0 in the middle,
+    about which a plan is symmetric.
     """
-    speed = np.nan_to_num(along)
-    slices = 0.5 * (speed[:, 1:] + speed[:, :-1]) * np.diff(nodes.y)[:, None]
-    sums = np.concatenate([np.zeros_like(speed[:, :1]), slices.cumsum(axis=1)], axis=1)
+    speed = np.nan_to_num(flows)
+    along, up = speed[:, 0], speed[:, 1]
+    base = np.zeros_like(up[:, 0]) if closed else -_summed(up[:, 0], nodes.x)
+    sums = base[:, None] + _summed(along.swapaxes(1, 2), nodes.y).swapaxes(1, 2)
     if closed:
         missed = sums[:, -1:] - sums[:, -1:].mean(axis=2, keepdims=True)
         share = (nodes.y - nodes.y[0]) / (nodes.y[-1] - nodes.y[0])
         sums = sums - missed * share[:, None]
-    return np.where(np.isnan(along), np.nan, sums)
+    else:
+        sums = sums - sums[:, nodes.y.size // 2, nodes.x.size // 2, None, None]
+    return np.where(np.isnan(flows[:, 0]), np.nan, sums)
+
+
+def _summed(values: Real, places: Real) -> Real:
+    """Integral of values from the first place to each, over the last axis."""
+    slices = 0.5 * (values[..., 1:] + values[..., :-1]) * np.diff(places)
+    return np.concatenate([np.zeros_like(values[..., :1]), slices.cumsum(axis=-1)], axis=-1)

@@ -13,6 +13,9 @@ from model.fields.section import Fold, Section
 from model.planar import Planar, around, at_least
 from model.quantity import format_quantity
 
+#: A drawing shows so many openings, or lengths of the obstacle, on either side of the middle.
+_NEAR = 3.0
+
 
 class InsulatingConstriction(Planar):
     """A tooth on either side wall, or a round post, that squeezes the field between electrodes.
@@ -153,7 +156,9 @@ class InsulatingConstriction(Planar):
         """The obstacle and as much of the channel as lets the field spread again."""
         wall, half, end = 0.5 * self.channel_width, self._half_length, 0.5 * self.electrode_spacing
         rim = 0.1 * wall
-        wide = min(end + rim, half + 2.0 * wall)
+        near = _NEAR * max(self.opening, 2.0 * half)  # beyond, nothing changes much
+        wide = min(end + rim, half + 2.0 * wall, 1.5 * near)
+        tall = min(wall + rim, near)
         solid = tuple(Shape("obstacle", outline) for outline in self._outlines())
         walls = tuple(
             Shape("wall", box((-end - rim, low), (end + rim, low + rim)))
@@ -164,14 +169,13 @@ class InsulatingConstriction(Planar):
             Shape("electrode", box((end, -wall), (end + rim, wall)), 180.0),
         )
         narrow = self.force_line - 0.5 * self.opening
-        dimensions = [
-            Dimension("channel_width", (-wide, -wall), (-wide, wall)),
-            Dimension("opening", (0.0, narrow), (0.0, narrow + self.opening)),
-        ]
+        dimensions = [Dimension("opening", (0.0, narrow), (0.0, narrow + self.opening))]
+        if tall > wall:
+            dimensions.insert(0, Dimension("channel_width", (-wide, -wall), (-wide, wall)))
         if self.obstacle == "ridge":
             low = 0.5 * self.opening
             dimensions.append(Dimension("obstacle_length", (-half, low), (half, low)))
         if wide > end:
             dimensions.append(Dimension("electrode_spacing", (-end, 0.0), (end, 0.0)))
-        window = (-wide, wide, -wall - rim, wall + rim)
+        window = (-wide, wide, -tall, tall)
         return Drawing(window, (*solid, *walls, *electrodes), tuple(dimensions))

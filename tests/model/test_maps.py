@@ -5,6 +5,7 @@ import pytest
 
 from model.evaluate import evaluate
 from model.maps import in_chip, pattern_maps, probe, section_maps
+from model.profile import document, parse_design
 from model.streamlines import contours, streamlines
 
 LAYOUTS = {
@@ -131,6 +132,33 @@ def test_streamlines_follow_the_flow(result, maps):
         along = (flow * step[:, inside]).sum(axis=0)
         whole = np.hypot(*flow) * np.hypot(*step[:, inside])
         assert along.sum() > 0.97 * whole.sum()
+
+
+PLANS = {
+    "four-pole": {"layout": "four-pole", "tip_gap": "80 um", "pole_width": "80 um"},
+    "post": {"layout": "insulating-constriction", "obstacle": "post", "channel_width": "0.4 mm"},
+}
+
+
+@pytest.mark.parametrize("plan", PLANS)
+def test_streamlines_of_a_plan_follow_the_flow_around_what_is_solid(yeast, solved, plan):
+    walls = {key: document(yeast)["chip"][key] for key in ("floor", "lid")}
+    design = parse_design({**document(yeast), "chip": {"channel_width": "6 mm", **walls,
+                           **PLANS[plan]}})  # fmt: skip
+    result = evaluate(design, solved(design), points=20)
+    lines = streamlines(section_maps(result, design.particles[0]))
+    assert lines
+    factors = [float(factor[0]) for factor in result.point.electrothermal_weights()]
+    along, whole = 0.0, 0.0
+    for line in lines:
+        middle, step = 0.5 * (line[:, 1:] + line[:, :-1]), np.diff(line, axis=1)
+        known = result.patterns.inside(*middle)
+        assert known.mean() > 0.9
+        patterns = result.patterns.electrothermal(*middle[:, known])
+        flow = sum(f * np.stack(p) for f, p in zip(factors, patterns, strict=False))
+        along += (flow * step[:, known]).sum()
+        whole += (np.hypot(*flow) * np.hypot(*step[:, known])).sum()
+    assert along > 0.95 * whole
 
 
 def test_the_probe_reads_what_the_maps_show(result, maps):

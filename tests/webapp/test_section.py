@@ -11,6 +11,7 @@ from model.bars import Bars
 from model.evaluate import evaluate
 from model.layouts import LAYOUTS
 from model.maps import section_maps
+from model.profile import document
 from model.quantity import parse_quantity
 from tests.webapp.test_figures import luminance
 from webapp.figures.chip import chip_drawing
@@ -18,16 +19,29 @@ from webapp.figures.panel import frame
 from webapp.figures.section import longest_force
 from webapp.figures.share import share_band
 from webapp.figures.theme import THEMES
-from webapp.state import BadRequestError, Options, read_options
+from webapp.state import BadRequestError, Options, open_layout, read_options
 from webapp.views.section import PANELS, section_part
 
 LIGHT = THEMES["light"]
 BARS = sorted(name for name, layout in LAYOUTS.items() if issubclass(layout, Bars))
 
 
+def turned(design, layout):
+    """The design on another layout, as the page turns it."""
+    request = {"number": 1, "document": document(design), "values": {}, "theme": "light"}
+    return open_layout({**request, "layout": layout}, design).design
+
+
 @pytest.fixture(params=BARS)
-def result(request, yeast, solved, vary):
-    design = vary(yeast, {"chip.layout": request.param})
+def result(request, yeast, solved):
+    design = turned(yeast, request.param)
+    return evaluate(design, solved(design), points=20)
+
+
+@pytest.fixture(params=sorted(set(LAYOUTS) - set(BARS)))
+def plan(request, yeast, solved):
+    design = turned(yeast, request.param)
+    assert design.chip.layout == request.param
     return evaluate(design, solved(design), points=20)
 
 
@@ -65,6 +79,19 @@ def test_figures_are_valid_for_every_layout(result, theme):
     assert part["figures"].keys() == part["sentences"].keys()
     for figure in part["figures"].values():
         assert go.Figure(figure).data
+
+
+def test_plans_are_drawn_like_sections(plan):
+    part = section_part(plan, LIGHT)
+    for figure in part["figures"].values():
+        assert go.Figure(figure).data
+    for words in part["sentences"].values():
+        assert not re.search(r"\bnan\b|\binf\b|None", words)
+    assert part["figures"]["field-map"]["layout"]["yaxis"]["title"]["text"].startswith("Across")
+    readings = {reading["label"] for reading in part["probe"]["readings"]}
+    assert "Field" in readings
+    gaps = numbers_of(trace_of(part, "field-map", "field")["z"]) == 255
+    assert 0.01 < gaps.mean() < 0.9, "poles and obstacles are no liquid"
 
 
 def test_panels_are_to_scale(result):

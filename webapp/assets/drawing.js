@@ -24,35 +24,66 @@
 
   function picture(found, width) {
     const [left, right, low, high] = found.window;
-    const heights = found.dimensions.filter(upright);
+    const slanted = found.dimensions.filter(slants);
+    const straight = found.dimensions.filter((one) => !slanted.includes(one));
+    const heights = straight.filter(upright);
+    const lengths = straight.filter((one) => !upright(one));
+    const upper = lengths.filter((one) => one.start[1] > 0.5 * (low + high));
+    const lower = lengths.filter((one) => !upper.includes(one));
     const longest = Math.max(0, ...heights.map((dimension) => dimension.text.length));
-    const wide = width - 2 - (longest ? BESIDE + LETTER * longest : 0);
-    const tall = Math.min(Math.max((wide * (high - low)) / (right - left), LOWEST), HIGHEST);
-    const lengths = found.dimensions.filter((dimension) => !upright(dimension));
-    const above = lengths.filter((dimension) => dimension.start[1] > 0.5 * (low + high));
-    const below = lengths.filter((dimension) => !above.includes(dimension));
+    const room = width - 2 - (longest ? BESIDE + LETTER * longest : 0);
+    const wide = Math.min(room, (HIGHEST * (right - left)) / (high - low));
+    const tall = Math.max((wide * (high - low)) / (right - left), LOWEST);
     const x = (value) => 1 + ((value - left) / (right - left)) * wide;
-    const upper = rows(above, x, wide);
-    const lower = rows(below, x, wide);
-    const top = ROW * upper.count + (upper.count ? 4 : 1);
+    const above = rows(upper, x, room);
+    const below = rows(lower, x, room);
+    const top = ROW * above.count + (above.count ? 4 : 1);
     const y = (value) => top + ((high - value) / (high - low)) * tall;
-    const svg = make("svg", { width, height: top + tall + ROW * lower.count + 6, role: "img" });
+    const svg = make("svg", { width, height: top + tall + ROW * below.count + 6, role: "img" });
     svg.setAttribute("aria-label", found.label);
-    svg.append(make("rect", { class: "liquid", x: 1, y: top, width: wide, height: tall }));
-    for (const shape of found.shapes) svg.append(...solid(shape, x, y, top + tall / 2));
-    for (const { dimension, row } of upper.placed) {
-      svg.append(...length(dimension, x, y(dimension.start[1]), top - ROW * (row + 0.5) - 2, wide));
+    const chip = make("svg", { x: 1, y: top, width: wide, height: tall }); // cuts what goes on
+    chip.append(make("rect", { class: "liquid", width: "100%", height: "100%" }));
+    for (const shape of found.shapes) {
+      chip.append(...solid(shape, (value) => x(value) - 1, (value) => y(value) - top, tall / 2));
     }
-    for (const { dimension, row } of lower.placed) {
+    svg.append(chip);
+    for (const { dimension, row } of above.placed) {
+      svg.append(...length(dimension, x, y(dimension.start[1]), top - ROW * (row + 0.5) - 2, room));
+    }
+    for (const { dimension, row } of below.placed) {
       const line = top + tall + ROW * (row + 0.5) + 5;
-      svg.append(...length(dimension, x, y(dimension.start[1]), line, wide));
+      svg.append(...length(dimension, x, y(dimension.start[1]), line, room));
     }
-    for (const dimension of heights) svg.append(...height(dimension, y, wide + 11));
+    for (const dimension of slanted) svg.append(...slant(dimension, x, y));
+    let used = []; // upright stretches that carry a text at the right already
+    for (const dimension of heights) {
+      const middle = (y(dimension.start[1]) + y(dimension.end[1])) / 2;
+      let text = middle;
+      while (used.some((other) => Math.abs(other - text) < 15)) text += 15;
+      used = [...used, text];
+      svg.append(...height(dimension, x, y, wide + 11, text, used.length));
+    }
     return svg;
   }
 
   function upright(dimension) {
     return Math.abs(dimension.end[1] - dimension.start[1]) > Math.abs(dimension.end[0] - dimension.start[0]);
+  }
+
+  function slants(dimension) {
+    const [across, up] = [0, 1].map((axis) => Math.abs(dimension.end[axis] - dimension.start[axis]));
+    return Math.min(across, up) > 0.1 * Math.max(across, up);
+  }
+
+  /* A slanted length stands where it is, its text to the left of its middle. */
+  function slant(dimension, x, y) {
+    const [from, to] = [dimension.start, dimension.end].map((place) => [x(place[0]), y(place[1])]);
+    const turn = (Math.atan2(to[1] - from[1], to[0] - from[0]) * 180) / Math.PI;
+    const size = Math.hypot(to[0] - from[0], to[1] - from[1]);
+    const line = make("g", { transform: `translate(${from[0]},${from[1]}) rotate(${turn})` });
+    line.append(make("path", { class: "measure", d: `M0,0H${size}` }), ...heads([0, size], 0, true));
+    const [across, down] = [0, 1].map((axis) => (from[axis] + to[axis]) / 2);
+    return [line, written(dimension.text, across - 8, down - 4, "end")];
   }
 
   function solid(shape, x, y, middle) {
@@ -66,7 +97,7 @@
       const lower = Math.max(...down);
       const beside = (upper + lower) / 2 > middle ? lower + 9.5 : upper - 2.5; // of thin ones
       const sign = make("text", {
-        class: "sign",
+        class: lower - upper > 16 ? (shape.solid ? "sign inside" : "sign inside dark") : "sign",
         x: (Math.min(...across) + Math.max(...across)) / 2,
         y: lower - upper > 16 ? (upper + lower) / 2 + 4 : beside,
       });
@@ -113,13 +144,16 @@
     ];
   }
 
-  function height(dimension, y, line) {
+  /* The first at the right edge, others where they are, all with their text at the right. */
+  function height(dimension, x, y, edge, text, place) {
+    const line = place === 1 ? edge : x(dimension.start[0]);
     const ends = [y(dimension.start[1]), y(dimension.end[1])].sort((one, other) => one - other);
     return [
       ...ends.map((at) => make("path", { class: "reach", d: `M${line - 10},${at}H${line + 4}` })),
       make("path", { class: "measure", d: `M${line},${ends[0]}V${ends[1]}` }),
       ...heads(ends, line, false),
-      written(dimension.text, line + 5, (ends[0] + ends[1]) / 2 + 4, "start"),
+      ...(line < edge ? [make("path", { class: "reach", d: `M${line},${text}H${edge + 4}` })] : []),
+      written(dimension.text, edge + 5, text + 4, "start"),
     ];
   }
 

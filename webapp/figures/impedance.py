@@ -59,7 +59,11 @@ def impedance_figure(result: Evaluation, theme: Theme) -> Figure:
     return {
         "data": data,
         "layout": layout(
-            theme, xaxis=x_axis, yaxis=y_axis, yaxis2={**phase_axis, "domain": _LOWER}
+            theme,
+            margin={"l": 78, "r": 36, "t": 10, "b": 48},
+            xaxis=x_axis,
+            yaxis=y_axis,
+            yaxis2={**phase_axis, "domain": _LOWER},
         ),
     }
 

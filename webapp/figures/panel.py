@@ -17,6 +17,8 @@ MICRO = 1e6
 FLATTEST, TALLEST = 0.2, 1.0
 #: Below this the upright axis and the bars have room for few numbers.
 _FLAT = 0.32
+#: An electrode that is so large over the height of the panel has room for its sign.
+_LARGE = 0.12
 #: Shares of the figure that the panel and the bar beside it take.
 PANEL, BAR = (0.0, 0.95), (0.96, 1.0)
 #: Ticks beside a bar: so many slots, the spare ones empty, so that they can move.
@@ -73,7 +75,7 @@ def panel(chip: Layout, theme: Theme, data: list[dict[str, Any]], **more: Any) -
         "data": data,
         "layout": layout(
             theme,
-            margin={"l": 54, "r": 62, "t": 8, "b": 44},
+            margin={"l": 60, "r": 62, "t": 8, "b": 44},
             xaxis=axis(
                 theme,
                 "Along the flow (µm)",
@@ -101,7 +103,6 @@ def _solids(chip: Layout, theme: Theme) -> tuple[list[dict[str, Any]], list[dict
     """Walls tinted, electrodes solid, and the sign of each electrode's phase beside it."""
     shapes, signs = [], []
     drawing = chip.drawing()
-    middle = 0.5 * (drawing.window[2] + drawing.window[3])
     for shape in drawing.shapes:
         corners = [(MICRO * x, MICRO * y) for x, y in shape.outline]
         path = "M" + "L".join(f"{x:.5g},{y:.5g}" for x, y in corners) + "Z"
@@ -116,23 +117,33 @@ def _solids(chip: Layout, theme: Theme) -> tuple[list[dict[str, Any]], list[dict
             }
         )
         if metal:
-            x, y = (0.5 * (min(values) + max(values)) for values in zip(*corners, strict=True))
-            below = y < MICRO * middle
-            signs.append(
-                {
-                    "x": x,
-                    "y": min(corner[1] for corner in corners)
-                    if below
-                    else max(corner[1] for corner in corners),
-                    "text": electrode_sign(shape, drawing),
-                    "showarrow": False,
-                    "yanchor": "top" if below else "bottom",
-                    "font": {"size": 13, "color": theme.text},
-                    "bgcolor": theme.wall,
-                    "borderpad": 0,
-                }
-            )
+            signs.append(_sign(corners, electrode_sign(shape, drawing), drawing.window, theme))
     return shapes, signs
+
+
+def _sign(
+    corners: Sequence[tuple[float, float]],
+    text: str,
+    window: tuple[float, float, float, float],
+    theme: Theme,
+) -> dict[str, Any]:
+    """Sign of an electrode: within a large one, else on its side away from the liquid."""
+    (left, right), (low, high) = ((min(v), max(v)) for v in zip(*corners, strict=True))
+    tall = MICRO * (window[3] - window[2])
+    large = min(high - low, right - left) > _LARGE * tall
+    below = 0.5 * (low + high) < 0.5 * MICRO * (window[2] + window[3])
+    edge, anchor = (low, "top") if below else (high, "bottom")
+    shown = {} if large else {"bgcolor": theme.wall}
+    return {
+        "x": 0.5 * (left + right),
+        "y": 0.5 * (low + high) if large else edge,
+        "text": text,
+        "showarrow": False,
+        "yanchor": "middle" if large else anchor,
+        "font": {"size": 15 if large else 13, "color": theme.paper if large else theme.text},
+        "borderpad": 0,
+        **shown,
+    }
 
 
 def heat_map(
@@ -221,10 +232,9 @@ def broken_line(pieces: Sequence[Real], **more: Any) -> dict[str, Any]:
 
 
 def level(chip: Layout, height: float, theme: Theme) -> list[dict[str, Any]]:
-    """Thin line at the height where the task takes its force; a plan has none."""
-    if chip.view == "plan":
-        return []
+    """Thin line at the level where the task takes its force at a height."""
     left, right = frame(chip).window[:2]
+    place = MICRO * chip.force_level(height)
     line = {"color": theme.text, "width": 1, "dash": "dot"}
     return [
         {
@@ -232,7 +242,7 @@ def level(chip: Layout, height: float, theme: Theme) -> list[dict[str, Any]]:
             "mode": "lines",
             "name": "working height",
             "x": [left, right],
-            "y": [MICRO * height, MICRO * height],
+            "y": [place, place],
             "line": line,
             "opacity": 0.7,
             "hoverinfo": "skip",

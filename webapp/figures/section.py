@@ -31,6 +31,8 @@ from webapp.figures.theme import Figure, Theme, particle_line
 _DECADES, _LEFT_OUT = 3.0, 0.4
 #: Decades of force between a full arrow and none.
 _ARROW_DECADES = 4.0
+#: A field that is so weak beside the strongest is none.
+_NOTHING = 1e-6
 #: From this factor on the growth of the rise by its own warmth is told.
 _NOTABLE = 1.02
 #: Full length of an arrow over the spacing of its grid, and its head over that.
@@ -288,25 +290,30 @@ def _closed(line: Real) -> Real:
 
 
 def default_place(result: Evaluation) -> tuple[float, float]:
-    """The place that is probed before another is chosen: at the first edge of an electrode."""
+    """The place that is probed before another is chosen, on the line where forces are taken.
+
+    At the first edge of an electrode, or in a plan where the force along the flow is largest.
+    """
     chip = result.design.chip
-    metal = next(shape for shape in chip.drawing().shapes if shape.kind == "electrode")
-    corner = max(metal.outline)
+    y = chip.force_level(result.design.task.force_height)
     if chip.view == "plan":
-        return 0.0, 0.0
-    return corner[0], result.design.task.force_height
+        line = result.point.line
+        return abs(float(line.x[int(np.abs(line.gradient[0]).argmax())])), y
+    metal = next(shape for shape in chip.drawing().shapes if shape.kind == "electrode")
+    return max(metal.outline)[0], y
 
 
 def field_sentence(result: Evaluation, maps: SectionMaps) -> str:
     """Say how strong the field is where the task takes its force."""
-    if result.design.chip.view == "plan":
-        low, high = float(np.nanmin(maps.field)), float(np.nanmax(maps.field))
-        return f"In the liquid the field runs from {_volts(low)} to {_volts(high)} rms."
     field = maps.liquid_voltage * np.sqrt((np.abs(result.point.line.field) ** 2).sum(axis=0))
+    low, high = float(field.min()), float(field.max())
+    words = f"from {_volts(low if low > _NOTHING * high else 0.0)} to {_volts(high)} rms"
+    if result.design.chip.view == "plan":
+        return f"Along the dotted line, where forces are taken, the field runs {words}."
     height = format_quantity(result.design.task.force_height, "um", 3)
     return (
-        f"Along the dotted line, {height} up, the field runs from {_volts(float(field.min()))} to "
-        f"{_volts(float(field.max()))} rms; at the edge of an electrode it has no greatest value."
+        f"Along the dotted line, {height} up, the field runs {words}; at the edge of an electrode "
+        "it has no greatest value."
     )
 
 
