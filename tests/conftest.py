@@ -1,6 +1,7 @@
 """What tests share: the demo designs, each chip solved once, and designs made at random."""
 
 import copy
+import dataclasses
 import os
 from pathlib import Path
 
@@ -61,6 +62,22 @@ def patterns(yeast, solved):
 def results(demos, solved):
     """Every demo evaluated."""
     return {name: evaluate(design, solved(design)) for name, design in demos.items()}
+
+
+@pytest.fixture(scope="session")
+def ideal():
+    """Patterns as of electrodes without any interface and walls that carry nothing."""
+
+    def without_interface(patterns):
+        tiny = 1e-20  # λ → 0 with all c²λ as they are: λℓ never counts
+        modes = tuple(
+            dataclasses.replace(one, rates=one.rates * tiny, parts=one.parts / tiny**0.5)
+            for one in patterns.response.components
+        )
+        response = dataclasses.replace(patterns.response, components=modes)
+        return dataclasses.replace(patterns, response=response, wall_factors={})
+
+    return without_interface
 
 
 @pytest.fixture(scope="session")

@@ -21,8 +21,9 @@ from model.arrays import Complex, Real
 from model.fields.assembly import Space
 from model.fields.cells import Index
 from model.fields.electric import Potential
-from model.fields.sides import side_masses, side_values
+from model.fields.sides import side_masses
 from model.fields.stored import Stored
+from model.fields.trace import Trace, side_table, trace
 
 #: Lengths ℓ for which few combined modes are made to agree with all, and how far they reach
 #: beyond the lengths 1/λ of the modes: the sums then agree to some 1e-10 for every ℓ.
@@ -49,6 +50,8 @@ class Modes(Stored):
         On the electrodes, (2, n), m, each electrode's in order.
     electrodes
         Name of the electrode of each place.
+    trace
+        Modes along the electrodes at other places, for integrals and slopes.
     """
 
     rates: Real
@@ -56,6 +59,7 @@ class Modes(Stored):
     shapes: Real
     places: Real
     electrodes: tuple[str, ...]
+    trace: Trace
 
     @property
     def conductance(self) -> float:
@@ -67,24 +71,24 @@ class Modes(Stored):
         """Admittance over Y per metre, m, where the interface blocks: Σ c²."""
         return float(self.parts @ self.parts)
 
-    def answers(self, length: Complex, rows: Index | slice = slice(None)) -> Complex:
+    def answers(self, length: Complex, shapes: Real) -> Complex:
         """Share of the current that the interface leaves, and the voltages across it.
 
         Parameters
         ----------
         length
             ℓ = σ̃/Y, m, any shape (…), with a real part that is not negative.
-        rows
-            Places at which voltages are wanted.
+        shapes
+            Modes where voltages are wanted, (n, m), or their slopes where those are.
 
         Returns
         -------
         Complex
-            Of shape (1 + n, …): current with over current without interface, then V − φ at each
-            place.
+            Of shape (1 + n, …): current with over current without interface, then V − φ, or its
+            slopes.
         """
         carried = self.parts * self.rates
-        weights = np.vstack([self.parts * carried / self.conductance, self.shapes[rows] * carried])
+        weights = np.vstack([self.parts * carried / self.conductance, shapes * carried])
         flat = np.asarray(length, dtype=complex).ravel()
         # 1/(1 + λℓ) in real arithmetic, which is faster: real and imaginary parts side by side
         real, imaginary = self.rates[:, None] * flat.real + 1.0, self.rates[:, None] * flat.imag
@@ -96,11 +100,11 @@ class Modes(Stored):
 
     def share(self, length: Complex) -> Complex:
         """Current with the interface over current without; see :meth:`answers`."""
-        return np.asarray(self.answers(length, slice(0))[0])
+        return np.asarray(self.answers(length, self.shapes[:0])[0])
 
     def drop(self, length: Complex) -> Complex:
         """Voltage across the interface at all places; see :meth:`answers`."""
-        return self.answers(length)[1:]
+        return self.answers(length, self.shapes)[1:]
 
 
 def electrode_modes(
@@ -136,8 +140,10 @@ def electrode_modes(
     rates, vectors = _pairs(potential.factor.schur(kept), mass)
     if not others:  # all electrodes together may float: that mode carries no current
         rates, vectors = rates[1:], vectors[:, 1:]
-    places, names, values = _traces(functions, electrodes, number, kept.size)
-    return Modes(rates, vectors.T @ (mass @ level), values @ vectors, places, names)
+    places, names, values = _ends_and_between(functions, electrodes, number, kept.size)
+    parts = vectors.T @ (mass @ level)
+    along = trace(functions, electrodes, number, kept.size).of(vectors)
+    return Modes(rates, parts, values @ vectors, places, names, along)
 
 
 def combined(modes: Modes, samples: int = SAMPLES) -> Modes:
@@ -162,7 +168,12 @@ def combined(modes: Modes, samples: int = SAMPLES) -> Modes:
     mass, turn = np.linalg.eigh(left.T @ left)
     left = left @ (turn / np.sqrt(mass))
     return Modes(
-        1.0 / mass, left.T @ modes.parts, modes.shapes @ left, modes.places, modes.electrodes
+        1.0 / mass,
+        left.T @ modes.parts,
+        modes.shapes @ left,
+        modes.places,
+        modes.electrodes,
+        modes.trace.of(left),
     )
 
 
@@ -173,17 +184,13 @@ def _pairs(schur: Real, mass: Real) -> tuple[Real, Real]:
     return rates, vectors * scale[:, None]
 
 
-def _traces(
+def _ends_and_between(
     functions: Space, electrodes: Sequence[str], number: Index, size: int
 ) -> tuple[Real, tuple[str, ...], Real]:
     """Places, electrode of each, and values there (n, size) of the functions of the unknowns."""
     places, names, tables = [], [], []
     for name in electrodes:
-        spots, dofs, values = side_values(functions, name, _STEPS)
-        table = np.zeros((*spots.shape[1:], size))
-        for facet, (own, trace) in enumerate(zip(number[dofs.T], values, strict=True)):
-            at = own >= 0
-            table[facet][:, own[at]] = trace[at].T
+        spots, table = side_table(functions, name, (number, size), _STEPS)
         _, first = np.unique(spots.reshape(2, -1).round(15), axis=1, return_index=True)
         places.append(spots.reshape(2, -1)[:, first])
         tables.append(table.reshape(-1, size)[first])

@@ -68,8 +68,29 @@ class ElectrodeResponse(Stored):
         share, drop = self._answers(length, self.peaks)
         return share, np.asarray(np.abs(drop).max(axis=0))
 
+    def slips(self, length: Complex) -> tuple[Real, ...]:
+        """−½ ∂|Δ|²/∂x of the interface voltage Δ along electrodes, at the places of the trace.
+
+        Returns
+        -------
+        tuple of Real
+            In 1/m, (q, …) each. Of two components Δ = Δ₀ + jΔ₁ the first is of |Δ₀|² + |Δ₁|² and
+            the second of what both add together, which has the parity of Δ₀Δ₁ about mirror planes.
+        """
+        drops, slopes = [], []
+        for modes in self.components:
+            trace = modes.trace
+            found = modes.answers(length, np.vstack([trace.values, trace.slopes]))[1:]
+            drops.append(found[: len(trace.values)])
+            slopes.append(found[len(trace.values) :])
+        own = -sum((d.conj() * s).real for d, s in zip(drops, slopes, strict=True))
+        if len(drops) == 1:
+            return (np.asarray(own),)
+        both = (slopes[0].conj() * drops[1] + drops[0].conj() * slopes[1]).imag
+        return np.asarray(own), np.asarray(both)
+
     def _answers(self, length: Complex, rows: Index | slice) -> tuple[Complex, Complex]:
-        first, *second = (modes.answers(length, rows) for modes in self.components)
+        first, *second = (modes.answers(length, modes.shapes[rows]) for modes in self.components)
         if not second:
             return np.asarray(first[0]), first[1:]
         parts = [modes.conductance for modes in self.components]

@@ -18,10 +18,19 @@ _ENDS = {
 _CORNERS = {3: np.array([[0, 2], [1, 1]]), 4: np.array([[0, 3], [1, 2]])}
 
 
+def _gauss() -> tuple[Real, Real]:
+    points, weights = np.polynomial.legendre.leggauss(10)
+    return 0.5 + 0.5 * points, 0.5 * weights
+
+
+#: Points and weights on 0…1, exact for the square of any degree in use.
+GAUSS = _gauss()
+
+
 def side_masses(functions: Space, name: str) -> tuple[Index, Real]:
     """Cells (n,) at a named side, and their matrices (n, n_local, n_local) of ∫ u v along it."""
     cells, sides, lengths = _sides(functions, name)
-    steps, weights = _steps()
+    steps, weights = GAUSS
     traces = _traces(functions, steps)
     reference = traces @ (traces * weights).transpose(0, 2, 1)
     return cells, reference[sides] * lengths[:, None, None]
@@ -32,21 +41,30 @@ def project_on_side(functions: Space, name: str, law: Callable[[Real], Real], ax
 
     `law` takes places (2, n) in m and gives vectors (2, n); `axis` picks the component.
     """
+    cells, sides, _ = _sides(functions, name)
+    places = _places(functions, cells, sides, GAUSS[0])
+    values = np.stack([law(places[:, row])[axis] for row in range(cells.size)])
+    return fit_on_side(functions, name, values)
+
+
+def fit_on_side(functions: Space, name: str, values: Real) -> Real:
+    """Coefficients (n_unknown,) closest to values on a named side, 0 elsewhere.
+
+    `values` (n, n_step) stand at the :data:`GAUSS` points of each facet, as `side_values` has them.
+    """
     cells, sides, lengths = _sides(functions, name)
-    steps, weights = _steps()
-    traces = _traces(functions, steps)
+    traces = _traces(functions, GAUSS[0])
     own = functions.on(name)
     place = np.full(functions.size, -1)
     place[own] = np.arange(own.size)
     system, vector = np.zeros((own.size, own.size)), np.zeros(own.size)
     _, masses = side_masses(functions, name)
-    places = _places(functions, cells, sides, steps)
     for row, (cell, side) in enumerate(zip(cells, sides, strict=True)):
-        values = traces[side] @ (law(places[:, row])[axis] * weights) * lengths[row]
+        parts = traces[side] @ (values[row] * GAUSS[1]) * lengths[row]
         local = place[functions.dofs[:, cell]]
         at = local >= 0
         system[np.ix_(local[at], local[at])] += masses[row][np.ix_(at, at)]
-        vector[local[at]] += values[at]
+        vector[local[at]] += parts[at]
     solution = np.zeros(functions.size)
     solution[own] = np.linalg.solve(system, vector)
     return solution
@@ -95,9 +113,3 @@ def _places(functions: Space, cells: Index, sides: Index, steps: Real) -> Real:
         corners[:, numbers[ends[:, which, 0], ends[:, which, 1]], rows] for which in (0, 1)
     )
     return np.asarray(start[:, :, None] + (end - start)[:, :, None] * steps)
-
-
-def _steps() -> tuple[Real, Real]:
-    """Gauss points and weights on 0…1, exact for the square of any degree in use."""
-    points, weights = np.polynomial.legendre.leggauss(10)
-    return 0.5 + 0.5 * points, 0.5 * weights

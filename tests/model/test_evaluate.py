@@ -1,6 +1,5 @@
 """The operating point and the corridor: against brute force, laws of power and outside values."""
 
-from dataclasses import replace
 from types import SimpleNamespace
 
 import numpy as np
@@ -15,12 +14,6 @@ from model.voltage import PEAK, PEAK_TO_PEAK
 FREQUENCIES = ["20 kHz", "180 kHz", "1 MHz", "7 MHz", "40 MHz"]
 #: Room for the ten digits that a typed voltage keeps.
 NEAR = 1e-7
-#: Electrodes whose interface takes next to none of the voltage: 1000 F/m².
-NO_LAYER = {
-    "electrode.interface": "constant-phase",
-    "electrode.constant_phase_magnitude": 1000,
-    "electrode.constant_phase_exponent": 1.0,
-}
 
 
 def at_voltage(design, patterns, vary, voltage):
@@ -107,11 +100,10 @@ def test_more_flow_never_lowers_the_floor(yeast, patterns, vary):
     assert floors[4] / floors[3] == pytest.approx(3**0.5)  # force grows with V², drag with flow
 
 
-def test_more_conductivity_never_lowers_heating(yeast, patterns, vary):
+def test_more_conductivity_never_lowers_heating(yeast, patterns, vary, ideal):
+    bare = ideal(patterns)
     rises = [
-        evaluate(
-            vary(yeast, {"liquid.conductivity": f"{value} S/m", **NO_LAYER}), patterns
-        ).temperature_rise
+        evaluate(vary(yeast, {"liquid.conductivity": f"{value} S/m"}), bare).temperature_rise
         for value in (1e-5, 1e-3, 0.02, 0.04, 1.0, 10.0)
     ]
     assert np.all(np.diff(rises) > 0.0)
@@ -153,19 +145,16 @@ def test_peak_to_peak_peak_and_rms():
     assert pytest.approx(10.0, rel=1e-15) == 20.0 / PEAK_TO_PEAK * PEAK
 
 
-def test_current_and_power_follow_ohm(demos, solved, vary):
-    """Of chips whose electrodes do not polarise and whose walls carry almost nothing."""
-    for design in demos.values():
-        bare = {f"chip.{wall}.relative_permittivity": 1.0 for wall in ("floor", "lid")}
-        bare |= {f"chip.{wall}.conductivity": "0 S/m" for wall in ("floor", "lid")}
-        chip = vary(design, bare).chip
-        result = evaluate(vary(design, {**NO_LAYER, **bare}), replace(solved(design), chip=chip))
+def test_current_and_power_follow_ohm(results, ideal):
+    for real in results.values():
+        result = evaluate(real.design, ideal(real.patterns))
+        # an interface only takes away, walls only add, both little at such frequencies
+        assert real.load.rms_current == pytest.approx(result.load.rms_current, rel=0.15)
         load, omega = result.load, 2.0 * np.pi * result.design.drive.frequency
         admittance = 1.0 / load.resistance + 1j * omega * load.capacitance
-        # walls of permittivity 1 against water's 80, more of them than of a shallow channel
-        assert load.rms_current == pytest.approx(abs(admittance) * result.rms_voltage, rel=0.04)
+        assert load.rms_current == pytest.approx(abs(admittance) * result.rms_voltage)
         power = result.rms_voltage**2 / load.resistance * result.design.drive.duty
-        assert load.power == pytest.approx(power, rel=1e-5)
+        assert load.power == pytest.approx(power)
         # R C = ε/σ of the liquid, whatever the electrodes
         liquid = result.design.liquid
         relaxation = liquid.state.permittivity / liquid.conductivity
@@ -198,13 +187,11 @@ def test_the_generator_divides_its_voltage_with_a_capacitance():
 
 
 @pytest.mark.parametrize(("load", "share"), DIVIDERS)
-def test_a_chip_of_that_resistance_gets_that_share(yeast, patterns, vary, load, share):
+def test_a_chip_of_that_resistance_gets_that_share(yeast, patterns, vary, ideal, load, share):
     length = patterns.cell_factor * yeast.chip.parallel_length
     # slow enough that the capacitance, whose current is 90° ahead, adds nothing that shows
-    frequency = f"{5e6 / load:.9g} Hz"
-    changes = {"liquid.conductivity": f"{1 / (load * length):.9g} S/m"}
-    changes["drive.frequency"] = frequency
-    result = evaluate(vary(yeast, changes | NO_LAYER), patterns)
+    changes = {"liquid.conductivity": f"{1 / (load * length):.9g} S/m", "drive.frequency": "100 Hz"}
+    result = evaluate(vary(yeast, changes), ideal(patterns))
     assert result.load.resistance == pytest.approx(load, rel=1e-8)
     row = next(row for row in result.ledger if row.rule.id == "generator_voltage")
     assert yeast.drive.voltage / row.value == pytest.approx(share, abs=1e-6)
