@@ -19,6 +19,10 @@ NOTABLE_GROWTH = 0.1
 NOTABLE_LOSS = 0.05
 #: Admittance of the walls over that of the liquid above which they are not negligible.
 NOTABLE_WALLS = 0.1
+#: Electro-osmotic over dielectrophoretic speed that is worth a note.
+NOTABLE_SLIP = 0.1
+#: Peak voltage over the diffuse layer up to which its linear theory is a guide: some kT/e.
+LINEAR_LAYER = 0.1
 
 DEFER = "Local laboratory safety rules and licensed practice come first."
 GENERAL = (
@@ -103,6 +107,16 @@ def _electrical(result: Evaluation) -> Iterator[str]:
             "numbers count that, with the field's pattern as it is without; it really flattens, "
             "so that forces near the edges are overstated and those far from them understated, "
             "either by up to a factor of two."
+        )
+    speed, wanted = result.electro_osmotic_speed, result.dielectrophoretic_speed
+    if speed is not None and speed > NOTABLE_SLIP * wanted:
+        diffuse = float(result.point.circuit.diffuse_voltage.reshape(-1)[0])
+        over = PEAK * result.rms_voltage * diffuse > LINEAR_LAYER
+        yield (
+            f"Electro-osmosis stirs the liquid at {format_si(speed, 'm/s')}, against "
+            f"{format_si(wanted, 'm/s')} of dielectrophoresis"
+            + (", which overstates it: the double layers are past their linear range." * over)
+            + "." * (not over)
         )
     walls = float(result.point.circuit.wall_ratio.reshape(-1)[0])
     if walls > NOTABLE_WALLS:

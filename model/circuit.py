@@ -86,7 +86,7 @@ class Circuit:
         return self._answers[0]
 
     @cached_property
-    def _behind_leads(self) -> Complex:
+    def lead_share(self) -> Complex:
         """Share of the terminals' voltage that reaches the electrodes, 1/(1 + RY)."""
         per_terminal = 2.0 / self.design.chip.terminals
         resistance = self.design.electrode.lead_resistance
@@ -95,7 +95,7 @@ class Circuit:
     @cached_property
     def admittance(self) -> Complex:
         """Of all phases together, S: its real part times V_rms² is the power."""
-        return np.asarray(self._inner * self._behind_leads)
+        return np.asarray(self._inner * self.lead_share)
 
     @cached_property
     def share(self) -> Complex:
@@ -110,12 +110,17 @@ class Circuit:
         0.5 and below the true force there is up to twice the scaled one; a fortieth of the pitch
         above the edges it is half of it.
         """
-        return np.asarray(self._behind_leads * self._behind_interface)
+        return np.asarray(self.lead_share * self._behind_interface)
 
     @cached_property
     def _largest_drop(self) -> Real:
         """Largest amplitude across interface and film per volt between the terminals."""
-        return np.asarray(np.abs(self._behind_leads) * self._answers[1])
+        return np.asarray(np.abs(self.lead_share) * self._answers[1])
+
+    @property
+    def diffuse_voltage(self) -> Real:
+        """Largest amplitude across the diffuse part of the double layer."""
+        return np.asarray(self.double_layer_voltage * self.interface.diffuse_share)
 
     @property
     def double_layer_voltage(self) -> Real:

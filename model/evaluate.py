@@ -242,6 +242,12 @@ class Evaluation:
         return float(self.point.electrothermal_speed[0]) * self.rms_voltage**4
 
     @property
+    def electro_osmotic_speed(self) -> float | None:
+        """Largest electro-osmotic speed at the force height, m/s; None where not modelled."""
+        speed = self.point.electro_osmotic_speed
+        return None if speed is None else float(speed[0]) * self.rms_voltage**2
+
+    @property
     def dielectrophoretic_speed(self) -> float:
         """Largest dielectrophoretic speed there of the slowest particle to be collected, m/s."""
         speeds = [self.point.dielectrophoretic_speed(p)[0] for p in self.design.collected]

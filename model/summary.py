@@ -41,6 +41,7 @@ def check_object(result: Evaluation) -> dict[str, Any]:
         "warm_up_95_s": result.warm_up_time[1],
         **_flow(result.flow_cooling),
         "electrothermal_speed_um_s": result.electrothermal_speed * 1e6,
+        **_electro_osmosis(result.electro_osmotic_speed),
         "dep_speed_um_s": result.dielectrophoretic_speed * 1e6,
         "chip": {
             "liquid_resistance_ohm": load.resistance,
@@ -55,6 +56,11 @@ def check_object(result: Evaluation) -> dict[str, Any]:
         "notes": list(notes(result)),
         "cautions": list(cautions(result)),
     }
+
+
+def _electro_osmosis(speed: float | None) -> dict[str, Any]:
+    shown = math.nan if speed is None else speed * 1e6
+    return _finite("electro_osmotic_speed_um_s", shown, "not modelled in plan")
 
 
 def _particle(result: Evaluation, found: ParticleResult) -> dict[str, Any]:

@@ -43,6 +43,7 @@ def solve_flow(
     mirrors: Mapping[str, int],
     moving: Mapping[str, Callable[[Real], Real]] | None = None,
     *,
+    slips: Sequence[Real] = (),
     friction: float = 0.0,
     crossed: Mapping[str, int] | None = None,
 ) -> list[Real]:
@@ -60,6 +61,9 @@ def solve_flow(
         Named straight mirror planes and the axis (0 for x, 1 for y) they stand across.
     moving
         Velocity of named sides, x (2, n…) ↦ (2, n…), instead of rest.
+    slips
+        Velocities of sides as coefficients (2, n_unknown); each drives a flow of its own, without
+        force, that follows those of the forces.
     friction
         g, 1/m²: 12/h² in the plan of a channel of depth h, where u is the mean over the depth.
     crossed
@@ -69,8 +73,8 @@ def solve_flow(
     Returns
     -------
     list of Real
-        Coefficients of the velocity (2, n_unknown) of each force. Gradients in f change the
-        pressure alone.
+        Coefficients of the velocity (2, n_unknown) of each force and slip. Gradients in f change
+        the pressure alone.
     """
     velocity = pair.velocity
     size = velocity.size
@@ -79,13 +83,15 @@ def solve_flow(
     held = _held(velocity, [*mirrors.items(), *((n, 1 - a) for n, a in (crossed or {}).items())])
     factor = factorise(system, np.concatenate([held[0], size + held[1]]))
     sides = [_side_velocity(velocity, moving or {}, axis) for axis in (0, 1)]
-    rest = np.concatenate([*sides, np.zeros(scale.size)])
-    flows = []
-    for force in forces:
-        pushes = [load(velocity, force[axis]) for axis in (0, 1)]
-        solved = factor.solve(np.concatenate([*pushes, np.zeros(scale.size)]), rest)
-        flows.append(solved[: 2 * size].reshape(2, size))
-    return flows
+    still = np.zeros(scale.size)
+    rest = np.concatenate([*sides, still])
+    jobs = [
+        (np.concatenate([*(load(velocity, force[axis]) for axis in (0, 1)), still]), rest)
+        for force in forces
+    ]
+    jobs += [(np.zeros(rest.size), np.concatenate([*slip, still])) for slip in slips]
+    solved = [factor.solve(*job)[: 2 * size] for job in jobs]
+    return [flow.reshape(2, size) for flow in solved]
 
 
 def _system(pair: FlowSpace, friction: float) -> tuple[CellSystem, Real]:

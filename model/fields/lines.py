@@ -136,6 +136,8 @@ class LineTable(Stored):
         Places of a line, (n,).
     source
         Column of the table of each place, (n,), and `signs` (count, n) its factors.
+    columns
+        Places of the columns, m.
     heights
         ln y of the rows, (m,).
     shapes
@@ -152,6 +154,7 @@ class LineTable(Stored):
     x: Real
     source: np.ndarray
     signs: Real
+    columns: Real
     heights: tuple[float, ...]
     shapes: Real
     levels: Real
@@ -171,14 +174,9 @@ class LineTable(Stored):
         ValueError
             If `y` is outside 0…top.
         """
-        if not 0 <= y <= self.top:
-            raise ValueError(f"the height {y:g} m is outside the liquid, 0 to {self.top:g} m")
-        place = math.log(max(y, self.lowest))
-        row = min(bisect_right(self.heights, place) - 1, len(self.heights) - 2)
-        t = place - self.heights[row]
-        powers = np.array([t * t * t, t * t, t, 1.0])
+        row, powers = self._place(y)
         rows = self.rows
-        values = (powers @ self.shapes[row]).reshape(rows.count, -1).take(self.source, axis=1)
+        values = self.values(self.shapes, y)
         values *= self.signs
         for block, level in zip(
             (rows.field, *rows.forces), (powers @ self.levels[row]).tolist(), strict=True
@@ -189,6 +187,34 @@ class LineTable(Stored):
             warm += (1 - share) * (self.floor.take(self.source) - warm)
             values[rows.temperature + 1 :] *= share
         return Line.of(self.x, values, rows)
+
+    @property
+    def grid(self) -> tuple[Real, Real]:
+        """Place of every entry of the table, x and y, row by row."""
+        heights = np.exp(self.heights)
+        heights[[0, -1]] = self.lowest, self.top
+        return np.tile(self.columns, heights.size), np.repeat(heights, self.columns.size)
+
+    def spline(self, samples: Real) -> Real:
+        """Spline coefficients (m − 1, 4, f·columns) of samples (f, n) on the grid."""
+        rows = samples.reshape(len(samples), len(self.heights), -1).transpose(1, 0, 2)
+        shapes = CubicSpline(self.heights, rows.reshape(len(rows), -1)).c
+        return np.ascontiguousarray(shapes.transpose(1, 0, 2))
+
+    def values(self, shapes: Real, y: float) -> Real:
+        """Values (f, n) of splines at a height, unfolded but for the signs."""
+        row, powers = self._place(y)
+        columns = (powers @ shapes[row]).reshape(-1, self.columns.size)
+        return np.asarray(columns.take(self.source, axis=1))
+
+    def _place(self, y: float) -> tuple[int, Real]:
+        """Row of a height and powers of the way on to the next."""
+        if not 0 <= y <= self.top:
+            raise ValueError(f"the height {y:g} m is outside the liquid, 0 to {self.top:g} m")
+        place = math.log(max(y, self.lowest))
+        row = min(bisect_right(self.heights, place) - 1, len(self.heights) - 2)
+        t = place - self.heights[row]
+        return row, np.array([t * t * t, t * t, t, 1.0])
 
 
 def line_table(
@@ -221,6 +247,7 @@ def line_table(
         unfold[0],
         unfold[1],
         unfold[2],
+        columns,
         tuple(place.tolist()),
         np.ascontiguousarray(shapes.transpose(1, 0, 2)),
         np.ascontiguousarray(CubicSpline(place, levels).c.transpose(1, 0, 2)),

@@ -15,6 +15,7 @@ from model.fields.lines import Line, LineTable
 from model.fields.piecewise import Piecewise
 from model.fields.response import ElectrodeResponse
 from model.fields.section import Fold, Folded, Rest
+from model.fields.slip import SlipFlow
 from model.fields.stored import Stored
 
 #: Lines of a plan that are kept: some particles, some radii tried.
@@ -73,6 +74,9 @@ class ChipPatterns(Stored):
         Second order of the largest rise.
     response
         What an interface on the electrodes changes.
+    slips
+        Flows of the slips that electro-osmosis gives the electrodes; none if an electrode stands
+        otherwise than along x.
     wall_factors
         The same as `cell_factor` for floor and lid, to first order in their admittance; empty if
         they stand outside the section.
@@ -87,6 +91,7 @@ class ChipPatterns(Stored):
     mean_temperature: float
     feedback: Feedback
     response: ElectrodeResponse
+    slips: tuple[SlipFlow, ...]
     wall_factors: Mapping[str, float]
     fold: Fold
     rests: tuple[Rest, ...]
@@ -183,6 +188,21 @@ class ChipPatterns(Stored):
     def electrothermal_travelling(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
         """U₃ of the force (∇Θ·Ê₁)Ê₀ − (∇Θ·Ê₀)Ê₁, which pumps along a travelling wave."""
         return self._flow_pattern(x, y, 2)
+
+    def electro_osmosis(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, ...]:
+        """Flow patterns of each form of slip, (f, 2, …) for each of `slips`, velocity in 1/m.
+
+        The velocity is (ε/η)·share of the diffuse layer·V² times their sum, weighted by
+        `SlipFlow.amounts`. Arguments and errors as :meth:`electric_field`.
+        """
+        spots = _spots(x, y)
+        at = self.fold.place(spots.x, spots.y)
+        found = []
+        for slip in self.slips:
+            flows = slip.flows.values(*_within(slip.flows, at.x, at.y)).reshape(-1, 2, at.x.size)
+            turned = [_turned(spots, at, flow, odd=slip.odd) for flow in flows]
+            found.append(np.array(turned))
+        return tuple(found)
 
     def _flow_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
         spots = _spots(x, y)

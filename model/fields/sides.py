@@ -44,29 +44,31 @@ def project_on_side(functions: Space, name: str, law: Callable[[Real], Real], ax
     cells, sides, _ = _sides(functions, name)
     places = _places(functions, cells, sides, GAUSS[0])
     values = np.stack([law(places[:, row])[axis] for row in range(cells.size)])
-    return fit_on_side(functions, name, values)
+    return np.asarray(fit_on_side(functions, name, values[None])[0])
 
 
-def fit_on_side(functions: Space, name: str, values: Real) -> Real:
-    """Coefficients (n_unknown,) closest to values on a named side, 0 elsewhere.
+def fit_on_side(functions: Space, name: str, values: Real, still: Index | None = None) -> Real:
+    """Coefficients (f, n_unknown) closest to functions on a named side, 0 elsewhere.
 
-    `values` (n, n_step) stand at the :data:`GAUSS` points of each facet, as `side_values` has them.
+    `values` (f, n, n_step) stand at the :data:`GAUSS` points of each facet, in the order of
+    `side_values`. Unknowns among `still` stay 0.
     """
     cells, sides, lengths = _sides(functions, name)
-    traces = _traces(functions, GAUSS[0])
     own = functions.on(name)
+    own = own if still is None else np.setdiff1d(own, still)
     place = np.full(functions.size, -1)
     place[own] = np.arange(own.size)
-    system, vector = np.zeros((own.size, own.size)), np.zeros(own.size)
+    system, right = np.zeros((own.size, own.size)), np.zeros((own.size, len(values)))
     _, masses = side_masses(functions, name)
-    for row, (cell, side) in enumerate(zip(cells, sides, strict=True)):
-        parts = traces[side] @ (values[row] * GAUSS[1]) * lengths[row]
+    traces = _traces(functions, GAUSS[0])[sides] * (lengths[:, None] * GAUSS[1])[:, None]
+    for row, cell in enumerate(cells):
+        parts = traces[row] @ values[:, row].T
         local = place[functions.dofs[:, cell]]
         at = local >= 0
         system[np.ix_(local[at], local[at])] += masses[row][np.ix_(at, at)]
-        vector[local[at]] += parts[at]
-    solution = np.zeros(functions.size)
-    solution[own] = np.linalg.solve(system, vector)
+        right[local[at]] += parts[at]
+    solution = np.zeros((len(values), functions.size))
+    solution[:, own] = np.linalg.solve(system, right).T
     return solution
 
 

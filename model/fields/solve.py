@@ -1,5 +1,6 @@
 """Solves a chip once into its patterns."""
 
+from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -17,6 +18,7 @@ from model.fields.piecewise import Piecewise
 from model.fields.response import ElectrodeResponse
 from model.fields.sampling import sample_lines
 from model.fields.section import Section
+from model.fields.slip import SlipFlow, SlipForms
 from model.fields.wall_energy import wall_energy
 
 if TYPE_CHECKING:
@@ -61,7 +63,9 @@ def solve_chip(
     warmth = heat.solve(square)
     temperature = Piecewise.of(heat.functions, warmth[None], Cells.of(section.mesh))
     pair = FlowSpace.on(mesh, FLOW_DEGREE, ORDER, section.joined)
-    flows = _flows(section, pair, fields, square, heat.slopes(warmth))
+    response = ElectrodeResponse.of(_modes(section, potentials))
+    forms = _forms(section, response)
+    flows, driven = _flows(section, pair, _forces(fields, square, heat.slopes(warmth)), forms)
     cells = Cells.of(mesh)
     patterns = {
         "potential": Piecewise.of(functions, solutions, cells),
@@ -69,6 +73,7 @@ def solve_chip(
         # velocities in 1/m per unit of force: the length makes them plain numbers
         "flows": Piecewise.of(pair.velocity, np.concatenate(flows) * section.length, cells),
     }
+    table = None if section.plan else sample_lines(section, **patterns)
     return ChipPatterns(
         chip=chip,
         thermal_conductivity=thermal_conductivity,
@@ -78,7 +83,14 @@ def solve_chip(
         peak_temperature=float(temperature.highest(heat.liquid)[0]),
         mean_temperature=heat.mean(warmth),
         feedback=solve_feedback(coarse, potentials, fields, heat, temperature, warmth),
-        response=ElectrodeResponse.of(_modes(section, potentials)),
+        response=response,
+        slips=tuple(
+            SlipFlow.of(
+                form, Piecewise.of(pair.velocity, np.concatenate(part), cells), table, odd=kind > 0
+            )
+            for kind, (form, part) in enumerate(zip(forms, driven, strict=True))
+            if table is not None
+        ),
         wall_factors={
             name: section.cells_per_gap * wall_energy(section, potentials, name)
             for name in ("floor", "lid")
@@ -86,7 +98,7 @@ def solve_chip(
         },
         fold=section.fold,
         rests=section.rests,
-        table=None if section.plan else sample_lines(section, **patterns),
+        table=table,
         through=_through(section, pair, cells),
         **patterns,
     )
@@ -100,18 +112,38 @@ def _modes(section: Section, potentials: list[Potential]) -> tuple[Modes, ...]:
     )
 
 
-def _flows(
-    section: Section, pair: FlowSpace, fields: Real, square: Real, slopes: Real
-) -> list[Real]:
-    """U₁, U₂ and, of two components, U₃ per unit of force, from fields and ∇Θ."""
+def _forms(section: Section, response: ElectrodeResponse) -> list[SlipForms]:
+    """Forms of slip of each kind; none in plan, or where an electrode stands up from x."""
+    if section.plan is not None or response.components[0].trace.weights.size == 0:
+        return []
+    return [SlipForms.of(response, kind) for kind in range(len(response.components))]
+
+
+def _forces(fields: Real, square: Real, slopes: Real) -> list[list[Real]]:
+    """Forces of U₁ and U₂ and, of two components, of the odd U₃, from fields and ∇Θ."""
     along = np.einsum("ckq,fckq->fkq", slopes, fields)
-    forces = [np.einsum("fkq,fckq->ckq", along, fields), square * slopes]
-    friction = section.friction
-    flows = solve_flow(pair, forces, section.mirrors, friction=friction)
-    if len(fields) == 2:
-        mixed = along[1] * fields[0] - along[0] * fields[1]
-        flows += solve_flow(pair, [mixed], {}, crossed=section.mirrors, friction=friction)
-    return flows
+    even = [np.einsum("fkq,fckq->ckq", along, fields), square * slopes]
+    if len(fields) == 1:
+        return [even]
+    return [even, [along[1] * fields[0] - along[0] * fields[1]]]
+
+
+def _flows(
+    section: Section, pair: FlowSpace, forces: list[list[Real]], forms: list[SlipForms]
+) -> tuple[list[Real], list[list[Real]]]:
+    """Flows of all forces, and those of the forms of slip of each kind, even and odd."""
+    flows, driven = [], []
+    for kind, own in enumerate(forces):
+        slips: Sequence[Real] = ()
+        if forms:
+            slips = list(forms[kind].velocities(pair.velocity, section.electrodes, section.mirrors))
+        sides, crossed = ({}, section.mirrors) if kind else (section.mirrors, {})
+        found = solve_flow(
+            pair, own, sides, slips=slips, friction=section.friction, crossed=crossed
+        )
+        flows += found[: len(own)]
+        driven.append(found[len(own) :])
+    return flows, driven[: len(forms)]
 
 
 def _through(section: Section, pair: FlowSpace, cells: Cells) -> Piecewise | None:

@@ -11,6 +11,7 @@ import numpy as np
 import pytest
 from scipy.interpolate import CubicSpline
 
+from model.conditions import Conditions
 from model.fields.assembly import space
 from model.fields.electric import solve_potential
 from model.fields.layered import Channel, Span, layered
@@ -87,3 +88,59 @@ def test_numbers_of_the_tube_model():
     peak = 2 * conductivity / (np.pi * x * permittivity / length) / (2 * np.pi)
     assert peak == pytest.approx(384.6, rel=1e-3)
     assert permittivity / (32 * viscosity * x) == pytest.approx(1.2187e-3, rel=1e-3)
+
+
+def wave(k, height, y):
+    """Profile g′ and −kg of a flow g′ sin kx, −kg cos kx that slips by sin kx on the floor.
+
+    Stokes: g is (a + by) times exp(∓ky); at rest on the lid.
+    """
+
+    def parts(at):
+        down, up = np.exp(-k * at), np.exp(-k * (height - at))
+        value = np.array([down, at * down, up, (height - at) * up])
+        slope = np.array([-k * down, (1 - k * at) * down, k * up, (k * (height - at) - 1) * up])
+        return value, slope
+
+    (low, low_slope), (high, high_slope) = parts(0.0), parts(height)
+    factors = np.linalg.solve(np.array([low, high, low_slope, high_slope]), [0, 0, 1, 0])
+    value, slope = parts(y)
+    return factors @ slope, -k * (factors @ value)
+
+
+@pytest.mark.parametrize("length", [-1e-7j, -2e-6j, (3 - 5j) * 1e-6, -1e-4j])
+@pytest.mark.parametrize("height", [5e-6, 13e-6, 50e-6])
+def test_flow_over_bars_against_a_fourier_series(yeast, patterns, length, height):
+    """Slip on bars, rest between them and on the lid: the sum of exact Stokes waves."""
+    response, pitch, top = patterns.response, yeast.chip.pitch, yeast.chip.height
+    trace = response.components[0].trace
+    slip = response.slips(np.array([length]))[0][:, 0]
+    table = patterns.table
+    (found,) = patterns.slips
+    amounts = found.amounts(response, np.array([length]))[:, 0]
+    flow = np.tensordot(amounts, found.line(table, height), axes=1)
+    again = np.tensordot(amounts, patterns.electro_osmosis(table.x, height)[0], axes=1)
+    expected = np.zeros((2, table.x.size))
+    for n in range(1, 160):
+        k = 2 * np.pi * n / pitch
+        part = 4 / pitch * (trace.weights * slip) @ np.sin(k * trace.places[0])
+        along, up = wave(k, top, height)
+        expected += part * np.stack([along * np.sin(k * table.x), up * np.cos(k * table.x)])
+    size = np.abs(expected).max()
+    assert np.abs(flow - expected).max() < 1e-2 * size
+    assert np.abs(again - expected).max() < 1e-2 * size
+
+
+def test_speed_of_a_design_peaks_where_the_layers_charge(yeast, patterns):
+    """Slowly the layers screen the field, fast they have no time to charge."""
+    frequency = np.geomspace(1, 1e8, 161)
+    at = Conditions(yeast, patterns, frequency, np.array(yeast.liquid.conductivity))
+    speed = at.electro_osmotic_speed
+    best = int(speed.argmax())
+    assert speed[0] < 1e-3 * speed[best]
+    assert speed[-1] < 1e-2 * speed[best]
+    assert np.all(np.diff(speed[: best - 1]) > 0)
+    assert np.all(np.diff(speed[best + 1 :]) < 0)
+    share = abs(at.share[best])
+    assert 0.3 < share < 0.95
+    assert np.all(at.largest_slip > speed)

@@ -1,0 +1,128 @@
+"""Flow that a slip along the electrodes drives, as a few flows to be added up."""
+
+from collections.abc import Collection, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from model.arrays import Complex, Real
+from model.fields.assembly import Space
+from model.fields.lines import LineTable
+from model.fields.piecewise import Piecewise
+from model.fields.response import ElectrodeResponse
+from model.fields.sides import GAUSS, fit_on_side
+from model.fields.stored import Stored
+
+#: Forms of slip that are kept, and the weakest one that is, to the strongest.
+FORMS, WEAKEST = 14, 1e-5
+#: Share below which modes and answers do not count for them.
+_ALIVE = 1e-9
+#: Lengths ℓ that the forms are made of, over those of the modes, how many, and their phases.
+_REACH, _SIZES, _PHASES = 30.0, 60, np.pi / 2 * np.array([-1.0, -0.5, 0.0, 0.5, 1.0])
+
+
+@dataclass(frozen=True, eq=False, repr=False)
+class SlipForms(Stored):
+    """A few forms of slip that make up that for any ℓ.
+
+    Parameters
+    ----------
+    slips
+        At the places of the trace, (f, q), 1/m.
+    weights
+        Under which they are orthonormal, (q,), m².
+    """
+
+    slips: Real
+    weights: Real
+
+    @classmethod
+    def of(cls, response: ElectrodeResponse, kind: int) -> "SlipForms":
+        """Forms of one kind (see `slips`): the best few for the slips at many ℓ.
+
+        Slips crowd toward edges as ℓ shrinks. Each is taken with one size, and places weigh by the
+        length of their cell, which grows with the distance from the edge, so that each decade of
+        distance counts alike (singular value decomposition).
+        """
+        rates = np.concatenate([modes.rates for modes in response.components])
+        carried = np.concatenate([modes.parts**2 * modes.rates for modes in response.components])
+        rates = rates[carried > _ALIVE * carried.sum()]
+        sizes = np.geomspace(1.0 / (_REACH * rates.max()), _REACH / rates.min(), _SIZES)
+        slips = response.slips((sizes[:, None] * np.exp(1j * _PHASES)).ravel())[kind]
+        lengths = response.components[0].trace.weights
+        cells = lengths / np.tile(GAUSS[1], lengths.size // GAUSS[1].size)
+        weights = lengths * cells
+        root = np.sqrt(weights)[:, None]
+        level = np.linalg.norm(root * slips, axis=0)
+        used = level > _ALIVE * level.max()  # what two phases add needs a phase between them
+        left, strength, _ = np.linalg.svd(root * slips[:, used] / level[used], full_matrices=False)
+        kept = min(FORMS, int((strength > WEAKEST * strength[0]).sum()))
+        return cls((left[:, :kept] / root).T, weights)
+
+    def amounts(self, slips: Real) -> Real:
+        """How much of each form, (f, …), makes up slips (q, …)."""
+        return np.asarray(np.tensordot(self.slips * self.weights, slips, axes=(1, 0)))
+
+    def velocities(
+        self, velocity: Space, electrodes: Sequence[str], mirrors: Collection[str]
+    ) -> Real:
+        """Coefficients (f, 2, n_unknown) of each slip on the electrodes, at rest elsewhere.
+
+        At an edge, where the slip ends abruptly, they are 0: half a cell beyond it would else be
+        carried along, while nearly all of the slip before it is kept.
+        """
+        mesh = velocity.mesh
+        others = [*electrodes, *mirrors, *(velocity.joined or ())]
+        walls = np.setdiff1d(
+            mesh.boundary_facets(), np.concatenate([mesh.boundaries[name] for name in others])
+        )
+        still = velocity.on_facets(walls.astype(int))
+        found, start = np.zeros((len(self.slips), 2, velocity.size)), 0
+        for name in electrodes:
+            count = mesh.boundaries[name].size
+            stop = start + count * GAUSS[0].size
+            values = self.slips[:, start:stop].reshape(len(self.slips), count, -1)
+            found[:, 0] += fit_on_side(velocity, name, values, still)
+            start = stop
+        return found
+
+
+@dataclass(frozen=True, eq=False, repr=False)
+class SlipFlow(Stored):
+    """Flows of the forms of one kind, velocity in 1/m per form.
+
+    Parameters
+    ----------
+    forms
+        Of the slip.
+    flows
+        Velocities, x and y of each form in turn.
+    shapes
+        The same at the rows and columns of the chip's line table, as :meth:`LineTable.spline`
+        makes them.
+    odd
+        Whether slip and flow are the reverse of their mirror images.
+    """
+
+    forms: SlipForms
+    flows: Piecewise
+    shapes: Real
+    odd: bool
+
+    @classmethod
+    def of(cls, forms: SlipForms, flows: Piecewise, table: LineTable, odd: bool) -> "SlipFlow":
+        """Table the flows along the lines of a chip."""
+        x, y = table.grid
+        samples = flows.values(*flows.cells.locate(np.stack([x, y])))
+        return cls(forms, flows, table.spline(samples), odd)
+
+    def line(self, table: LineTable, y: float) -> Real:
+        """Velocity along the line at a height, (f, 2, n), 1/m per form."""
+        rows = table.rows
+        block = rows.flows[2] if self.odd else rows.flows[0]
+        values = table.values(self.shapes, y)
+        return np.asarray(values.reshape(-1, 2, table.x.size) * table.signs[block])
+
+    def amounts(self, response: ElectrodeResponse, length: Complex) -> Real:
+        """How much of each form there is for ℓ, (f, …), per V²."""
+        return self.forms.amounts(response.slips(length)[1 if self.odd else 0])
