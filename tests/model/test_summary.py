@@ -98,8 +98,8 @@ def test_every_number_is_finite_or_null_with_a_reason(result):
     assert json.loads(json.dumps(data, allow_nan=False)) == data
 
 
-def test_units_of_the_object(yeast, patterns, ideal):
-    result = evaluate(yeast, ideal(patterns))
+def test_units_of_the_object(yeast, patterns):
+    result = evaluate(yeast, patterns)
     data = check_object(result)
     assert data["floor_Vpp"] < yeast.drive.voltage < data["ceiling_Vpp"]
     assert data["chip"]["power_mW"] == pytest.approx(1e3 * result.load.power)
