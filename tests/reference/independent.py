@@ -1,0 +1,250 @@
+"""Chips solved again from their own lengths by NGSolve, a general finite-element library.
+
+Nothing of ``model/fields`` is used: whole periods instead of pieces between mirror planes, graded
+triangles instead of layers of quadrilaterals, walls at their full thickness, another assembly and
+other solvers. What is solved, and how the patterns are scaled, stands in
+:class:`model.fields.patterns.ChipPatterns`. Source of the library: J. Schöberl, *C++11
+implementation of finite elements in NGSolve*, ASC report 30/2014, TU Wien.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import ngsolve as ng
+import numpy as np
+from netgen.geom2d import SplineGeometry
+
+#: Unit of length of the meshes, m.
+UNIT = 1e-6
+#: Share by which the liquid yields to pressure, whose constant would else be left open; the flow
+#: changes by about as much.
+YIELD = 1e-9
+Place = tuple[float, float]
+
+
+@dataclass(frozen=True)
+class Side:
+    """A stretch of boundary along `path`, straight from its first place to its last.
+
+    Three places make the arc of a conic that leaves and arrives along the lines to the middle one:
+    of a circle, if both are as long. `left` and `right` are the materials seen when walking along
+    it, empty outside. `twin` is the number of the side that this one repeats.
+    """
+
+    path: tuple[Place, ...]
+    name: str
+    left: str = ""
+    right: str = ""
+    twin: int | None = None
+
+
+@dataclass(frozen=True)
+class Problem:
+    """A whole period of a chip, lengths in µm.
+
+    Parameters
+    ----------
+    sides
+        All boundaries.
+    singular
+        Places where metal ends, and the shortest length beside each.
+    longest
+        Longest cell of each material.
+    potentials
+        Of the electrodes, V per volt between opposite phases.
+    conductors
+        Thermal conductivity of each material over that of the liquid.
+    outsides
+        Heat-transfer coefficient of each side over the liquid's thermal conductivity, 1/µm; None
+        holds it at 0.
+    start, period
+        Where the piece begins along x, and its length.
+    length
+        What scales the flow patterns: the pitch.
+    shares
+        How many gaps or pitches of the chip's cell factor it holds.
+    """
+
+    sides: tuple[Side, ...]
+    singular: Mapping[Place, float]
+    longest: Mapping[str, float]
+    potentials: Mapping[str, float]
+    conductors: Mapping[str, float]
+    outsides: Mapping[str, float | None]
+    start: float
+    period: float
+    length: float
+    shares: int
+
+
+@dataclass(frozen=True)
+class Fineness:
+    """Layers of cells toward each singular place, and degree of the polynomials."""
+
+    layers: int
+    degree: int
+
+
+COARSE = Fineness(5, 7)
+FINE = Fineness(7, 8)
+#: Cell at a singular place before the layers, over the shortest length beside it; size of one
+#: layer over that of the layer around it; growth of the cells away from there.
+CELL, SHRINKING, GRADING = 0.04, 0.2, 0.25
+
+
+def mesh_of(problem: Problem, fineness: Fineness) -> ng.Mesh:
+    """Triangles, curved where the boundary is, in layers about the singular places."""
+    geometry = SplineGeometry()
+    materials = list(problem.longest)
+    numbers = {name: number for number, name in enumerate(("", *materials))}
+    points: dict[Place, int] = {}
+
+    def point(place: Place) -> int:
+        if place not in points:
+            size = problem.singular.get(place)
+            marks = {} if size is None else {"maxh": CELL * size, "hpref": 1}
+            points[place] = geometry.AppendPoint(*place, **marks)
+        return points[place]
+
+    for side in problem.sides:
+        kind = {2: "line", 3: "spline3"}[len(side.path)]
+        twin = {} if side.twin is None else {"copy": side.twin}
+        geometry.Append(
+            [kind, *(point(place) for place in side.path)],
+            bc=side.name,
+            leftdomain=numbers[side.left],
+            rightdomain=numbers[side.right],
+            **twin,
+        )
+    for name in materials:
+        geometry.SetMaterial(numbers[name], name)
+        geometry.SetDomainMaxH(numbers[name], problem.longest[name])
+    mesh = ng.Mesh(geometry.GenerateMesh(maxh=max(problem.longest.values()), grading=GRADING))
+    mesh.RefineHP(fineness.layers, SHRINKING)
+    if any(len(side.path) == 3 for side in problem.sides):
+        mesh.Curve(fineness.degree)
+    return mesh
+
+
+class Solution:
+    """The three solves of a problem; places in m, patterns as `ChipPatterns` gives them."""
+
+    def __init__(self, problem: Problem, fineness: Fineness) -> None:
+        self.problem, self.degree = problem, fineness.degree
+        self.mesh = mesh_of(problem, fineness)
+        self._potential = self._solve_potential()
+        slope = ng.grad(self._potential)
+        self._heat = self._solve_heat(slope * slope)
+        warm = ng.grad(self._heat)
+        self._flows = self._solve_flows([(warm * slope) * slope, (slope * slope) * warm])
+
+    @property
+    def cell_factor(self) -> float:
+        """Energy of one gap or pitch, 2·½∫|∇φ|² for 1 V."""
+        slope = ng.grad(self._potential)
+        energy = ng.Integrate(slope * slope, self.mesh, order=2 * self.degree)
+        return energy / self.problem.shares
+
+    def field(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """Ê, (2, n), 1/m."""
+        return -self._at(ng.grad(self._potential), x, y) / UNIT
+
+    def gradient_e2(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """∇|Ê|², (2, n), 1/m³."""
+        slope = self._at(ng.grad(self._potential), x, y)
+        curvature = self._at(self._potential.Operator("hesse"), x, y).reshape(2, 2, -1)
+        return 2 * np.einsum("ijn,jn->in", curvature, slope) / UNIT**3
+
+    def temperature(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """Θ, (1, n)."""
+        return self._at(self._heat, x, y)
+
+    def flow(self, which: int, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """U₁ or U₂, (2, n)."""
+        return self._at(self._flows[which], x, y) * self.problem.length
+
+    def _at(self, function: ng.CoefficientFunction, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        start, period = self.problem.start, self.problem.period
+        place = start + (x / UNIT - start) % period
+        return np.array(function(self.mesh(place, y / UNIT))).reshape(len(x), -1).T
+
+    def _solve_potential(self) -> ng.GridFunction:
+        metal = "|".join(self.problem.potentials)
+        space = ng.Periodic(
+            ng.H1(self.mesh, order=self.degree, definedon="liquid", dirichlet=metal)
+        )
+        held = ng.GridFunction(space)
+        levels = self.mesh.BoundaryCF(dict(self.problem.potentials))
+        held.Set(levels, definedon=self.mesh.Boundaries(metal))
+        u, v = space.TnT()
+        form = ng.BilinearForm(ng.grad(u) * ng.grad(v) * ng.dx("liquid"), condense=True)
+        return _solved(form, [ng.LinearForm(space)], held)[0]
+
+    def _solve_heat(self, density: ng.CoefficientFunction) -> ng.GridFunction:
+        """−∇·(k/k_liquid·∇Θ) = |Ê|² in the liquid, films outside."""
+        outsides = self.problem.outsides
+        held = "|".join(name for name, film in outsides.items() if film is None)
+        space = ng.Periodic(ng.H1(self.mesh, order=self.degree, dirichlet=held))
+        u, v = space.TnT()
+        conductor = self.mesh.MaterialCF(dict(self.problem.conductors))
+        form = ng.BilinearForm(conductor * ng.grad(u) * ng.grad(v) * ng.dx, condense=True)
+        for name, film in outsides.items():
+            if film:
+                form += film * u * v * ng.ds(name)
+        load = ng.LinearForm(density * v * ng.dx("liquid", bonus_intorder=self.degree))
+        return _solved(form, [load])[0]
+
+    def _solve_flows(self, forces: list[ng.CoefficientFunction]) -> list[ng.GridFunction]:
+        """−∇²w + ∇p = f, ∇·w = 0, at rest on all walls; Taylor–Hood elements."""
+        degree, where = self.degree, {"definedon": "liquid"}
+        velocity = ng.VectorH1(self.mesh, order=degree, dirichlet=self._walls, **where)
+        pressure = ng.H1(self.mesh, order=degree - 1, **where)
+        space = ng.Periodic(velocity) * ng.Periodic(pressure)
+        (u, p), (v, q) = space.TnT()
+        viscous = ng.InnerProduct(ng.Grad(u), ng.Grad(v))
+        sources = ng.div(u) * q + ng.div(v) * p + YIELD * p * q
+        form = ng.BilinearForm((viscous - sources) * ng.dx("liquid"), condense=True)
+        loads = [
+            ng.LinearForm(force * v * ng.dx("liquid", bonus_intorder=2 * degree))
+            for force in forces
+        ]
+        return [found.components[0] for found in _solved(form, loads)]
+
+    @property
+    def _walls(self) -> str:
+        """Sides of the liquid but for those that repeat one another."""
+        sides = self.problem.sides
+        repeating = {side.twin for side in sides}
+        return "|".join(
+            {
+                side.name
+                for number, side in enumerate(sides)
+                if "liquid" in (side.left, side.right)
+                and side.twin is None
+                and number not in repeating
+            }
+        )
+
+
+def _solved(
+    form: ng.BilinearForm,
+    loads: list[ng.LinearForm],
+    held: ng.GridFunction | None = None,
+) -> list[ng.GridFunction]:
+    """Solution for each load, with the boundary values that `held` has."""
+    form.Assemble()
+    space = form.space
+    inverse = form.mat.Inverse(space.FreeDofs(coupling=True), inverse="sparsecholesky")
+    solutions = []
+    for load in loads:
+        solution = ng.GridFunction(space)
+        if held is not None:
+            solution.vec.data = held.vec
+        rest = load.Assemble().vec
+        rest.data += form.harmonic_extension_trans * rest
+        rest.data -= form.mat * solution.vec
+        solution.vec.data += inverse * rest
+        solution.vec.data += form.harmonic_extension * solution.vec
+        solution.vec.data += form.inner_solve * load.vec
+        solutions.append(solution)
+    return solutions
