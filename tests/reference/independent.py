@@ -9,6 +9,8 @@ implementation of finite elements in NGSolve*, ASC report 30/2014, TU Wien.
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import reduce
+from operator import add
 
 import ngsolve as ng
 import numpy as np
@@ -51,7 +53,7 @@ class Problem:
     longest
         Longest cell of each material.
     potentials
-        Of the electrodes, V per volt between opposite phases.
+        Phasors of the electrodes, V per volt between opposite phases.
     conductors
         Thermal conductivity of each material over that of the liquid.
     outsides
@@ -68,7 +70,7 @@ class Problem:
     sides: tuple[Side, ...]
     singular: Mapping[Place, float]
     longest: Mapping[str, float]
-    potentials: Mapping[str, float]
+    potentials: Mapping[str, complex]
     conductors: Mapping[str, float]
     outsides: Mapping[str, float | None]
     start: float
@@ -127,55 +129,84 @@ def mesh_of(problem: Problem, fineness: Fineness) -> ng.Mesh:
 
 
 class Solution:
-    """The three solves of a problem; places in m, patterns as `ChipPatterns` gives them."""
+    """The three solves of a problem; places in m, patterns named as those of `ChipPatterns`."""
 
     def __init__(self, problem: Problem, fineness: Fineness) -> None:
         self.problem, self.degree = problem, fineness.degree
         self.mesh = mesh_of(problem, fineness)
-        self._potential = self._solve_potential()
-        slope = ng.grad(self._potential)
-        self._heat = self._solve_heat(slope * slope)
-        warm = ng.grad(self._heat)
-        self._flows = self._solve_flows([(warm * slope) * slope, (slope * slope) * warm])
+        phasors = problem.potentials
+        components = [{name: phasor.real for name, phasor in phasors.items()}]
+        if any(phasor.imag for phasor in phasors.values()):
+            components.append({name: phasor.imag for name, phasor in phasors.items()})
+        self._potentials = [self._solve_potential(levels) for levels in components]
+        fields = [-ng.grad(potential) for potential in self._potentials]
+        self._square = reduce(add, [field * field for field in fields])
+        self._heat = self._solve_heat(self._square)
+        rise = ng.grad(self._heat)
+        forces = [reduce(add, [(rise * field) * field for field in fields]), self._square * rise]
+        if len(fields) == 2:
+            forces.append((rise * fields[1]) * fields[0] - (rise * fields[0]) * fields[1])
+        self._flows = self._solve_flows(forces)
+
+    @property
+    def components(self) -> int:
+        """Components of the drive: one, or two if its phases are not all opposite."""
+        return len(self._potentials)
 
     @property
     def cell_factor(self) -> float:
-        """Energy of one gap or pitch, 2·½∫|∇φ|² for 1 V."""
-        slope = ng.grad(self._potential)
-        energy = ng.Integrate(slope * slope, self.mesh, order=2 * self.degree)
-        return energy / self.problem.shares
+        """∫|Ê|² of one gap or pitch."""
+        return ng.Integrate(self._square, self.mesh, order=2 * self.degree) / self.problem.shares
 
-    def field(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
-        """Ê, (2, n), 1/m."""
-        return -self._at(ng.grad(self._potential), x, y) / UNIT
+    def electric_field(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """Ê, (2, …), 1/m; complex of two components."""
+        parts = [-self._at(ng.grad(part), x, y) / UNIT for part in self._potentials]
+        return parts[0] if len(parts) == 1 else parts[0] + 1j * parts[1]
 
     def gradient_e2(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
-        """∇|Ê|², (2, n), 1/m³."""
-        slope = self._at(ng.grad(self._potential), x, y)
-        curvature = self._at(self._potential.Operator("hesse"), x, y).reshape(2, 2, -1)
-        return 2 * np.einsum("ijn,jn->in", curvature, slope) / UNIT**3
+        """∇|Ê|² = 2 Re (Ê*·∂ᵢÊ), (2, …), 1/m³."""
+        field, rise = self.electric_field(x, y), self._rise(x, y)
+        return 2 * np.einsum("i...,ij...->j...", field.conj(), rise).real
+
+    def travelling(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """2(Ê₀·∂ᵢÊ₁ − Ê₁·∂ᵢÊ₀) = 2 Im (Ê*·∂ᵢÊ), (2, …), 1/m³."""
+        field, rise = self.electric_field(x, y), self._rise(x, y)
+        return 2 * np.einsum("i...,ij...->j...", field.conj(), rise).imag
 
     def temperature(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
-        """Θ, (1, n)."""
-        return self._at(self._heat, x, y)
+        """Θ, the shape of the places."""
+        return self._at(self._heat, x, y)[0]
 
-    def flow(self, which: int, x: np.ndarray, y: np.ndarray) -> np.ndarray:
-        """U₁ or U₂, (2, n)."""
-        return self._at(self._flows[which], x, y) * self.problem.length
+    def electrothermal(self, x: np.ndarray, y: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        """U₁ and U₂, each (2, …)."""
+        first, second = (self._at(flow, x, y) * self.problem.length for flow in self._flows[:2])
+        return first, second
+
+    def electrothermal_travelling(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """U₃, (2, …)."""
+        return self._at(self._flows[2], x, y) * self.problem.length
+
+    def _rise(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """∂Êᵢ/∂xⱼ, (2, 2, …), 1/m²."""
+        parts = [-self._at(part.Operator("hesse"), x, y) / UNIT**2 for part in self._potentials]
+        whole = parts[0] if len(parts) == 1 else parts[0] + 1j * parts[1]
+        return whole.reshape(2, 2, *np.shape(x))
 
     def _at(self, function: ng.CoefficientFunction, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """Values at places of one shape, components first."""
         start, period = self.problem.start, self.problem.period
-        place = start + (x / UNIT - start) % period
-        return np.array(function(self.mesh(place, y / UNIT))).reshape(len(x), -1).T
+        place = start + (np.ravel(x) / UNIT - start) % period
+        values = np.array(function(self.mesh(place, np.ravel(y) / UNIT)))
+        return values.reshape(np.size(x), -1).T.reshape(-1, *np.shape(x))
 
-    def _solve_potential(self) -> ng.GridFunction:
-        metal = "|".join(self.problem.potentials)
+    def _solve_potential(self, levels: Mapping[str, float]) -> ng.GridFunction:
+        """∇²φ = 0 in the liquid, φ held on the electrodes."""
+        metal = "|".join(levels)
         space = ng.Periodic(
             ng.H1(self.mesh, order=self.degree, definedon="liquid", dirichlet=metal)
         )
         held = ng.GridFunction(space)
-        levels = self.mesh.BoundaryCF(dict(self.problem.potentials))
-        held.Set(levels, definedon=self.mesh.Boundaries(metal))
+        held.Set(self.mesh.BoundaryCF(dict(levels)), definedon=self.mesh.Boundaries(metal))
         u, v = space.TnT()
         form = ng.BilinearForm(ng.grad(u) * ng.grad(v) * ng.dx("liquid"), condense=True)
         return _solved(form, [ng.LinearForm(space)], held)[0]

@@ -1,5 +1,6 @@
 """Whole periods of every layout for the independent solves, from the layouts' own lengths."""
 
+import cmath
 from collections.abc import Callable, Mapping, Sequence
 from itertools import pairwise
 
@@ -33,7 +34,7 @@ def _flat(
     chip: Layout,
     period: float,
     faces: tuple[Sequence[Span], Sequence[Span]],
-    potentials: Mapping[str, float],
+    potentials: Mapping[str, complex],
     conductivity: float,
 ) -> Problem:
     """Floor, liquid and lid over one period, with metal on both faces."""
@@ -122,9 +123,20 @@ def bars_under_plate(chip: Layout, conductivity: float) -> Problem:
     return _flat(chip, pitch, faces, {"plus": 0.5, "minus": -0.5}, conductivity)
 
 
+def four_phase_bars(chip: Layout, conductivity: float) -> Problem:
+    """Four or three bars; voltages that lag along the wave, phasors exp(+jωt)."""
+    pitch, phases = (chip.bar_width + chip.gap) / UNIT, {"four": 4, "three": 3}[chip.phases]
+    lag = {"with-flow": -2j, "against-flow": 2j}[chip.wave] * cmath.pi / phases
+    names = [f"phase-{number}" for number in range(phases)]
+    bars = [_bar(name, number * pitch, chip) for number, name in enumerate(names)]
+    levels = {name: 0.5 * cmath.exp(lag * number) for number, name in enumerate(names)}
+    return _flat(chip, phases * pitch, (bars, ()), levels, conductivity)
+
+
 #: The whole period of a chip of each layout, in a liquid of a thermal conductivity in W/(m K).
 PROBLEMS: dict[str, Callable[[Layout, float], Problem]] = {
     "bars-under-plate": bars_under_plate,
     "coplanar-bars": coplanar_bars,
     "facing-bars": facing_bars,
+    "four-phase-bars": four_phase_bars,
 }
