@@ -81,7 +81,7 @@ class Problem:
 
 @dataclass(frozen=True)
 class Fineness:
-    """Layers of cells toward each singular place, and degree of the polynomials."""
+    """Layers of cells toward each singular place, and degree of φ and Θ; of flows it is less."""
 
     layers: int
     degree: int
@@ -227,7 +227,7 @@ class Solution:
 
     def _solve_flows(self, forces: list[ng.CoefficientFunction]) -> list[ng.GridFunction]:
         """−∇²w + ∇p = f, ∇·w = 0, at rest on all walls; Taylor–Hood elements."""
-        degree, where = self.degree, {"definedon": "liquid"}
+        degree, where = self.degree - 1, {"definedon": "liquid"}
         velocity = ng.VectorH1(self.mesh, order=degree, dirichlet=self._walls, **where)
         pressure = ng.H1(self.mesh, order=degree - 1, **where)
         space = ng.Periodic(velocity) * ng.Periodic(pressure)
