@@ -8,8 +8,9 @@ from pathlib import Path
 import pytest
 from hypothesis import settings
 from hypothesis import strategies as st
+from pydantic import ValidationError
 
-from model.declare import Choice, Count, Flag, Quantity, Text, declarations
+from model.declare import FROM_PERSON, Choice, Count, Flag, Quantity, Text, declarations
 from model.design import Design, Drive, Flow
 from model.evaluate import evaluate
 from model.fields.solve import solve_chip
@@ -135,18 +136,30 @@ def table_of(part, **fixed):
     return st.fixed_dictionaries({**needed, **given}, optional=spare)
 
 
+def random_chips(name):
+    """Strategy of tables of one layout; what does not fit together is drawn again."""
+    layout = LAYOUTS[name]
+    wall = layout.model_fields["floor"].annotation
+    walls = st.fixed_dictionaries({"floor": table_of(wall, outside="held"), "lid": table_of(wall)})
+    tables = st.builds(lambda own, both: {"layout": name, **own, **both}, table_of(layout), walls)
+    return tables.filter(lambda table: chip_of(table) is not None)
+
+
+def chip_of(table):
+    """Chip of a table as a profile has it; None if its lengths do not fit together."""
+    try:
+        return LAYOUTS[table["layout"]].model_validate(table, context=FROM_PERSON)
+    except ValidationError:
+        return None
+
+
 @st.composite
 def random_designs(draw):
-    wall = LAYOUTS["coplanar-bars"].model_fields["floor"].annotation
-    chip = draw(table_of(LAYOUTS["coplanar-bars"], channel_height="200 um"))
-    chip |= {"layout": "coplanar-bars", "floor": draw(table_of(wall, outside="held"))}
-    chip["lid"] = draw(table_of(wall))
-    if chip["lid"]["outside"] == "transfer":
-        chip["lid"].setdefault("heat_transfer_coefficient", "300 W/m^2/K")
+    chip = draw(st.sampled_from(sorted(LAYOUTS)).flatmap(random_chips))
+    height = chip_of(chip).height
     count = draw(st.integers(1, 12))
-    particles = [draw(random_particle(f"{index} ")) for index in range(count)]
+    particles = [draw(random_particle(f"{index} ", 0.25 * height)) for index in range(count)]
     particles[0]["role"] = "collect"
-    height = draw(st.floats(60e-6, 140e-6))
     return parse_design(
         {
             "schema": 1,
@@ -155,7 +168,7 @@ def random_designs(draw):
             "task": {
                 "kind": "hold",
                 "dielectrophoresis": draw(st.sampled_from(["positive", "negative"])),
-                "working_height": plain_text(height, "um"),
+                "working_height": plain_text(height * draw(st.floats(0.3, 0.7)), "um"),
             },
             "chip": chip,
             "liquid": draw(table_of(Liquid)),
@@ -177,14 +190,15 @@ def material():
 
 
 @st.composite
-def random_particle(draw, prefix):
+def random_particle(draw, prefix, largest):
+    """A particle whose radius is at most `largest`, m, and its layers no thicker."""
     kind = draw(st.sampled_from(["solid-sphere", "shelled-sphere"]))
-    radius = plain_text(draw(st.floats(5e-6, 50e-6)), "um")
-    table = draw(table_of(PARTICLES[kind], radius=radius))
+    radius = min(50e-6, largest) * draw(st.floats(0.2, 1.0))
+    table = draw(table_of(PARTICLES[kind], radius=plain_text(radius, "um")))
     table |= {"kind": kind, "name": prefix + draw(LINE)}
     if kind == "shelled-sphere":
-        layers = st.builds(lambda found, nm: {**found, "thickness": f"{nm} nm"}, material(),
-                           st.integers(1, 1000))  # fmt: skip
+        layers = st.builds(lambda found, thick: {**found, "thickness": plain_text(thick, "nm")},
+                           material(), st.floats(1e-3 * radius, 0.2 * radius))  # fmt: skip
         membranes = st.just({"capacitance": "10 mF/m^2", "conductance": "0 S/m^2"})
         table |= {
             "core": draw(material()),
