@@ -273,8 +273,11 @@ def check_flow(case):
     assert np.abs(patterns.electrothermal(*spots)).max() < 1e-9 * fastest
 
 
-def check_net_flow(case):
-    """The same liquid passes every x, and none where mirror planes forbid it."""
+def check_net_flow(case, uneven=1e-3):
+    """The same liquid passes every x, and none where mirror planes forbid it.
+
+    `uneven` is what sections may differ by, as a share of all that moves in any of them.
+    """
     patterns, section = case.patterns, case.section
     heights = np.linspace(0, patterns.height, 801)
     for which in (0, 1):
@@ -283,9 +286,9 @@ def check_net_flow(case):
             for x in np.array([0.06, 0.19, 0.33, 0.58, 0.84]) * patterns.period
         ]
         through = np.trapezoid(speeds, heights, axis=1)
-        assert np.ptp(through) < 1e-3 * np.trapezoid(np.abs(speeds), heights, axis=1).max()
+        assert np.ptp(through) < uneven * np.trapezoid(np.abs(speeds), heights, axis=1).max()
         if section.fold.mirrored:
-            assert np.abs(through).max() < 1e-3 * np.trapezoid(np.abs(speeds), heights).max()
+            assert np.abs(through).max() < uneven * np.trapezoid(np.abs(speeds), heights).max()
 
 
 def check_lines(case):
