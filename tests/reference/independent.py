@@ -88,7 +88,7 @@ class Fineness:
 
 
 COARSE = Fineness(5, 7)
-FINE = Fineness(7, 8)
+FINE = Fineness(11, 8)
 #: Cell at a singular place before the layers, over the shortest length beside it; size of one
 #: layer over that of the layer around it; growth of the cells away from there.
 CELL, SHRINKING, GRADING = 0.04, 0.2, 0.25

@@ -6,11 +6,16 @@ with its mesh. A row is a line along x at one y; differences are shares of the l
 """
 
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 import pytest
 
-from model.fields.solve import WATER, solve_chip
+from model.fields.assembly import space
+from model.fields.cells import Cells
+from model.fields.electric import solve_potential
+from model.fields.piecewise import Piecewise
+from model.fields.solve import FIELD_DEGREE, WATER, solve_chip
 from model.layouts import LAYOUTS
 from model.walls import Wall
 from tests.model.test_layouts import EXAMPLES
@@ -39,6 +44,12 @@ CHIPS = [
     pytest.param(name, arguments, id=f"{name} {number}")
     for name in LAYOUTS
     for number, arguments in enumerate(EXAMPLES[name])
+]
+#: Chips whose pieces have at most 900 cells: the finer mesh of a larger one takes a minute.
+SMALL = [
+    item
+    for item in CHIPS
+    if LAYOUTS[item.values[0]](**item.values[1]).section().mesh.nelements <= 900
 ]
 CHIPS.append(pytest.param("facing-bars", EXAMPLES["facing-bars"][-1] | THICK, id="thick walls"))
 
@@ -98,12 +109,16 @@ def test_every_layout_is_solved_independently(name):
     assert name in PROBLEMS, f"add a whole period of the layout {name} to PROBLEMS"
 
 
+@cache
+def converged_solution(chip):
+    return Solution(PROBLEMS[chip.layout](chip, WATER), FINE)
+
+
 @pytest.mark.parametrize(("name", "arguments"), CHIPS)
 def test_independent_solver(name, arguments, request, record_property):
     chip = LAYOUTS[name](**arguments)
-    patterns = solve_chip(chip)
-    problem = PROBLEMS[name](chip, WATER)
-    coarse, fine = Solution(problem, COARSE), Solution(problem, FINE)
+    patterns, fine = solve_chip(chip), converged_solution(chip)
+    coarse = Solution(fine.problem, COARSE)
     spots = places(chip, patterns)
     one, other, reference = (
         patterns_of(solved, spots, fine.components) for solved in (patterns, coarse, fine)
@@ -123,3 +138,54 @@ def test_independent_solver(name, arguments, request, record_property):
     )
     highest = fine.temperature(x.ravel(), y.ravel()).max()  # or a little more, between those
     assert highest * (1 - 1e-4) < patterns.peak_temperature < highest * (1 + 1e-3)
+
+
+def solved_potentials(chip, refinement, x, y):
+    """Cell factor, and Ê at places (n,) within the piece that is solved, of all components."""
+    section = chip.section(refinement)
+    functions = space(section.liquid(), FIELD_DEGREE, 2 * FIELD_DEGREE, section.joined)
+    found = [solve_potential(functions, levels) for levels in section.potentials]
+    solutions = np.stack([potential.solution for potential in found])
+    piece = Piecewise.of(functions, solutions, Cells.of(functions.mesh))
+    field = -piece.slopes(*piece.cells.locate(np.stack([x, y])))
+    energy = sum(potential.energy for potential in found)
+    return section.cells_per_gap * energy, field[0] if len(found) == 1 else field[0] + 1j * field[1]
+
+
+@pytest.mark.parametrize(("name", "arguments"), CHIPS)
+def test_refining_halves_the_errors_of_cell_factor_and_field(name, arguments, request):
+    """Both are ruled by the cell at an edge, about which |E| is infinite as 1/√r."""
+    chip = LAYOUTS[name](**arguments)
+    fine = converged_solution(chip)
+    corners = chip.section().liquid().p
+    low, high = corners.min(axis=1), corners.max(axis=1)
+    rng = np.random.default_rng(4)
+    x, y = low[:, None] + (high - low)[:, None] * rng.uniform(0.1, 0.9, (2, 60))
+    errors = []
+    for refinement in (0, 1):
+        factor, field = solved_potentials(chip, refinement, x, y)
+        miss = np.linalg.norm(field - fine.electric_field(x, y))
+        errors.append([factor / fine.cell_factor - 1, miss])
+    ratio = np.divide(errors[0], errors[1])
+    print(f"\n{request.node.callspec.id:28} errors fall by {ratio[0]:.3f} and {ratio[1]:.3f}")
+    assert np.all((ratio > 1.8) & (ratio < 2.3))
+
+
+@pytest.mark.parametrize(("name", "arguments"), SMALL)
+def test_refining_lowers_the_errors_of_heat_and_flow(name, arguments, request):
+    """By the order of their elements, where the source is smooth; by less at the edges."""
+    chip = LAYOUTS[name](**arguments)
+    fine = converged_solution(chip)
+    coarse, refined = (solve_chip(chip, refinement=level) for level in (0, 1))
+    spots = places(chip, coarse)
+    reference = patterns_of(fine, spots, fine.components)
+    before, after = (
+        differences(patterns_of(solved, spots, fine.components), reference)
+        for solved in (coarse, refined)
+    )
+    ratio = {pattern: before[pattern] / after[pattern] for pattern in before}
+    print(f"\n{request.node.callspec.id:28} errors fall by")
+    for pattern, factor in ratio.items():
+        if pattern.startswith(("heat", "flow")):
+            print(f"  {pattern:26} {factor:5.1f}")
+            assert factor > (6.0 if pattern.startswith("flow") else 3.0), pattern
