@@ -9,6 +9,7 @@ import pytest
 from hypothesis import settings
 from hypothesis import strategies as st
 from pydantic import ValidationError
+from threadpoolctl import threadpool_limits
 
 from model.declare import FROM_PERSON, Choice, Count, Flag, Quantity, Text, declarations
 from model.design import Design, Drive, Flow
@@ -27,6 +28,13 @@ settings.register_profile("search", max_examples=300)
 settings.load_profile(os.environ.get("HYPOTHESIS_PROFILE", "steady"))
 
 PROFILES = Path(__file__).resolve().parent.parent / "demo_profiles"
+
+
+@pytest.fixture(scope="session", autouse=True)
+def _one_thread():
+    """Solves run on one thread, as in the program: two hinder each other on a busy machine."""
+    with threadpool_limits(1, "blas"):
+        yield
 
 
 @pytest.fixture(scope="session")

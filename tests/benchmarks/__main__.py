@@ -1,7 +1,8 @@
 """``python -m tests.benchmarks`` prints every benchmark."""
 
-from tests.benchmarks import browser_speed, model_speed
+from tests.benchmarks import browser_speed, layouts, model_speed
 
 if __name__ == "__main__":
     model_speed.main()
+    layouts.main()
     browser_speed.main()

@@ -40,18 +40,18 @@ THICK = {
     "floor": Wall(material="glass", thickness=700e-6, outside="held"),
     "lid": Wall(material="pdms", thickness=4e-3, outside="still-air"),
 }
-CHIPS = [
+EACH = [
     pytest.param(name, arguments, id=f"{name} {number}")
     for name in LAYOUTS
     for number, arguments in enumerate(EXAMPLES[name])
 ]
-#: Chips whose pieces have at most 900 cells: the finer mesh of a larger one takes a minute.
+CHIPS = [*EACH, pytest.param("facing-bars", EXAMPLES["facing-bars"][-1] | THICK, id="thick walls")]
+#: Chips whose pieces have at most 900 cells: the finer mesh of a larger one takes longer.
 SMALL = [
     item
-    for item in CHIPS
+    for item in EACH
     if LAYOUTS[item.values[0]](**item.values[1]).section().mesh.nelements <= 900
 ]
-CHIPS.append(pytest.param("facing-bars", EXAMPLES["facing-bars"][-1] | THICK, id="thick walls"))
 
 
 @dataclass(frozen=True)
@@ -152,7 +152,7 @@ def solved_potentials(chip, refinement, x, y):
     return section.cells_per_gap * energy, field[0] if len(found) == 1 else field[0] + 1j * field[1]
 
 
-@pytest.mark.parametrize(("name", "arguments"), CHIPS)
+@pytest.mark.parametrize(("name", "arguments"), EACH)
 def test_refining_halves_the_errors_of_cell_factor_and_field(name, arguments, request):
     """Both are ruled by the cell at an edge, about which |E| is infinite as 1/√r."""
     chip = LAYOUTS[name](**arguments)
