@@ -54,6 +54,11 @@ class Declared(ABC):
     detail: bool = field(default=False, kw_only=True)
     #: None is a value: "take the usual one", explained by the help.
     optional: bool = field(default=False, kw_only=True)
+    #: What an empty control of an optional field stands for.
+    empty: str = field(default="usual value", kw_only=True)
+    #: Key of another field of the part and the word it must hold for this one to matter; with an
+    #: empty word anything will do. Otherwise the control is not shown.
+    only_with: tuple[str, str] | None = field(default=None, kw_only=True)
 
     @abstractmethod
     def read(self, value: Any, from_person: bool) -> Any:

@@ -47,6 +47,7 @@ class Electrode(Part):
             high="10 F/m^2",
             source="0.05 to 0.4 F/m² for noble metals; 0.2 is common practice, no source",
             detail=True,
+            only_with=("interface", "double-layer"),
         ),
     ] = 0.2
     ionic_strength: Annotated[
@@ -59,6 +60,7 @@ class Electrode(Part):
             high="5000 mmol/L",
             optional=True,
             detail=True,
+            empty="from conductivity",
         ),
     ] = None
     constant_phase_magnitude: Annotated[
@@ -71,6 +73,7 @@ class Electrode(Part):
             high="1000",
             source="order of smooth metal in dilute salt, common practice, no source",
             detail=True,
+            only_with=("interface", "constant-phase"),
         ),
     ] = 0.3
     constant_phase_exponent: Annotated[
@@ -83,6 +86,7 @@ class Electrode(Part):
             high="1",
             source="0.8 to 0.95 for smooth metal, common practice, no source",
             detail=True,
+            only_with=("interface", "constant-phase"),
         ),
     ] = 0.9
     lead_resistance: Annotated[
@@ -106,6 +110,7 @@ class Electrode(Part):
             high="20 um",
             optional=True,
             detail=True,
+            empty="no film",
         ),
     ] = None
     film_permittivity: Annotated[
@@ -118,6 +123,7 @@ class Electrode(Part):
             high="500",
             source="silicon dioxide, handbook value, from memory",
             detail=True,
+            only_with=("film_thickness", ""),
         ),
     ] = 3.9
     film_conductivity: Annotated[
@@ -129,6 +135,7 @@ class Electrode(Part):
             low="0 S/m",
             high="1e3 S/m",
             detail=True,
+            only_with=("film_thickness", ""),
         ),
     ] = 0.0
     film_strength: Annotated[
@@ -141,6 +148,7 @@ class Electrode(Part):
             high="5000 V/um",
             source="half of good thermal oxide, for deposited films; common practice, no source",
             detail=True,
+            only_with=("film_thickness", ""),
         ),
     ] = 500e6
 

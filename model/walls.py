@@ -77,6 +77,8 @@ class Wall(Part):
             high="1e5 W/m^2/K",
             source="typical values: common practice, no source",
             optional=True,
+            empty="needed",
+            only_with=("outside", "transfer"),
         ),
     ] = None
     thermal_conductivity: Annotated[

@@ -140,7 +140,17 @@ def part_controls(part: BaseModel, path: str) -> list[Component]:
 
 
 def control(field: Field) -> Component:
-    """The control of one field, with label, help and range."""
+    """The control of one field; one that may not matter is hidden by the page where it does not."""
+    found = _input(field)
+    if field.declared.only_with is None:
+        return found
+    other, word = field.declared.only_with
+    place: dict[str, Any] = {"data-only": _beside(field.path, other), "data-word": word}
+    return html.Div(found, className="only", **place)
+
+
+def _input(field: Field) -> Component:
+    """Switch, select or text input with label, help and range, by the kind of declaration."""
     declared = field.declared
     base: dict[str, Any] = {
         "id": control_id(field.path, flag=isinstance(declared, Flag)),
@@ -162,10 +172,19 @@ def control(field: Field) -> Component:
             className="wide" if longest > _FITS else "",
         )
     wide = "" if isinstance(declared, Quantity | Count) else "wide"
-    placeholder = "usual value" if declared.optional else ""
+    placeholder = declared.empty if declared.optional else ""
     return dmc.TextInput(
         **base, value=field.text, debounce=True, className=wide, placeholder=placeholder
     )
+
+
+def _beside(path: str, key: str) -> str:
+    """Path of another field of the same part.
+
+    >>> _beside("chip.floor.thickness", "outside")
+    'chip.floor.outside'
+    """
+    return _join(path.rpartition(".")[0], key)
 
 
 def control_id(path: str, *, flag: bool = False) -> dict[str, str]:

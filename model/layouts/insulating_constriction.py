@@ -63,6 +63,7 @@ class InsulatingConstriction(Planar):
             unit="um",
             low="1 um",
             high="20 mm",
+            only_with=("obstacle", "ridge"),
         ),
     ] = 100e-6
     channel_width: Annotated[

@@ -62,8 +62,18 @@
     flagIds.forEach((id, index) => {
       if (flags[index] !== undefined) gate.values[pathOf(id.flag)] = Boolean(flags[index]);
     });
+    hide();
     gate.push();
     return none();
+  }
+
+  /* Show the controls that matter with what the others hold. */
+  function hide() {
+    for (const place of document.querySelectorAll("#inputs [data-only]")) {
+      const { only, word } = place.dataset;
+      const held = gate.values[only];
+      if (held !== undefined) place.hidden = word ? held !== word : held === "";
+    }
   }
 
   /* ---- answers ---- */
@@ -169,6 +179,7 @@
     for (const input of document.querySelectorAll("#inputs input")) {
       if (input.id.includes('"' + path.replaceAll(".", "/") + '"')) {
         for (let place = input; place; place = place.parentElement) {
+          place.hidden = false;
           if (place.tagName === "DETAILS") place.open = true;
         }
       }
