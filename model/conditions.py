@@ -9,6 +9,7 @@ from functools import cached_property
 
 import numpy as np
 
+from model import electro_osmosis
 from model.arrays import Complex, Real
 from model.channel import local_speed
 from model.circuit import Circuit
@@ -209,47 +210,14 @@ class Conditions:
         return np.asarray(scale * self.conductivity * self._square_share)
 
     @cached_property
-    def electro_osmotic_scale(self) -> Real:
-        """From slip patterns to speed: Re(diffuse share)·ε·duty/η·|share of the leads|².
-
-        u = −(ε/η)·Λ·½ ∂|Δ_rms|²/∂x along an electrode with the voltage Δ over its double layer
-        and Λ the diffuse share of it, Green et al. 2002 Phys. Rev. E 66:026305, from memory. A
-        film's part of Δ is taken off; exact unless the film conducts as much as it displaces.
-        Linear in the sense that both layers answer as at rest: good to some 25 mV over the diffuse
-        layer, a guide to a few times that, and overstated beyond.
-        """
-        interface = self.circuit.interface
-        part = interface.diffuse_share * interface.layer_share.real
-        scale = self.liquid.permittivity / self.liquid.viscosity * self.design.drive.duty
-        return np.asarray(scale * part * np.abs(self.circuit.lead_share) ** 2)
-
-    @cached_property
     def electro_osmotic_speed(self) -> Real | None:
-        """Largest speed of the electro-osmotic flow at the force height, m/s per V².
-
-        None in plan, where it is not modelled.
-        """
-        table, height = self.patterns.table, self.design.task.force_height
-        if table is None:
-            return None
-        total = np.zeros((2, table.x.size, *self.circuit.length.shape))
-        for slip in self.patterns.slips:
-            amounts = slip.amounts(self.patterns.response, self.circuit.length)
-            total += np.tensordot(slip.line(table, height), amounts, axes=(0, 0))
-        fastest = np.sqrt((total**2).sum(axis=0).max(axis=0))
-        return np.asarray(self.electro_osmotic_scale * fastest)
+        """Largest electro-osmotic speed at the force height, m/s per V²; None in plan."""
+        return electro_osmosis.largest_speed(self)
 
     @cached_property
     def largest_slip(self) -> Real | None:
-        """Largest electro-osmotic slip on the electrodes, m/s per V²; None in plan.
-
-        It grows without end toward an edge, as the logarithm of the distance; told is the value
-        at the places of the trace, the nearest some 10⁻⁵ of the bar off.
-        """
-        if not self.patterns.slips:
-            return None
-        slips = np.stack(self.patterns.response.slips(self.circuit.length))
-        return np.asarray(self.electro_osmotic_scale * np.abs(slips.sum(axis=0)).max(axis=0))
+        """Largest electro-osmotic slip on the electrodes, m/s per V²; None in plan."""
+        return electro_osmosis.largest_slip(self)
 
     @cached_property
     def heating(self) -> Real:

@@ -189,21 +189,6 @@ class ChipPatterns(Stored):
         """U₃ of the force (∇Θ·Ê₁)Ê₀ − (∇Θ·Ê₀)Ê₁, which pumps along a travelling wave."""
         return self._flow_pattern(x, y, 2)
 
-    def electro_osmosis(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, ...]:
-        """Flow patterns of each form of slip, (f, 2, …) for each of `slips`, velocity in 1/m.
-
-        The velocity is (ε/η)·share of the diffuse layer·V² times their sum, weighted by
-        `SlipFlow.amounts`. Arguments and errors as :meth:`electric_field`.
-        """
-        spots = _spots(x, y)
-        at = self.fold.place(spots.x, spots.y)
-        found = []
-        for slip in self.slips:
-            flows = slip.flows.values(*_within(slip.flows, at.x, at.y)).reshape(-1, 2, at.x.size)
-            turned = [_turned(spots, at, flow, odd=slip.odd) for flow in flows]
-            found.append(np.array(turned))
-        return tuple(found)
-
     def _flow_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
         spots = _spots(x, y)
         at = self.fold.place(spots.x, spots.y)

@@ -2,6 +2,7 @@
 
 from collections.abc import Collection, Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -89,39 +90,41 @@ class SlipForms(Stored):
 
 @dataclass(frozen=True, eq=False, repr=False)
 class SlipFlow(Stored):
-    """Flows of the forms of one kind, velocity in 1/m per form.
+    """Flows of the forms of one kind along the lines of a chip.
 
     Parameters
     ----------
     forms
         Of the slip.
-    flows
-        Velocities, x and y of each form in turn.
-    shapes
-        The same at the rows and columns of the chip's line table, as :meth:`LineTable.spline`
-        makes them.
+    samples
+        Velocities, x and y of each form in turn, on the grid of the chip's line table,
+        (2·f, rows·columns), 1/m per form.
+    table
+        That line table.
     odd
         Whether slip and flow are the reverse of their mirror images.
     """
 
     forms: SlipForms
-    flows: Piecewise
-    shapes: Real
+    samples: Real
+    table: LineTable
     odd: bool
 
     @classmethod
     def of(cls, forms: SlipForms, flows: Piecewise, table: LineTable, odd: bool) -> "SlipFlow":
-        """Table the flows along the lines of a chip."""
+        """Sample the flows along the lines of a chip."""
         x, y = table.grid
-        samples = flows.values(*flows.cells.locate(np.stack([x, y])))
-        return cls(forms, flows, table.spline(samples), odd)
+        return cls(forms, flows.values(*flows.cells.locate(np.stack([x, y]))), table, odd)
 
-    def line(self, table: LineTable, y: float) -> Real:
+    @cached_property
+    def _shapes(self) -> Real:
+        return self.table.spline(self.samples)
+
+    def line(self, y: float) -> Real:
         """Velocity along the line at a height, (f, 2, n), 1/m per form."""
-        rows = table.rows
-        block = rows.flows[2] if self.odd else rows.flows[0]
-        values = table.values(self.shapes, y)
-        return np.asarray(values.reshape(-1, 2, table.x.size) * table.signs[block])
+        rows = self.table.rows
+        signs = self.table.signs[rows.flows[2] if self.odd else rows.flows[0]]
+        return np.asarray(self.table.values(self._shapes, y).reshape(-1, *signs.shape) * signs)
 
     def amounts(self, response: ElectrodeResponse, length: Complex) -> Real:
         """How much of each form there is for ℓ, (f, …), per V²."""

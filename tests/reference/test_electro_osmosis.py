@@ -118,8 +118,7 @@ def test_flow_over_bars_against_a_fourier_series(yeast, patterns, length, height
     table = patterns.table
     (found,) = patterns.slips
     amounts = found.amounts(response, np.array([length]))[:, 0]
-    flow = np.tensordot(amounts, found.line(table, height), axes=1)
-    again = np.tensordot(amounts, patterns.electro_osmosis(table.x, height)[0], axes=1)
+    flow = np.tensordot(amounts, found.line(height), axes=1)
     expected = np.zeros((2, table.x.size))
     for n in range(1, 160):
         k = 2 * np.pi * n / pitch
@@ -128,7 +127,6 @@ def test_flow_over_bars_against_a_fourier_series(yeast, patterns, length, height
         expected += part * np.stack([along * np.sin(k * table.x), up * np.cos(k * table.x)])
     size = np.abs(expected).max()
     assert np.abs(flow - expected).max() < 1e-2 * size
-    assert np.abs(again - expected).max() < 1e-2 * size
 
 
 def test_speed_of_a_design_peaks_where_the_layers_charge(yeast, patterns):
