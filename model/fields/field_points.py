@@ -1,0 +1,272 @@
+"""Points of a field table set in order: a grid of columns and rows, or a cloud, without gaps."""
+
+from dataclasses import dataclass
+from typing import Protocol
+
+import numpy as np
+from scipy.interpolate import (
+    CloughTocher2DInterpolator,
+    CubicSpline,
+    LinearNDInterpolator,
+    NearestNDInterpolator,
+    RectBivariateSpline,
+)
+from scipy.spatial import Delaunay, cKDTree
+
+from model.arrays import Phasor, Real
+from model.fields.cells import Index
+from model.fields.field_header import FieldTableError
+from model.fields.field_table import SAME_PLACE, FieldTable
+from model.quantity import format_quantity
+
+#: Points that fill this share of a grid of all their x and y are meant as a grid.
+GRID = 0.6
+#: Fewest lines of a grid along each axis.
+FEWEST_LINES = 5
+#: Largest circle without points, its radius over the usual distance of the points around it.
+HOLE = 5.0
+#: Distance of an edge of the window from the nearest points, over their usual distance.
+EDGE = 3.0
+#: Clouds up to this size are interpolated smoothly, larger ones linearly: they are fine enough,
+#: and smooth slopes would take many seconds.
+SMOOTH = 40_000
+
+
+class Sampled(Protocol):
+    """A field over a rectangular window of the section.
+
+    Parameters
+    ----------
+    window
+        x from and to, y from and to, m.
+    normal_share
+        Share of the mean |Ê|² that the component across the section has.
+    """
+
+    @property
+    def window(self) -> tuple[float, float, float, float]: ...
+
+    @property
+    def normal_share(self) -> float: ...
+
+    @property
+    def spacing(self) -> tuple[float, float]:
+        """Usual distance of points along x and y, m."""
+
+    def quantiles(self, axis: int) -> Real:
+        """Coordinates of the points along an axis, in order: as dense as the points are."""
+
+    def __call__(self, x: Real, y: Real) -> Phasor:
+        """Ê in the section at places (n,) of the window, (2, n), 1/m."""
+
+
+def arranged(table: FieldTable, plane: float | None = None) -> Sampled:
+    """Set the points in order; of three dimensions take the plane z = `plane`, by default the middle.
+
+    Raises
+    ------
+    FieldTableError
+        If points are missing, or those of three dimensions are not on a grid.
+    """
+    axes, places = _lines(table.points)
+    size = int(np.prod([len(axis) for axis in axes]))
+    on_grid = len(table.points) >= GRID * size
+    if on_grid:
+        values = _gridded(table, axes, places)
+        return _section(axes, values, plane) if len(axes) == 3 else Grid(axes[0], axes[1], values)
+    if len(axes) == 3:
+        raise FieldTableError(
+            "has points in three dimensions that are on no grid of x, y and z; export a grid, or "
+            "the plane of the section alone"
+        )
+    return Cloud.of(table.points, table.field)
+
+
+def _lines(points: Real) -> tuple[list[Real], Index]:
+    """Distinct coordinates along each axis, and which of them each point has, (axis, n)."""
+    axes, places = [], []
+    for values in points.T:
+        step = SAME_PLACE * np.ptp(values)
+        order = np.argsort(values, kind="stable")
+        fresh = np.concatenate([[True], np.diff(values[order]) > step])
+        place = np.empty(len(values), dtype=np.intp)
+        place[order] = np.cumsum(fresh) - 1
+        axes.append(values[order][fresh])
+        places.append(place)
+    return axes, np.stack(places)
+
+
+def _gridded(table: FieldTable, axes: list[Real], places: Index) -> Phasor:
+    """Field on the whole grid, (component, nx, ny[, nz])."""
+    shape = tuple(map(len, axes))
+    for name, count in zip("xyz", shape, strict=False):
+        least = FEWEST_LINES if name != "z" else 1
+        if count < least:
+            raise FieldTableError(
+                f"has {count} values of {name}; a grid needs at least {least}, and more to be of use"
+            )
+    number = np.ravel_multi_index(tuple(places), shape)
+    missing = np.setdiff1d(np.arange(np.prod(shape)), number)
+    if missing.size:
+        where = np.unravel_index(missing[0], shape)
+        spot = ", ".join(
+            f"{name} = {_length(axis[k])}" for name, axis, k in zip("xyz", axes, where, strict=False)
+        )
+        raise FieldTableError(
+            f"has gaps: {missing.size} of {np.prod(shape)} points of its grid are missing, such as "
+            f"{spot}"
+        )
+    values = np.empty((table.field.shape[1], int(np.prod(shape))), dtype=table.field.dtype)
+    values[:, number] = table.field.T
+    return values.reshape(-1, *shape)
+
+
+def _section(axes: list[Real], values: Phasor, plane: float | None) -> "Grid":
+    """Section of a grid of three dimensions, interpolated between its layers."""
+    x, y, z = axes
+    at = 0.5 * (z[0] + z[-1]) if plane is None else plane
+    slack = SAME_PLACE * (z[-1] - z[0])
+    if not z[0] - slack <= at <= z[-1] + slack:
+        raise FieldTableError(
+            f"has z from {_length(z[0])} to {_length(z[-1])}, and the plane z = {_length(at)} is "
+            "not among them"
+        )
+    if len(z) > 3:
+        layer = CubicSpline(z, values, axis=-1)(at)
+    else:
+        after = int(np.clip(np.searchsorted(z, at), 1, len(z) - 1))
+        share = (at - z[after - 1]) / (z[after] - z[after - 1])
+        layer = (1 - share) * values[..., after - 1] + share * values[..., after]
+    square = (np.abs(layer) ** 2).mean(axis=(1, 2))
+    total = float(square.sum())
+    return Grid(x, y, layer[:2], float(square[2]) / total if total else 0.0)
+
+
+class Grid:
+    """A field on columns `x` and rows `y`, (2, nx, ny), with cubic splines between."""
+
+    def __init__(self, x: Real, y: Real, values: Phasor, normal_share: float = 0.0) -> None:
+        self.x, self.y, self.normal_share = x, y, normal_share
+        self.window = (float(x[0]), float(x[-1]), float(y[0]), float(y[-1]))
+        self.spacing = (float(np.median(np.diff(x))), float(np.median(np.diff(y))))
+        self._splines = [[RectBivariateSpline(x, y, p) for p in _parts(part)] for part in values]
+
+    def quantiles(self, axis: int) -> Real:
+        """Columns or rows."""
+        return self.y if axis else self.x
+
+    def __call__(self, x: Real, y: Real) -> Phasor:
+        """Splines at places; beyond the last line its value."""
+        return np.stack([_whole([s.ev(x, y) for s in parts]) for parts in self._splines])
+
+
+class Cloud:
+    """A field at points (n, 2) in no order, (n, 2), on the triangles between them."""
+
+    normal_share = 0.0
+
+    def __init__(self, points: Real, field: Phasor, spacing: tuple[float, float]) -> None:
+        self.spacing = spacing
+        low, high = points.min(axis=0), points.max(axis=0)
+        self.window = (float(low[0]), float(high[0]), float(low[1]), float(high[1]))
+        self._points = points
+        self._scale = np.ptp(points, axis=0).max()
+        mesh = Delaunay(points / self._scale)
+        kind = CloughTocher2DInterpolator if len(points) <= SMOOTH else LinearNDInterpolator
+        self._inside, self._beyond = kind(mesh, field), NearestNDInterpolator(mesh.points, field)
+
+    @classmethod
+    def of(cls, points: Real, field: Phasor) -> "Cloud":
+        """Cloud without holes.
+
+        Raises
+        ------
+        FieldTableError
+            If a part of the window has no points.
+        """
+        spacing = _checked(points)
+        return cls(points, field, (spacing, spacing))
+
+    def quantiles(self, axis: int) -> Real:
+        """Sorted coordinates."""
+        return np.sort(self._points[:, axis])
+
+    def __call__(self, x: Real, y: Real) -> Phasor:
+        """Between points on triangles; between the outermost points and the window, the nearest."""
+        places = np.stack([x, y], axis=-1) / self._scale
+        values = self._inside(places)
+        outside = np.isnan(values[..., 0])
+        values[outside] = self._beyond(places[outside])
+        return np.moveaxis(values, -1, 0)
+
+
+def _parts(values: Phasor) -> list[Real]:
+    return [values.real, values.imag] if np.iscomplexobj(values) else [values]
+
+
+def _whole(parts: list[Real]) -> Phasor:
+    return parts[0] if len(parts) == 1 else parts[0] + 1j * parts[1]
+
+
+def _checked(points: Real) -> float:
+    """Usual distance of the points; raises where a circle holds none, or an edge is far."""
+    low, high = points.min(axis=0), points.max(axis=0)
+    mesh = Delaunay(points)
+    corners = points[mesh.simplices]  # (triangle, corner, 2)
+    near = _usual(mesh, corners)
+    centres, radii = _circles(corners)
+    around = near[mesh.simplices].max(axis=1)
+    inside = np.all((centres > low) & (centres < high), axis=1)
+    bare = np.where(inside, radii / around, 0.0)
+    worst = int(bare.argmax())
+    if bare[worst] > HOLE:
+        raise FieldTableError(
+            f"has a gap: no point within {_length(radii[worst])} of x = "
+            f"{_length(centres[worst, 0])}, y = {_length(centres[worst, 1])}, more than "
+            f"{HOLE:g} times the usual distance of the points around it"
+        )
+    share = np.linspace(0, 1, 201)
+    x, y = low[0] + share * (high - low)[0], low[1] + share * (high - low)[1]
+    edge = np.concatenate(
+        [np.stack(np.broadcast_arrays(x, level), 1) for level in (low[1], high[1])]
+        + [np.stack(np.broadcast_arrays(level, y), 1) for level in (low[0], high[0])]
+    )
+    distance, nearest = cKDTree(points).query(edge)
+    wide = np.zeros(len(points))
+    np.maximum.at(wide, mesh.simplices, around[:, None])  # corners have few sides of their own
+    far = distance / wide[nearest]
+    worst = int(far.argmax())
+    if far[worst] > EDGE:
+        raise FieldTableError(
+            "does not fill its rectangle: there is no point near x = "
+            f"{_length(edge[worst, 0])}, y = {_length(edge[worst, 1])}"
+        )
+    return float(np.sqrt(np.prod(high - low) / len(points)))
+
+
+def _usual(mesh: Delaunay, corners: Real) -> Real:
+    """Median length of the sides that meet in each point, (n,)."""
+    lengths = np.linalg.norm(corners - np.roll(corners, -1, axis=1), axis=2)
+    ends = np.stack([mesh.simplices, np.roll(mesh.simplices, -1, axis=1)])  # (2, triangle, side)
+    point = ends.ravel()
+    length = np.broadcast_to(lengths, ends.shape).ravel()
+    order = np.lexsort((length, point))
+    start = np.searchsorted(point[order], np.arange(len(mesh.points) + 1))
+    middle = start[:-1] + (np.diff(start) - 1) // 2
+    return np.asarray(length[order][middle])
+
+
+def _circles(corners: Real) -> tuple[Real, Real]:
+    """Centre (n, 2) and radius (n,) of the circle through the corners of each triangle."""
+    a, b = corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0]
+    twice = 2 * (a[:, 0] * b[:, 1] - a[:, 1] * b[:, 0])
+    aa, bb = (a**2).sum(axis=1), (b**2).sum(axis=1)
+    with np.errstate(divide="ignore", invalid="ignore"):  # three points in line have none
+        offset = np.stack([b[:, 1] * aa - a[:, 1] * bb, a[:, 0] * bb - b[:, 0] * aa], 1)
+        offset = offset / twice[:, None]
+    offset[~np.isfinite(offset)] = np.inf
+    return corners[:, 0] + offset, np.linalg.norm(offset, axis=1)
+
+
+def _length(value: float) -> str:
+    return format_quantity(float(value), "um", 4)
