@@ -24,6 +24,10 @@ NOTABLE_SLIP = 0.1
 #: Peak voltage over the diffuse layer up to which its linear theory is a guide: some kT/e.
 LINEAR_LAYER = 0.1
 
+NO_HEAT = (
+    "Temperature rise, highest temperature and electrothermal flow are not known for this chip: "
+    "no limit of theirs is checked, and nothing is said of what heat does."
+)
 DEFER = "Local laboratory safety rules and licensed practice come first."
 GENERAL = (
     "Electric drive, heat and biological samples can hurt people and samples. These are design "
@@ -40,6 +44,8 @@ def cautions(result: Evaluation) -> tuple[str, ...]:
             f"The drive can reach {format_si(peak, 'V')} peak; above 42.4 V peak (30 V rms) a "
             f"voltage is commonly treated as hazardous to touch. {DEFER}"
         )
+    if not result.patterns.has_heat:
+        return (*found, GENERAL)
     rise = result.self_consistent_rise
     hottest = np.inf if rise is None else result.design.liquid.temperature + rise
     if hottest > 60.0 + 273.15:
@@ -54,7 +60,7 @@ def cautions(result: Evaluation) -> tuple[str, ...]:
 
 def notes(result: Evaluation) -> tuple[str, ...]:
     """Places where the design leaves what the model describes well."""
-    found = []
+    found = [*result.patterns.remarks]
     line, design = result.point.line, result.design
     steepest = int(np.abs(line.gradient[0]).argmax())  # where the force along the flow is taken
     square = float(line.square[steepest])
@@ -78,6 +84,9 @@ def notes(result: Evaluation) -> tuple[str, ...]:
 def _heat(result: Evaluation) -> Iterator[str]:
     """What a conductivity that grows with warmth does, and flow that carries heat off."""
     linear, rise = result.temperature_rise, result.self_consistent_rise
+    if linear is None:
+        yield NO_HEAT
+        return
     at_first = f"{format_quantity(linear, 'K', 3)} that the stage's conductivity gives"
     if rise is None:
         yield (

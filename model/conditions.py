@@ -15,7 +15,7 @@ from model.channel import local_speed
 from model.circuit import Circuit
 from model.design import Design
 from model.fields.lines import Line
-from model.fields.patterns import ChipPatterns
+from model.fields.patterns import UNKNOWN_HEAT, ChipPatterns
 from model.liquid.liquid import LiquidState
 from model.motion import drag_parallel, drag_perpendicular
 from model.particle import Particle
@@ -196,8 +196,16 @@ class Conditions:
 
     @cached_property
     def electrothermal_speed(self) -> Real:
-        """Largest electrothermal speed at the force height, m/s per V⁴."""
+        """Largest electrothermal speed at the force height, m/s per V⁴.
+
+        Raises
+        ------
+        ValueError
+            If heat is not known.
+        """
         line = self.line
+        if not self.patterns.has_heat:
+            raise ValueError(UNKNOWN_HEAT)
         flows = [flow for flow in (line.flow_1, line.flow_2, line.flow_3) if flow is not None]
         return np.asarray(
             self.electrothermal_scale * _largest(self.electrothermal_weights(), flows)
@@ -224,6 +232,11 @@ class Conditions:
         """Rise of the hottest liquid at the conductivity of the stage temperature, K/V².
 
         The same at every frequency, but for what the electrodes keep from the liquid.
+
+        Raises
+        ------
+        ValueError
+            If heat is not known.
         """
         return self.heat_scale * self.patterns.peak_temperature
 

@@ -239,6 +239,13 @@ class Text(Declared):
         return f"text of at most {self.longest} characters"
 
 
+@dataclass(frozen=True)
+class FileName(Text):
+    """The name of a file that goes with the profile; `accept` the endings that are offered."""
+
+    accept: str = field(kw_only=True)
+
+
 @lru_cache(maxsize=256)  # a class never changes its declarations
 def declarations(part: type[BaseModel]) -> tuple[tuple[str, Declared], ...]:
     """Profile key and declaration of each declared field of `part`, in order."""

@@ -11,10 +11,12 @@ from model.conditions import Conditions
 from model.corridor import Corridor, Rule, corridor, rules
 from model.crossovers import Crossover, find_crossovers
 from model.design import Design
+from model.errors import DesignError, FieldError
 from model.fields.patterns import ChipPatterns
 from model.generator import displayed
 from model.growth import self_consistent
 from model.particle import Particle
+from model.quantity import format_quantity
 from model.voltage import PEAK, PEAK_TO_PEAK
 from model.warming import chip_warm_up
 
@@ -200,8 +202,13 @@ class Evaluation:
         return find_crossovers(real_part)
 
     @property
-    def temperature_rise(self) -> float:
-        """Rise of the hottest liquid over the stage if its conductivity stayed as it is, K."""
+    def temperature_rise(self) -> float | None:
+        """Rise of the hottest liquid over the stage if its conductivity stayed as it is, K.
+
+        None if heat is not known.
+        """
+        if not self.patterns.has_heat:
+            return None
         return float(self.point.heating[0]) * self.rms_voltage**2
 
     @property
@@ -211,6 +218,8 @@ class Evaluation:
         Exact to second order; beyond, warmer than true where warmth drives the heat on. See
         :mod:`model.growth`.
         """
+        if self.temperature_rise is None:
+            return None
         rise = float(self_consistent(self.temperature_rise, self.point.heat_growth[0]))
         return rise if np.isfinite(rise) else None
 
@@ -226,9 +235,9 @@ class Evaluation:
 
     @cached_property
     def flow_cooling(self) -> FlowCooling | None:
-        """What the flow carries off; None for liquid at rest."""
+        """What the flow carries off; None for liquid at rest, or if heat is not known."""
         liquid, rate = self.design.liquid.state, self.design.flow.rate
-        if rate == 0.0:
+        if rate == 0.0 or self.temperature_rise is None:
             return None
         outlet = self.load.power / (liquid.heat_storage * rate)
         mean = self.temperature_rise * (
@@ -237,8 +246,10 @@ class Evaluation:
         return FlowCooling(mean / outlet, outlet)
 
     @property
-    def electrothermal_speed(self) -> float:
-        """Largest electrothermal speed at the force height, m/s."""
+    def electrothermal_speed(self) -> float | None:
+        """Largest electrothermal speed at the force height, m/s; None if heat is not known."""
+        if not self.patterns.has_heat:
+            return None
         return float(self.point.electrothermal_speed[0]) * self.rms_voltage**4
 
     @property
@@ -301,8 +312,18 @@ def evaluate(
     ------
     ValueError
         If the patterns are those of another chip.
+    DesignError
+        If the patterns do not reach the height at which forces are taken.
     """
     if patterns.chip != design.chip:
         raise ValueError("the patterns belong to another chip than the design's")
+    level = design.chip.force_level(design.task.force_height)
+    low, high = patterns.reach
+    slack = 1e-9 * patterns.height
+    if not low - slack <= level <= high + slack:
+        ends = " to ".join(format_quantity(end, "um", 4) for end in (low, high))
+        problem = f"must be within the heights that the field is known at, {ends}"
+        shown = format_quantity(design.task.force_height, "um")
+        raise DesignError([FieldError("task.working_height", shown, problem)])
     given = None if frequency is None else np.asarray(frequency, dtype=float)
     return Evaluation(design, patterns, given, points)

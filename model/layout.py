@@ -7,6 +7,7 @@ from model.declare import Part, Quantity
 from model.drawing import Drawing
 from model.fields.lines import Line
 from model.fields.section import Section
+from model.files import Files
 from model.walls import Wall
 
 if TYPE_CHECKING:
@@ -50,6 +51,20 @@ class Layout(Part, ABC):
     @abstractmethod
     def drawing(self) -> Drawing:
         """What the chip looks like, over whole repeats, in the coordinates of its patterns."""
+
+    def section_from(self, files: Files, refinement: int = 0) -> Section:
+        """The same for layouts that need the contents of a file; others need none.
+
+        Raises
+        ------
+        DesignError
+            If a file cannot be used.
+        """
+        return self.section(refinement)
+
+    def settled(self, files: Files) -> "Layout":
+        """The layout with the digest of each file that it names, so that it tells contents."""
+        return self
 
     @property
     @abstractmethod

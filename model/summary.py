@@ -11,7 +11,8 @@ import numpy as np
 from model.arrays import Real
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
-from model.evaluate import Evaluation, FlowCooling, LedgerRow, ParticleResult
+from model.evaluate import Evaluation, LedgerRow, ParticleResult
+from model.fields.patterns import UNKNOWN_HEAT
 from model.polarisation import complex_permittivity
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
@@ -35,12 +36,7 @@ def check_object(result: Evaluation) -> dict[str, Any]:
         **_finite("headroom", binding.headroom, "no voltage breaks it"),
         **_finite("floor_Vpp", result.floor_pp, "no voltage does the task at this frequency"),
         **_finite("ceiling_Vpp", result.ceiling_pp, "no limit bounds the voltage"),
-        "temperature_rise_K": result.temperature_rise,
-        **_finite("self_consistent_rise_K", result.self_consistent_rise, "nothing is steady"),
-        "warm_up_63_s": result.warm_up_time[0],
-        "warm_up_95_s": result.warm_up_time[1],
-        **_flow(result.flow_cooling),
-        "electrothermal_speed_um_s": result.electrothermal_speed * 1e6,
+        **_heat_numbers(result),
         **_electro_osmosis(result.electro_osmotic_speed),
         "dep_speed_um_s": result.dielectrophoretic_speed * 1e6,
         "chip": {
@@ -60,7 +56,9 @@ def check_object(result: Evaluation) -> dict[str, Any]:
 
 def _electro_osmosis(speed: float | None) -> dict[str, Any]:
     shown = math.nan if speed is None else speed * 1e6
-    return _finite("electro_osmotic_speed_um_s", shown, "not modelled in plan")
+    return _finite(
+        "electro_osmotic_speed_um_s", shown, "modelled neither in plan nor of a field map"
+    )
 
 
 def _particle(result: Evaluation, found: ParticleResult) -> dict[str, Any]:
@@ -90,10 +88,24 @@ def _limit(row: LedgerRow) -> dict[str, Any]:
     }
 
 
-def _flow(found: FlowCooling | None) -> dict[str, Any]:
-    peclet, rise = (None, None) if found is None else (found.peclet, found.outlet_rise)
-    reason = "the liquid is at rest"
-    return {**_finite("flow_peclet", peclet, reason), **_finite("flow_outlet_rise_K", rise, reason)}
+def _heat_numbers(result: Evaluation) -> dict[str, Any]:
+    """Rise, times to warm up, cooling by the flow and electrothermal speed; null if not known."""
+    known, flow = result.patterns.has_heat, result.flow_cooling
+    speed = result.electrothermal_speed
+    soon, late = result.warm_up_time if known else (None, None)
+    at_rest = "the liquid is at rest" if known else UNKNOWN_HEAT
+    unsteady = "nothing is steady" if known else UNKNOWN_HEAT
+    return {
+        **_finite("temperature_rise_K", result.temperature_rise, UNKNOWN_HEAT),
+        **_finite("self_consistent_rise_K", result.self_consistent_rise, unsteady),
+        **_finite("warm_up_63_s", soon, UNKNOWN_HEAT),
+        **_finite("warm_up_95_s", late, UNKNOWN_HEAT),
+        **_finite("flow_peclet", None if flow is None else flow.peclet, at_rest),
+        **_finite("flow_outlet_rise_K", None if flow is None else flow.outlet_rise, at_rest),
+        **_finite(
+            "electrothermal_speed_um_s", None if speed is None else speed * 1e6, UNKNOWN_HEAT
+        ),
+    }
 
 
 def _finite(key: str, value: float | None, reason: str) -> dict[str, Any]:
@@ -147,11 +159,14 @@ def check_text(result: Evaluation) -> str:
 
 def _heat(result: Evaluation) -> list[str]:
     """How warm the liquid gets, how soon, and what the flow has to do with it."""
+    linear = result.temperature_rise
+    if linear is None:
+        return ["  heat: not known"]
     rise, flow = result.self_consistent_rise, result.flow_cooling
     most = "no steady temperature" if rise is None else f"{format_quantity(rise, 'K', 3)} at most"
     soon, late = (format_si(time, "s") for time in result.warm_up_time)
     lines = [
-        f"  heat: {most} ({format_quantity(result.temperature_rise, 'K', 3)} at the stage's "
+        f"  heat: {most} ({format_quantity(linear, 'K', 3)} at the stage's "
         f"conductivity), 63 % of it after {soon}, 95 % after {late}"
     ]
     if flow is not None:

@@ -12,12 +12,16 @@ from model.fields.condensed import CellSystem, Factor, factorise
 
 @dataclass(frozen=True, eq=False)
 class Potential:
-    """φ per volt: coefficients (n_unknown,) in `space`, its energy ∫|∇φ|², and what solved it."""
+    """φ per volt: coefficients (n_unknown,) in `space`, its energy ∫|∇φ|², and what solved it.
+
+    `held` tells whether sides hold it; if not, it was given.
+    """
 
     space: Space
     solution: Real
     energy: float
     factor: Factor
+    held: bool = True
 
     def gradients(self) -> Real:
         """∇φ at the quadrature points, (2, n_cell, n_point), 1/m."""

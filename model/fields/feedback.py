@@ -73,11 +73,15 @@ def _second_heat(
 ) -> tuple[Real, Real]:
     """Heat that warmth Θ (n_cell, n_point) adds to |Ê|², per β and per κ, in the same shape.
 
-    Θ|Ê|², and 2Ê·Ê₂ with Ê₂ = −∇φ₂, ∇·(∇φ₂ + Θ∇φ) = 0 and φ₂ = 0 where φ is held.
+    Θ|Ê|², and 2Ê·Ê₂ with Ê₂ = −∇φ₂, ∇·(∇φ₂ + Θ∇φ) = 0 and φ₂ = 0 where φ is held. Where it is
+    not known what holds φ the field is taken to stay, which overstates the rise: what gives way
+    spares the warm places.
     """
     direct = warmth * np.einsum("fckq,fckq->kq", fields, fields)
     spread = np.zeros_like(direct)
     for potential, field in zip(potentials, fields, strict=True):
+        if not potential.held:
+            continue
         change = potential.respond(flux_load(functions, warmth * field))
         spread -= 2.0 * np.einsum("ckq,ckq->kq", field, functions.gradients(change))
     return direct, spread

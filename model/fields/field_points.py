@@ -1,6 +1,5 @@
 """Points of a field table set in order: a grid of columns and rows, or a cloud, without gaps."""
 
-from dataclasses import dataclass
 from typing import Protocol
 
 import numpy as np
@@ -11,9 +10,10 @@ from scipy.interpolate import (
     NearestNDInterpolator,
     RectBivariateSpline,
 )
+from scipy.ndimage import convolve, maximum_filter
 from scipy.spatial import Delaunay, cKDTree
 
-from model.arrays import Phasor, Real
+from model.arrays import Phasor, Real, components, phasor
 from model.fields.cells import Index
 from model.fields.field_header import FieldTableError
 from model.fields.field_table import SAME_PLACE, FieldTable
@@ -27,31 +27,39 @@ FEWEST_LINES = 5
 HOLE = 5.0
 #: Distance of an edge of the window from the nearest points, over their usual distance.
 EDGE = 3.0
+#: A point of a grid with more than this times the field of all its neighbours stands on an edge of
+#: metal, where the field is infinite and a solver's number has no meaning.
+SPIKE = 2.0
 #: Clouds up to this size are interpolated smoothly, larger ones linearly: they are fine enough,
 #: and smooth slopes would take many seconds.
 SMOOTH = 40_000
 
 
+#: x from and to, y from and to, m.
+Window = tuple[float, float, float, float]
+
+
 class Sampled(Protocol):
-    """A field over a rectangular window of the section.
-
-    Parameters
-    ----------
-    window
-        x from and to, y from and to, m.
-    normal_share
-        Share of the mean |Ê|² that the component across the section has.
-    """
+    """A field over a rectangular window of the section."""
 
     @property
-    def window(self) -> tuple[float, float, float, float]: ...
-
-    @property
-    def normal_share(self) -> float: ...
+    def window(self) -> Window:
+        """Rectangle that the points fill."""
 
     @property
     def spacing(self) -> tuple[float, float]:
         """Usual distance of points along x and y, m."""
+
+    @property
+    def normal_share(self) -> float | None:
+        """Share of the mean |Ê|² that goes across the section; None if all is the same there."""
+
+    @property
+    def spikes(self) -> int:
+        """Points on edges of metal, where what surrounds them was taken instead."""
+
+    def counts(self, window: Window) -> tuple[float, float]:
+        """Points along x and along y in a part of the window."""
 
     def quantiles(self, axis: int) -> Real:
         """Coordinates of the points along an axis, in order: as dense as the points are."""
@@ -61,7 +69,9 @@ class Sampled(Protocol):
 
 
 def arranged(table: FieldTable, plane: float | None = None) -> Sampled:
-    """Set the points in order; of three dimensions take the plane z = `plane`, by default the middle.
+    """Set the points in order.
+
+    Of three dimensions take the plane z = `plane`, m, by default the middle.
 
     Raises
     ------
@@ -102,21 +112,21 @@ def _gridded(table: FieldTable, axes: list[Real], places: Index) -> Phasor:
     for name, count in zip("xyz", shape, strict=False):
         least = FEWEST_LINES if name != "z" else 1
         if count < least:
-            raise FieldTableError(
-                f"has {count} values of {name}; a grid needs at least {least}, and more to be of use"
-            )
+            raise FieldTableError(f"has {count} values of {name}; a grid needs at least {least}")
     number = np.ravel_multi_index(tuple(places), shape)
     missing = np.setdiff1d(np.arange(np.prod(shape)), number)
     if missing.size:
         where = np.unravel_index(missing[0], shape)
         spot = ", ".join(
-            f"{name} = {_length(axis[k])}" for name, axis, k in zip("xyz", axes, where, strict=False)
+            f"{name} = {_length(axis[k])}"
+            for name, axis, k in zip("xyz", axes, where, strict=False)
         )
         raise FieldTableError(
             f"has gaps: {missing.size} of {np.prod(shape)} points of its grid are missing, such as "
             f"{spot}"
         )
-    values = np.empty((table.field.shape[1], int(np.prod(shape))), dtype=table.field.dtype)
+    kind = complex if np.iscomplexobj(table.field) else float
+    values: Phasor = np.empty((table.field.shape[1], int(np.prod(shape))), dtype=kind)
     values[:, number] = table.field.T
     return values.reshape(-1, *shape)
 
@@ -143,13 +153,28 @@ def _section(axes: list[Real], values: Phasor, plane: float | None) -> "Grid":
 
 
 class Grid:
-    """A field on columns `x` and rows `y`, (2, nx, ny), with cubic splines between."""
+    """A field on columns `x` and rows `y`, (2, nx, ny), with cubic splines between.
 
-    def __init__(self, x: Real, y: Real, values: Phasor, normal_share: float = 0.0) -> None:
+    Where a point stands on an edge of metal the mean of its neighbours is taken.
+    """
+
+    def __init__(self, x: Real, y: Real, values: Phasor, normal_share: float | None = None) -> None:
         self.x, self.y, self.normal_share = x, y, normal_share
         self.window = (float(x[0]), float(x[-1]), float(y[0]), float(y[-1]))
         self.spacing = (float(np.median(np.diff(x))), float(np.median(np.diff(y))))
-        self._splines = [[RectBivariateSpline(x, y, p) for p in _parts(part)] for part in values]
+        tamed, self.spikes = _without_spikes(values)
+        self._splines = [
+            [RectBivariateSpline(x, y, axis) for axis in part] for part in components(tamed)
+        ]
+
+    def counts(self, window: Window) -> tuple[float, float]:
+        """Columns and rows in a part of the window."""
+        low, high = np.array(window).reshape(2, 2).T
+        columns, rows = (
+            float(((line >= a) & (line <= b)).sum())
+            for line, a, b in zip((self.x, self.y), low, high, strict=True)
+        )
+        return columns, rows
 
     def quantiles(self, axis: int) -> Real:
         """Columns or rows."""
@@ -157,13 +182,14 @@ class Grid:
 
     def __call__(self, x: Real, y: Real) -> Phasor:
         """Splines at places; beyond the last line its value."""
-        return np.stack([_whole([s.ev(x, y) for s in parts]) for parts in self._splines])
+        return phasor(np.array([[axis.ev(x, y) for axis in part] for part in self._splines]))
 
 
 class Cloud:
     """A field at points (n, 2) in no order, (n, 2), on the triangles between them."""
 
-    normal_share = 0.0
+    normal_share = None
+    spikes = 0
 
     def __init__(self, points: Real, field: Phasor, spacing: tuple[float, float]) -> None:
         self.spacing = spacing
@@ -187,6 +213,13 @@ class Cloud:
         spacing = _checked(points)
         return cls(points, field, (spacing, spacing))
 
+    def counts(self, window: Window) -> tuple[float, float]:
+        """Sides of a grid with as many points as a part of the window."""
+        low, high = np.array(window).reshape(2, 2).T
+        number = np.all((self._points >= low) & (self._points <= high), axis=1).sum()
+        wide, tall = high - low
+        return float(np.sqrt(number * wide / tall)), float(np.sqrt(number * tall / wide))
+
     def quantiles(self, axis: int) -> Real:
         """Sorted coordinates."""
         return np.sort(self._points[:, axis])
@@ -194,24 +227,30 @@ class Cloud:
     def __call__(self, x: Real, y: Real) -> Phasor:
         """Between points on triangles; between the outermost points and the window, the nearest."""
         places = np.stack([x, y], axis=-1) / self._scale
-        values = self._inside(places)
+        values: Phasor = self._inside(places)
         outside = np.isnan(values[..., 0])
         values[outside] = self._beyond(places[outside])
         return np.moveaxis(values, -1, 0)
 
 
-def _parts(values: Phasor) -> list[Real]:
-    return [values.real, values.imag] if np.iscomplexobj(values) else [values]
-
-
-def _whole(parts: list[Real]) -> Phasor:
-    return parts[0] if len(parts) == 1 else parts[0] + 1j * parts[1]
+def _without_spikes(values: Phasor) -> tuple[Phasor, int]:
+    """A field on a grid with the mean of eight neighbours where it is far above all of them."""
+    size = np.linalg.norm(values, axis=0)
+    around = np.ones((3, 3))
+    around[1, 1] = 0
+    spikes = size > SPIKE * maximum_filter(size, footprint=around, mode="mirror")
+    if not spikes.any():
+        return values, 0
+    tamed = components(values)
+    for part in tamed.reshape(-1, *size.shape):
+        part[spikes] = convolve(part, around / 8, mode="mirror")[spikes]
+    return phasor(tamed), int(spikes.sum())
 
 
 def _checked(points: Real) -> float:
     """Usual distance of the points; raises where a circle holds none, or an edge is far."""
     low, high = points.min(axis=0), points.max(axis=0)
-    mesh = Delaunay(points)
+    mesh = Delaunay((points - low) / (high - low).max())
     corners = points[mesh.simplices]  # (triangle, corner, 2)
     near = _usual(mesh, corners)
     centres, radii = _circles(corners)

@@ -7,7 +7,7 @@ its line.
 """
 
 import re
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -98,7 +98,9 @@ _WIDE = (b"\xff\xfe", b"\xfe\xff")
 
 def _rows(text: str) -> list[tuple[int, str]]:
     """Lines that are not blank, with their numbers."""
-    return [(k, line.strip()) for k, line in enumerate(re.split("\r\n|\r|\n", text), 1) if line.strip()]
+    return [
+        (k, line.strip()) for k, line in enumerate(re.split("\r\n|\r|\n", text), 1) if line.strip()
+    ]
 
 
 def _numbers(rows: Sequence[tuple[int, str]], header: Header) -> tuple[Real, Index]:

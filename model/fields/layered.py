@@ -73,9 +73,13 @@ def layered(channel: Channel, refinement: int = 0) -> Layered:
     pitches are cut off, the rest entering the heat-transfer coefficient, which is exact once the
     ripple along x has died out.
     """
-    columns = split(_columns(channel), refinement)
+    return on_lines(channel, _columns(channel), _liquid_rows(channel), refinement)
+
+
+def on_lines(channel: Channel, columns: Real, liquid: Real, refinement: int = 0) -> Layered:
+    """The same on columns and rows of the liquid that are given, m."""
+    columns = split(columns, refinement)
     floor, lid = (_wall_rows(wall, channel) for wall in (channel.floor, channel.lid))
-    liquid = _liquid_rows(channel)
     rows = split(
         np.concatenate([-floor[:0:-1], liquid, channel.height + lid[1:]]),
         refinement,

@@ -83,7 +83,7 @@ class Line(Stored):
     temperature
         Θ, (n,).
     flow_1, flow_2
-        U₁ and U₂, (2, n).
+        U₁ and U₂, (2, n); None, as is Θ, where the field alone is known.
     travelling, flow_3
         What two components add, (2, n); None if there is one.
     through
@@ -93,9 +93,9 @@ class Line(Stored):
     x: Real
     field: Phasor
     gradient: Real
-    temperature: Real
-    flow_1: Real
-    flow_2: Real
+    temperature: Real | None
+    flow_1: Real | None
+    flow_2: Real | None
     travelling: Real | None = None
     flow_3: Real | None = None
     through: Real | None = None

@@ -107,6 +107,32 @@ class Modes(Stored):
         return self.answers(length, self.shapes)[1:]
 
 
+def even_mode(width: float, conductance: float) -> Modes:
+    """The one mode of two electrodes in series that carry the same current everywhere.
+
+    For electrodes whose shape is not known: the current is that of the liquid, of the given
+    admittance over σ̃ per metre, in series with their interfaces, each with half of the voltage
+    across both.
+
+    Parameters
+    ----------
+    width
+        Of both interfaces in series, m: half that of one electrode.
+    conductance
+        Without interface, as :attr:`Modes.conductance`.
+    """
+    part = np.sqrt(width)
+    shapes = np.array([[0.5 / part], [-0.5 / part]])
+    return Modes(
+        np.array([conductance / width]),
+        np.array([part]),
+        shapes,
+        np.zeros((2, 2)),
+        ("one", "other"),
+        Trace(np.zeros((2, 0)), np.zeros(0), np.zeros((0, 1)), np.zeros((0, 1))),
+    )
+
+
 def electrode_modes(
     potential: Potential, potentials: Mapping[str, float], electrodes: Sequence[str]
 ) -> Modes:

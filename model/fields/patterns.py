@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, TypeVar
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from model.arrays import Complex, Phasor, Real
+from model.arrays import Complex, Phasor, Real, phasor
 from model.fields.feedback import Feedback
 from model.fields.grading import split
 from model.fields.lines import Line, LineTable
@@ -18,6 +18,7 @@ from model.fields.section import Fold, Folded, Rest
 from model.fields.slip import SlipFlow
 from model.fields.stored import Stored
 
+UNKNOWN_HEAT = "heat and electrothermal flow of this chip are not known"
 #: Lines of a plan that are kept: some particles, some radii tried.
 MOST_KEPT = 64
 
@@ -25,6 +26,15 @@ Values = TypeVar("Values", Real, Complex, Phasor)
 
 if TYPE_CHECKING:
     from model.layout import Layout
+
+
+@dataclass(frozen=True)
+class Warmth:
+    """Numbers of Θ in the liquid: the largest, the mean, and the second order of the largest."""
+
+    peak: float
+    mean: float
+    feedback: Feedback
 
 
 @dataclass(frozen=True, eq=False, repr=False)
@@ -66,12 +76,8 @@ class ChipPatterns(Stored):
         Repeat of |Ê|², Θ and the flow along x, m; None if the chip does not repeat.
     height
         Of the liquid, m.
-    peak_temperature
-        Largest Θ in the liquid.
-    mean_temperature
-        Mean of Θ over the liquid.
-    feedback
-        Second order of the largest rise.
+    warmth
+        Numbers of Θ; None, as are heat and flows, where the field alone is known.
     response
         What an interface on the electrodes changes.
     slips
@@ -80,6 +86,8 @@ class ChipPatterns(Stored):
     wall_factors
         The same as `cell_factor` for floor and lid, to first order in their admittance; empty if
         they stand outside the section.
+    remarks
+        What is to be told of how the patterns were found, as sentences.
     """
 
     chip: "Layout"
@@ -87,24 +95,55 @@ class ChipPatterns(Stored):
     cell_factor: float
     length: float
     height: float
-    peak_temperature: float
-    mean_temperature: float
-    feedback: Feedback
+    warmth: Warmth | None
     response: ElectrodeResponse
     slips: tuple[SlipFlow, ...]
     wall_factors: Mapping[str, float]
     fold: Fold
     rests: tuple[Rest, ...]
     potential: Piecewise
-    heat: Piecewise
-    flows: Piecewise
+    heat: Piecewise | None
+    flows: Piecewise | None
     table: LineTable | None
     through: Piecewise | None = None
+    remarks: tuple[str, ...] = ()
 
     @property
     def period(self) -> float | None:
         """Repeat of the quadratic patterns along x, m."""
         return self.fold.period
+
+    @property
+    def has_heat(self) -> bool:
+        """Whether heat and electrothermal flow are known; asking for them fails if not."""
+        return self.warmth is not None
+
+    @property
+    def peak_temperature(self) -> float:
+        """Largest Θ in the liquid."""
+        return self._known_warmth.peak
+
+    @property
+    def mean_temperature(self) -> float:
+        """Mean of Θ over the liquid."""
+        return self._known_warmth.mean
+
+    @property
+    def feedback(self) -> Feedback:
+        """Second order of the largest rise."""
+        return self._known_warmth.feedback
+
+    @property
+    def _known_warmth(self) -> Warmth:
+        if self.warmth is None:
+            raise ValueError(UNKNOWN_HEAT)
+        return self.warmth
+
+    @cached_property
+    def reach(self) -> tuple[float, float]:
+        """Least and greatest y of the liquid that the patterns cover, m."""
+        y = self.potential.cells.corners[..., 1]
+        return float(y.min()), float(y.max())
 
     def electric_field(self, x: ArrayLike, y: ArrayLike) -> tuple[Phasor, Phasor]:
         """Field Ê = −∇φ in 1/m, that is V/m per volt; `fold` tells how it repeats.
@@ -127,7 +166,7 @@ class ChipPatterns(Stored):
         field = field * at.signs[:, None]
         field[:, 0] *= at.along
         field[:, 1] *= at.up
-        return spots.shaped(_phasor(field[:, 0])), spots.shaped(_phasor(field[:, 1]))
+        return spots.shaped(phasor(field[:, 0])), spots.shaped(phasor(field[:, 1]))
 
     def gradient_e2(self, x: ArrayLike, y: ArrayLike) -> tuple[Real, Real]:
         """∇|Ê|² = 2 Re (Ê*·∇)Ê in 1/m³; arguments and errors as :meth:`electric_field`."""
@@ -161,8 +200,10 @@ class ChipPatterns(Stored):
         Raises
         ------
         ValueError
-            If a place is outside the chip.
+            If a place is outside the chip, or heat is not known.
         """
+        if self.heat is None:
+            raise ValueError(UNKNOWN_HEAT)
         spots = _spots(x, y)
         at = self.fold.place(spots.x, spots.y)
         level, factor = at.y.copy(), np.ones_like(at.y)
@@ -179,7 +220,7 @@ class ChipPatterns(Stored):
     ) -> tuple[tuple[Real, Real], tuple[Real, Real]]:
         """Velocity patterns U₁ of the force (∇Θ·Ê)Ê and U₂ of |Ê|²∇Θ, each (x, y), no unit.
 
-        Arguments and errors as :meth:`electric_field`. The liquid as a whole is not pumped:
+        Arguments and errors as :meth:`temperature`. The liquid as a whole is not pumped:
         without a pressure difference no net flow is driven along a symmetric array.
         """
         first, second = (self._flow_pattern(x, y, which) for which in (0, 1))
@@ -190,6 +231,8 @@ class ChipPatterns(Stored):
         return self._flow_pattern(x, y, 2)
 
     def _flow_pattern(self, x: ArrayLike, y: ArrayLike, which: int) -> tuple[Real, Real]:
+        if self.flows is None:
+            raise ValueError(UNKNOWN_HEAT)
         spots = _spots(x, y)
         at = self.fold.place(spots.x, spots.y)
         u = self.flows.values(*_within(self.flows, at.x, at.y))
@@ -219,7 +262,8 @@ class ChipPatterns(Stored):
     def line(self, y: float) -> Line:
         """All patterns along one period at the height `y`, in tens of microseconds.
 
-        In plan, along the whole piece and its mirror image at this y; kept once found.
+        In plan, along the whole piece and its mirror image at this y, and of a field that is given
+        along its window; kept once found.
 
         Raises
         ------
@@ -244,21 +288,22 @@ class ChipPatterns(Stored):
         """Patterns where a level line of a plan meets the sides of cells, and between."""
         piece = abs(y) if self.fold.upright else y
         x = split(self.potential.cells.crossings(piece), 2)
-        x = np.concatenate([-x[x > 0][::-1], x])
+        if self.fold.mirrored:
+            x = np.concatenate([-x[x > 0][::-1], x])
         return self._at(*np.broadcast_arrays(x[self.inside(x, y)], y))
 
     def _at(self, x: Real, y: Real) -> Line:
-        first, second = self.electrothermal(x, y)
-        moving = len(self.fold.parities) == 2
+        moving, heat = len(self.fold.parities) == 2, self.has_heat
+        flows = [np.array(self._flow_pattern(x, y, k)) if heat else None for k in (0, 1, 2)]
         return Line(
             x,
             np.asarray(self.electric_field(x, y), dtype=complex if moving else float),
             np.array(self.gradient_e2(x, y)),
-            self.temperature(x, y),
-            np.array(first),
-            np.array(second),
+            self.temperature(x, y) if heat else None,
+            flows[0],
+            flows[1],
             np.array(self.travelling(x, y)) if moving else None,
-            np.array(self.electrothermal_travelling(x, y)) if moving else None,
+            flows[2] if moving else None,
             None if self.through is None else np.array(self.flow_through(x, y)),
         )
 
@@ -295,13 +340,6 @@ def _turned(spots: _Spots, at: Folded, values: Real, odd: bool) -> tuple[Real, R
     """
     lift = at.signs.prod(axis=0) if odd else np.ones_like(at.x)
     return spots.shaped(values[0] * at.along * lift), spots.shaped(values[1] * at.up * lift)
-
-
-def _phasor(components: Real) -> Phasor:
-    """Real field of one component (1, n), complex of two."""
-    if len(components) == 1:
-        return np.asarray(components[0])
-    return np.asarray(components[0] + 1j * components[1])
 
 
 def _spots(x: ArrayLike, y: ArrayLike) -> _Spots:

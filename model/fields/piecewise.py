@@ -27,13 +27,18 @@ class Piecewise(Stored):
     coefficients
         Of Legendre polynomials P_a(2r − 1)·P_b(2s − 1) of the reference coordinates,
         (n_function, n_cell, a, b).
+    harmonic
+        Whether ∇²f = 0, of which :meth:`curvatures` makes use.
     """
 
     cells: Cells
     coefficients: Real
+    harmonic: bool = False
 
     @classmethod
-    def of(cls, functions: Space, solutions: Real, cells: Cells) -> "Piecewise":
+    def of(
+        cls, functions: Space, solutions: Real, cells: Cells, *, harmonic: bool = False
+    ) -> "Piecewise":
         """Turn finite-element coefficients (n_function, n_unknown) into polynomials."""
         element = functions.element
         triangle = cells.corners.shape[1] == 3
@@ -54,7 +59,7 @@ class Piecewise(Stored):
         packed = np.einsum("ti,fik->fkt", fit, solutions[:, functions.dofs])
         full = np.zeros((*packed.shape[:2], degree + 1, degree + 1))
         full[:, :, a, b] = packed
-        return cls(cells, full)
+        return cls(cells, full, harmonic)
 
     def values(self, cell: Index, place: Real) -> Real:
         """Values at located points, (n_function, n)."""
@@ -68,14 +73,16 @@ class Piecewise(Stored):
         slopes: Real = np.einsum("frn,rcn->fcn", inner, self._inverse(cell, place))
         return slopes
 
-    def harmonic_curvatures(self, cell: Index, place: Real) -> Real:
-        """Second derivatives of harmonic functions at located points, in 1/m².
+    def curvatures(self, cell: Index, place: Real) -> Real:
+        """Second derivatives at located points, (n_function, 2, 2, n), per m².
 
-        The shape is (n_function, 2, 2, n). ∂²/∂x² and −∂²/∂y² are two estimates of one number.
-        Each is as bad as its cell is short along its axis, in flat cells from rounding alone, so
-        they are averaged with the fourth power of the cell's size as weight.
+        Of harmonic functions ∂²/∂x² and −∂²/∂y² are two estimates of one number. Each is as bad
+        as its cell is short along its axis, in flat cells from rounding alone, so they are
+        averaged with the fourth power of the cell's size as weight.
         """
         raw = self._curvatures(cell, place)
+        if not self.harmonic:
+            return raw
         inverse = self._inverse(cell, place)
         steep = np.square(inverse).sum(axis=0)  # squared inverse sizes along x and y, (2, n)
         weight = steep[1] ** 2 / (steep[0] ** 2 + steep[1] ** 2)
@@ -86,11 +93,11 @@ class Piecewise(Stored):
         )
 
     def force_patterns(self, cell: Index, place: Real) -> list[Real]:
-        """What dielectrophoretic forces follow, of one or two harmonic functions φ, Ê = −∇φ.
+        """What dielectrophoretic forces follow, of one or two functions φ, Ê = −∇φ.
 
         ∇|Ê|² of all functions together and, of two, 2(Ê₀·∂ᵢÊ₁ − Ê₁·∂ᵢÊ₀), each (2, n), 1/m³.
         """
-        slopes, curvatures = self.slopes(cell, place), self.harmonic_curvatures(cell, place)
+        slopes, curvatures = self.slopes(cell, place), self.curvatures(cell, place)
         found = [np.asarray(2 * np.einsum("fcn,fcdn->dn", slopes, curvatures))]
         if len(slopes) == 2:
             across = np.einsum("fcn,fcdn->fdn", slopes, curvatures[::-1])
@@ -139,7 +146,7 @@ class Piecewise(Stored):
         return np.asarray(grid)
 
     def _curvatures(self, cell: Index, place: Real) -> Real:
-        """Second derivatives (n_function, 2, 2, n), 1/m²."""
+        """Second derivatives as the polynomials have them, (n_function, 2, 2, n), 1/m²."""
         inverse = self._inverse(cell, place)
         slopes = self.slopes(cell, place)
         mixed = self._evaluate(cell, place, 1, 1)

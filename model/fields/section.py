@@ -8,6 +8,7 @@ import numpy as np
 from skfem import Mesh, MeshQuad
 
 from model.arrays import Real
+from model.fields.imposed import Imposed
 
 
 class Folded(NamedTuple):
@@ -41,6 +42,8 @@ class Fold:
         is its mirror image about x = 0. A piece without a period is mirrored about x = 0 alone.
     alternation
         φ(x + period)/φ(x): −1 if neighbours are opposite, else 1.
+    start
+        Where a piece with a period that is not mirrored begins, m.
     parities
         φ(−x)/φ(x) of a mirrored piece, 1 or −1, for each component.
     upright
@@ -52,6 +55,7 @@ class Fold:
     alternation: int = 1
     parities: tuple[int, ...] = (1,)
     upright: tuple[int, ...] | None = None
+    start: float = 0.0
 
     def place(self, x: Real, y: Real) -> Folded:
         """Place any x and y, (n,) each, into the piece."""
@@ -75,10 +79,11 @@ class Fold:
         side, turned = np.ones_like(x), np.ones_like(x)
         place = x
         if self.period is not None:
-            turns = np.round(x / self.period) if self.mirrored else np.floor(x / self.period)
+            ahead = (x - self.start) / self.period
+            turns = np.round(ahead) if self.mirrored else np.floor(ahead)
             place = x - turns * self.period
-            if not self.mirrored:
-                place = np.clip(place, 0.0, self.period)  # rounding must not lead outside
+            if not self.mirrored:  # rounding must not lead outside
+                place = np.clip(place, self.start, self.start + self.period)
             if self.alternation < 0:
                 turned = np.where(turns % 2 == 0, 1.0, -1.0)
         signs = np.stack([turned for _ in self.parities])
@@ -165,6 +170,18 @@ class Section:
         The two sides that are one and the same, of a piece that repeats without mirror planes.
     plan
         Of a piece that is seen in plan: it has no walls in its mesh.
+    imposed
+        The field, if it is given and not to be solved for; `potentials` then hold no side.
+    whole
+        Whether the piece holds all liquid between floor and lid, so that heat and flow can be
+        solved.
+    cell_factor
+        C/ε that is known, instead of the energy of the field.
+    double_layer_width
+        Width of the electrodes' interfaces in series, m, if the places of the electrodes are not
+        known: they then carry the same current everywhere.
+    remarks
+        What is to be told beside results, as sentences.
     """
 
     mesh: Mesh
@@ -180,6 +197,11 @@ class Section:
     rests: tuple[Rest, ...] = ()
     joined: tuple[str, str] | None = None
     plan: Plan | None = None
+    imposed: Imposed | None = None
+    whole: bool = True
+    cell_factor: float | None = None
+    double_layer_width: float | None = None
+    remarks: tuple[str, ...] = ()
 
     def __post_init__(self) -> None:
         subdomains = self.mesh.subdomains or {}

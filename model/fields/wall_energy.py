@@ -1,5 +1,7 @@
 """Electric energy in floor and lid that the liquid's potential on them drives."""
 
+from collections.abc import Sequence
+
 import numpy as np
 
 from model.arrays import Real
@@ -13,7 +15,7 @@ from model.fields.section import Section
 DEGREE = 4
 
 
-def wall_energy(section: Section, potentials: list[Potential], name: str) -> float:
+def wall_energy(section: Section, potentials: Sequence[Potential], name: str) -> float:
     """∫|∇φ|² in one wall over all components, φ that of the liquid where they meet.
 
     Where the wall's admittance is small against the liquid's it adds (σ + jωε) of the wall times
@@ -22,7 +24,9 @@ def wall_energy(section: Section, potentials: list[Potential], name: str) -> flo
     mesh that stands for a thicker wall, where the field has died out.
     """
     mesh = section.mesh.restrict(name)
-    functions = space(mesh, DEGREE, 2 * DEGREE, section.joined)
+    # a field that is given may come back reversed at the other end: then both ends are insulating
+    joined = section.joined if section.imposed is None else None
+    functions = space(mesh, DEGREE, 2 * DEGREE, joined)
     system = CellSystem(stiffness(functions), functions.dofs, functions.inner, functions.size)
     total = 0.0
     for potential, held in zip(potentials, section.potentials, strict=True):

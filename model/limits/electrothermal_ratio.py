@@ -41,7 +41,9 @@ class ElectrothermalRatio(Limit):
     default = 0.3
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law of power 2 for each particle to be collected."""
+        """One law of power 2 for each particle to be collected; none where heat is not known."""
+        if not at.patterns.has_heat:
+            return ()
         allowed = at.design.threshold(self.id)
         laws = []
         for particle in at.design.collected:

@@ -30,6 +30,11 @@ class HighestTemperature(Limit):
     default = 310.15
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law, power 2, that drives itself on, starting from the stage temperature."""
+        """One law, power 2, that drives itself on, starting from the stage temperature.
+
+        None where heat is not known.
+        """
+        if not at.patterns.has_heat:
+            return ()
         stage, allowed = at.design.liquid.temperature, at.design.threshold(self.id)
         return (Law(at.heating, 2, allowed, offset=stage, growth=at.heat_growth),)

@@ -37,6 +37,8 @@ class TemperatureRise(Limit):
     default = 4.0
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law, power 2, that drives itself on."""
+        """One law, power 2, that drives itself on; none where heat is not known."""
+        if not at.patterns.has_heat:
+            return ()
         allowed = at.design.threshold(self.id)
         return (Law(at.heating, 2, allowed, growth=at.heat_growth),)

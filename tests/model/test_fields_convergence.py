@@ -80,7 +80,7 @@ def test_harmonic_potential(kind, degree):
             [
                 size(found.values(*located)[0] - exact),
                 size(found.slopes(*located)[0] - slope),
-                size(found.harmonic_curvatures(*located)[0, 0] - curvature),
+                size(found.curvatures(*located)[0, 0] - curvature),
             ]
         )
     assert np.all(orders(errors) > np.array([degree + 1, degree, degree - 1]) - 0.5)
@@ -102,7 +102,7 @@ def test_cubic_potential_is_exact_on_skewed_cells(kind):
     x, y = spots = grid()
     located = found.cells.locate(spots)
     exact = np.array([[6 * x, -6 * y], [-6 * y, -6 * x]])
-    np.testing.assert_allclose(found.harmonic_curvatures(*located)[0], exact, atol=1e-9)
+    np.testing.assert_allclose(found.curvatures(*located)[0], exact, atol=1e-9)
     # |∇φ|² = 9(x² + y²)²
     rise = 36 * (x**2 + y**2) * spots
     np.testing.assert_allclose(found.force_patterns(*located)[0], rise, atol=1e-8)
