@@ -4,6 +4,7 @@ from model.design import Design
 from model.errors import DesignError, FieldError
 from model.evaluate import Evaluation, evaluate
 from model.fields.solve import solve_chip
+from model.files import Folder
 from model.profile import load_profile
 
 __all__ = [
@@ -11,6 +12,7 @@ __all__ = [
     "DesignError",
     "Evaluation",
     "FieldError",
+    "Folder",
     "evaluate",
     "load_profile",
     "solve_chip",

@@ -2,7 +2,7 @@
 
 import hashlib
 import string
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from pathlib import Path, PurePosixPath, PureWindowsPath
 
@@ -31,6 +31,40 @@ def is_digest(text: str) -> bool:
 def no_files(name: str, digest: str) -> bytes:
     """Files where there are none."""
     raise FileError("is not at hand; only the program that keeps it can open this design")
+
+
+def either(*sources: Files) -> Files:
+    """The first of several sources that has the file; if none has, the last one's complaint."""
+
+    def found(name: str, digest: str) -> bytes:
+        for source in sources[:-1]:
+            try:
+                return source(name, digest)
+            except FileError:
+                continue
+        return sources[-1](name, digest)
+
+    return found
+
+
+@dataclass(frozen=True)
+class Held:
+    """Contents in memory, each under its digest.
+
+    Raises
+    ------
+    FileError
+        When called, if there is none with the digest.
+    """
+
+    contents: Mapping[str, bytes]
+
+    def __call__(self, name: str, digest: str) -> bytes:
+        """Contents by digest, whatever their name."""
+        for known, content in self.contents.items():
+            if is_digest(digest) and (known.startswith(digest) or digest.startswith(known)):
+                return content
+        raise FileError("is not at hand")
 
 
 @dataclass(frozen=True)

@@ -62,8 +62,13 @@ class Layout(Part, ABC):
         """
         return self.section(refinement)
 
+    @property
+    def needed_file(self) -> tuple[str, str] | None:
+        """Name and digest of the file that the layout needs; the digest may be empty."""
+        return None
+
     def settled(self, files: Files) -> "Layout":
-        """The layout with the digest of each file that it names, so that it tells contents."""
+        """The layout with the digest of the file that it needs, so that it tells its contents."""
         return self
 
     @property

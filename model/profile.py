@@ -15,6 +15,7 @@ from pydantic import BaseModel, ValidationError
 from model.declare import FROM_PERSON, declarations
 from model.design import Design
 from model.errors import DesignError, FieldError
+from model.files import Files, Folder
 from model.layers import Layer, Membrane
 from model.layouts import LAYOUTS
 from model.particles import PARTICLES
@@ -33,7 +34,7 @@ _TAGS = {*LAYOUTS, *PARTICLES, *TASKS, "layer", "membrane"}
 
 
 def load_profile(path: str | Path) -> Design:
-    """Read a profile file.
+    """Read a profile file; files that it names are looked for beside it.
 
     Raises
     ------
@@ -46,7 +47,13 @@ def load_profile(path: str | Path) -> Design:
     except OSError as problem:
         reason = problem.strerror or "unknown reason"
         raise DesignError([FieldError("", str(path), f"cannot be opened: {reason}")]) from None
-    return read_profile(content)
+    return settled(read_profile(content), Folder(Path(path).parent))
+
+
+def settled(design: Design, files: Files) -> Design:
+    """The design with the digest of each file that it names, so that it tells their contents."""
+    chip = design.chip.settled(files)
+    return design if chip is design.chip else design.model_copy(update={"chip": chip})
 
 
 def read_profile(content: bytes) -> Design:

@@ -36,8 +36,10 @@ class Sweep:
     allowed: float
 
 
-def sweep(result: Evaluation, limit: str, voltage: Real, conductivity: Real) -> Sweep:
+def sweep(result: Evaluation, limit: str, voltage: Real, conductivity: Real) -> Sweep | None:
     """Follow the worst law of a limit along both axes; values may be infinite.
+
+    None if the limit has no law here.
 
     Parameters
     ----------
@@ -50,6 +52,8 @@ def sweep(result: Evaluation, limit: str, voltage: Real, conductivity: Real) -> 
     """
     design, rms = result.design, result.rms_voltage
     here = LIMITS[limit].laws(result.point)
+    if not here:
+        return None
     frequency = result.point.frequency
     elsewhere = Conditions(design, result.patterns, frequency, conductivity[:, np.newaxis])
     by_voltage = [law.value(voltage[:, np.newaxis] / PEAK_TO_PEAK)[:, 0] for law in here]

@@ -33,10 +33,10 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
     """
     request = read_request(data)
     try:
-        design = design_of(request)
+        result = services.evaluate(design_of(request))
     except DesignError as problem:
         return error_answer(request.number, problem)
-    result, theme = services.evaluate(design), THEMES[request.theme]
+    design, theme = result.design, THEMES[request.theme]
     return {
         **state_answer(request.number, result),
         "texts": tidied(design, request.values),

@@ -1,7 +1,8 @@
 """Makes the web application: page, callbacks, cache, headers, compression."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
+from functools import partial
 from pathlib import Path
 from typing import Any, cast
 
@@ -11,11 +12,13 @@ from flask_caching import Cache
 from flask_compress import Compress
 from werkzeug.exceptions import MethodNotAllowed
 
+from model.files import either
 from webapp import callbacks
 from webapp.answer import answer
 from webapp.cache import ChipCache, Solver, default_folder, settings, solve
-from webapp.services import DEMO_PROFILES, Services, load_profiles
+from webapp.services import DEMO_PROFILES, Services, files_of, load_profiles
 from webapp.state import BadRequestError
+from webapp.uploads import Uploads, take_uploads
 from webapp.views import VIEWS
 from webapp.views.page import page
 
@@ -36,13 +39,13 @@ class Settings:
     cache_folder
         Private folder for solved chips; by default one of this user's.
     solver
-        Solves a design's chip; replaced in tests.
+        Solves a design's chip instead of the model, in tests.
     """
 
     profiles: Path = DEMO_PROFILES
     first: Path | None = None
     cache_folder: Path | None = None
-    solver: Solver = field(default=solve)
+    solver: Solver | None = None
 
 
 def make_app(chosen: Settings | None = None) -> Dash:
@@ -58,8 +61,13 @@ def make_app(chosen: Settings | None = None) -> Dash:
     server = Flask("slackwater")
     server.config.update(MAX_CONTENT_LENGTH=MAX_REQUEST, COMPRESS_MIMETYPES=_COMPRESSED)
     Compress(server)
-    chips = ChipCache(Cache(server, config=settings(folder)), folder, chosen.solver)
-    services = Services(chips, load_profiles(chosen.profiles, chosen.first))
+    uploads = Uploads(folder / "maps")
+    profiles = load_profiles(chosen.profiles, chosen.first)
+    folders = [chosen.profiles, *([chosen.first.parent] if chosen.first else [])]
+    files = either(files_of(profiles, folders), uploads)
+    solver = chosen.solver or partial(solve, files=files)
+    chips = ChipCache(Cache(server, config=settings(folder)), folder, solver)
+    services = Services(chips, profiles)
 
     app = Dash(
         "slackwater",
@@ -75,6 +83,7 @@ def make_app(chosen: Settings | None = None) -> Dash:
     app.layout = page(services.profiles)
     callbacks.register(app, services)
     _answers(server, services)
+    take_uploads(server, uploads)
     _guard(server, app)
     # Bundles can answer 500 while several threads make the first page together, so one
     # visitor goes through the door before it opens.

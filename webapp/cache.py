@@ -21,6 +21,7 @@ import model
 from model.design import Design
 from model.fields.patterns import ChipPatterns
 from model.fields.solve import solve_chip
+from model.files import Files, no_files
 from model.profile import document
 from model.version import VERSION
 
@@ -49,14 +50,14 @@ def settings(folder: Path, most: int = 500) -> dict[str, object]:
     return {"CACHE_TYPE": "FileSystemCache", "CACHE_DIR": str(entries), "CACHE_THRESHOLD": most}
 
 
-def solve(design: Design) -> ChipPatterns:
-    """Solve the chip of a design.
+def solve(design: Design, files: Files = no_files) -> ChipPatterns:
+    """Solve the chip of a design, with the files that it names.
 
     On one thread: the linear algebra gains nothing from a second, and threads that wait for one
     another on a busy machine made a solve of half a second take five.
     """
     with threadpool_limits(1, "blas"):
-        return solve_chip(design.chip, design.liquid.heat_conductivity)
+        return solve_chip(design.chip, design.liquid.heat_conductivity, files=files)
 
 
 class ChipCache:

@@ -83,6 +83,7 @@ def _browser_side(app: Dash) -> None:
     )
     wire("save", Output("save-request", "data"), Input("save", "n_clicks"))
     wire("layout", Output("layout-request", "data"), Input("layout", "value"))
+    wire("map", Input("map-upload", "contents"), State("map-upload", "filename"))
     wire("share", Input("share", "n_clicks"))
     wire("dark", Input("dark", "checked"))
 

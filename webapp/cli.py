@@ -13,7 +13,7 @@ from pathlib import Path
 
 import numpy as np
 
-from model import DesignError, evaluate, load_profile
+from model import DesignError, Folder, evaluate, load_profile
 from model.quantity import QuantityError, parse_quantity
 from model.summary import check_object, check_text, spectrum_rows
 from model.version import VERSION
@@ -48,7 +48,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
 
 def _check(options: argparse.Namespace) -> int:
     design = load_profile(options.profile)
-    result = evaluate(design, solve(design))
+    result = evaluate(design, solve(design, Folder(Path(options.profile).parent)))
     if options.json:
         print(json.dumps(check_object(result), indent=2, allow_nan=False))
     else:

@@ -5,11 +5,11 @@ from dataclasses import dataclass
 from typing import Any
 
 import dash_mantine_components as dmc
-from dash import html
+from dash import dcc, html
 from dash.development.base_component import Component
 from pydantic import BaseModel
 
-from model.declare import Choice, Count, Declared, Flag, Quantity, declarations
+from model.declare import Choice, Count, Declared, FileName, Flag, Quantity, declarations
 from model.design import Design
 from model.layout import FlatChannel, Layout
 from model.layouts import LAYOUTS
@@ -171,6 +171,8 @@ def _input(field: Field) -> Component:
             checkIconPosition="right",
             className="wide" if longest > _FITS else "",
         )
+    if isinstance(declared, FileName):
+        return _file(base, field, declared)
     wide = "" if isinstance(declared, Quantity | Count) else "wide"
     placeholder = declared.empty if declared.optional else ""
     return dmc.TextInput(
@@ -185,6 +187,14 @@ def _beside(path: str, key: str) -> str:
     'chip.floor.outside'
     """
     return _join(path.rpartition(".")[0], key)
+
+
+def _file(base: dict[str, Any], field: Field, declared: FileName) -> Component:
+    """Name of a file that is chosen, not typed: what counts is its contents."""
+    name = dmc.TextInput(**base, value=field.text, readOnly=True, placeholder="none chosen")
+    choose = dmc.Button("Choose file", variant="default", size="sm")
+    upload = dcc.Upload(choose, id="map-upload", accept=declared.accept)
+    return html.Div([name, upload], className="wide file-field")
 
 
 def control_id(path: str, *, flag: bool = False) -> dict[str, str]:

@@ -1,11 +1,13 @@
 """What the callbacks share: the chip cache and the demo profiles."""
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from pathlib import Path
 
 from model.design import Design
-from model.errors import DesignError
+from model.errors import DesignError, FieldError
 from model.evaluate import Evaluation, evaluate
+from model.files import FileError, Folder, Held, digest_of, either
 from model.profile import load_profile
 from webapp.cache import ChipCache
 
@@ -38,7 +40,13 @@ class Services:
         return next(iter(self.profiles.values()))
 
     def evaluate(self, design: Design) -> Evaluation:
-        """Evaluate a design on its chip, solved at most once."""
+        """Evaluate a design on its chip, solved at most once.
+
+        Raises
+        ------
+        DesignError
+            If a file that it names cannot be used, or a field does not reach far enough.
+        """
         return evaluate(design, self.chips.patterns(design), points=SCREEN_POINTS)
 
 
@@ -66,3 +74,23 @@ def load_profiles(folder: Path, first: Path | None = None) -> dict[str, Design]:
             problem.add_note(f"in {path}")
             raise
     return found
+
+
+def files_of(profiles: dict[str, Design], folders: Iterable[Path]) -> Held:
+    """Read the files that profiles name, and no others: visitors see what these hold.
+
+    Raises
+    ------
+    DesignError
+        If one is not in the folder of its profile.
+    """
+    sources = either(*map(Folder, folders))
+    contents = []
+    for design in profiles.values():
+        needed = design.chip.needed_file
+        if needed is not None:
+            try:
+                contents.append(sources(*needed))
+            except FileError as problem:
+                raise DesignError([FieldError("chip.file", needed[0], str(problem))]) from None
+    return Held({digest_of(content): content for content in contents})

@@ -177,6 +177,11 @@ class FieldMap(FlatChannel):
         width = 0.5 * self.electrode_width
         return replace(section, cell_factor=factor, double_layer_width=width, remarks=remarks)
 
+    @property
+    def needed_file(self) -> tuple[str, str] | None:
+        """The map."""
+        return (self.file, self.digest) if self.file else None
+
     def settled(self, files: Files) -> "FieldMap":
         """The layout with the digest of its file."""
         if self.digest or not self.file:

@@ -131,9 +131,11 @@
     heed(answer.notes.length, answer.cautions.length - 1); // the last is there always
     document.title = answer.title + " · Slackwater";
     keepAddress(answer.link);
-    // The framework's upload part comes late and names its field nothing.
-    const upload = document.querySelector("#upload input");
-    if (upload) upload.setAttribute("aria-label", "Open a profile file");
+    // The framework's upload parts come late and name their fields nothing.
+    for (const [id, words] of [["upload", "Open a profile file"], ["map-upload", "Choose a field map"]]) {
+      const upload = document.querySelector("#" + id + " input");
+      if (upload) upload.setAttribute("aria-label", words);
+    }
   }
 
   /* Say beside the verdict that something below belongs to it. */
@@ -163,6 +165,16 @@
     }
     if (homeless.length) notice(homeless);
   }
+
+  /* What other scripts put into controls, or find wrong with one. */
+  page.fill = function (values) {
+    for (const [path, value] of Object.entries(values)) props(idOf(path), { value });
+  };
+
+  page.blame = function (path, words) {
+    props(idOf(path), { error: words });
+    marked.add(path);
+  };
 
   /* Ids have slashes where profile paths have dots. */
   function pathOf(name) {
@@ -315,6 +327,7 @@
       save,
       share,
       dark,
+      map: page.map,
     },
   });
 })();

@@ -5,6 +5,7 @@ from typing import Any
 import numpy as np
 
 from model.arrays import Real
+from model.cautions import NO_HEAT
 from model.evaluate import Evaluation
 from model.limits import LIMITS
 from model.quantity import format_quantity, format_si
@@ -26,24 +27,28 @@ from webapp.figures.theme import (
 _LEAST, _MOST = 1e-4, 3.0
 
 
-def sweep_of(result: Evaluation, limit: str) -> Sweep:
-    """Sweep a limit over the axes that the figures show."""
+def sweep_of(result: Evaluation, limit: str) -> Sweep | None:
+    """Sweep a limit over the axes that the figures show; None where heat is not known."""
     drive, present = result.design.drive, result.design.liquid.conductivity
     most = max(1.25 * drive.voltage_limit, 1.25 * drive.voltage)
     ends = min(_LEAST, present / 2.0), max(_MOST, present * 2.0)
     return sweep(result, limit, np.linspace(most / 80.0, most, 80), np.geomspace(*ends, 80))
 
 
-def heating_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
+def heating_figure(found: Sweep | None, result: Evaluation, theme: Theme) -> Figure:
     """Draw the temperature rise of the hottest liquid."""
+    if found is None:
+        return _unknown(theme)
     reached = found.value if np.isfinite(found.value) else found.allowed
     top = nice_ceiling(1.6 * max(reached, found.allowed))
     y_axis = axis(theme, "Temperature rise (K)", range=[0.0, top], tickformat="~g")
     return _figure(found, result, theme, y_axis)
 
 
-def electrothermal_figure(found: Sweep, result: Evaluation, theme: Theme) -> Figure:
+def electrothermal_figure(found: Sweep | None, result: Evaluation, theme: Theme) -> Figure:
     """Draw electrothermal speed over dielectrophoretic speed."""
+    if found is None:
+        return _unknown(theme)
     low = min(1e-4, 10.0 ** np.floor(np.log10(max(found.value, 1e-6))))
     most = max(found.allowed, min(found.value, 1e6))
     high = max(10.0, 10.0 ** np.ceil(np.log10(most) + 0.2))
@@ -51,8 +56,10 @@ def electrothermal_figure(found: Sweep, result: Evaluation, theme: Theme) -> Fig
     return _figure(found, result, theme, log_axis(theme, title, low, high, ""))
 
 
-def heating_sentence(found: Sweep, result: Evaluation) -> str:
+def heating_sentence(found: Sweep | None, result: Evaluation) -> str:
     """Say how warm it gets and what that allows."""
+    if found is None:
+        return NO_HEAT
     allowed = f"a rise of {format_value(found.allowed, 'K')} is allowed"
     if not np.isfinite(found.value):
         return f"The liquid warms without end, as it conducts better when warm; {allowed}."
@@ -63,15 +70,33 @@ def heating_sentence(found: Sweep, result: Evaluation) -> str:
     )
 
 
-def electrothermal_sentence(found: Sweep, result: Evaluation) -> str:
+def electrothermal_sentence(found: Sweep | None, result: Evaluation) -> str:
     """Say whether the liquid or the force wins at the working height."""
-    liquid = format_si(result.electrothermal_speed, "m/s")
+    speed = result.electrothermal_speed
+    if found is None or speed is None:
+        return NO_HEAT
+    liquid = format_si(speed, "m/s")
     force = format_si(result.dielectrophoretic_speed, "m/s")
     height = format_quantity(result.design.task.force_height, "um", 3)
     return (
         f"At {height} the liquid stirs at up to {liquid}, while the force moves the slowest "
         f"particle to be collected at up to {force}."
     )
+
+
+def _unknown(theme: Theme) -> Figure:
+    """A figure that says that there is nothing to draw."""
+    words = {
+        "text": "not known for this chip",
+        "xref": "paper",
+        "yref": "paper",
+        "x": 0.5,
+        "y": 0.5,
+        "showarrow": False,
+        "font": {"color": theme.quiet, "size": 15},
+    }
+    bare = {"visible": False}
+    return {"data": [], "layout": layout(theme, annotations=[words], xaxis=bare, yaxis=bare)}
 
 
 def _figure(found: Sweep, result: Evaluation, theme: Theme, y_axis: dict[str, Any]) -> Figure:
