@@ -254,7 +254,7 @@ def _checked(points: Real) -> float:
     corners = points[mesh.simplices]  # (triangle, corner, 2)
     near = _usual(mesh, corners)
     centres, radii = _circles(corners)
-    around = near[mesh.simplices].max(axis=1)
+    around = _widened(mesh, near)[mesh.simplices].max(axis=1)
     inside = np.all((centres > low) & (centres < high), axis=1)
     bare = np.where(inside, radii / around, 0.0)
     worst = int(bare.argmax())
@@ -271,9 +271,7 @@ def _checked(points: Real) -> float:
         + [np.stack(np.broadcast_arrays(level, y), 1) for level in (low[0], high[0])]
     )
     distance, nearest = cKDTree(points).query(edge)
-    wide = np.zeros(len(points))
-    np.maximum.at(wide, mesh.simplices, around[:, None])  # corners have few sides of their own
-    far = distance / wide[nearest]
+    far = distance / _widened(mesh, near)[nearest]
     worst = int(far.argmax())
     if far[worst] > EDGE:
         raise FieldTableError(
@@ -284,15 +282,24 @@ def _checked(points: Real) -> float:
 
 
 def _usual(mesh: Delaunay, corners: Real) -> Real:
-    """Median length of the sides that meet in each point, (n,)."""
+    """Lower quartile of the lengths of the sides that meet in each point, (n,).
+
+    Of points around a hole many sides go across it, but not the shortest.
+    """
     lengths = np.linalg.norm(corners - np.roll(corners, -1, axis=1), axis=2)
     ends = np.stack([mesh.simplices, np.roll(mesh.simplices, -1, axis=1)])  # (2, triangle, side)
     point = ends.ravel()
     length = np.broadcast_to(lengths, ends.shape).ravel()
     order = np.lexsort((length, point))
     start = np.searchsorted(point[order], np.arange(len(mesh.points) + 1))
-    middle = start[:-1] + (np.diff(start) - 1) // 2
-    return np.asarray(length[order][middle])
+    return np.asarray(length[order][start[:-1] + np.diff(start) // 4])
+
+
+def _widened(mesh: Delaunay, near: Real) -> Real:
+    """The largest of each point and its neighbours, as corners have few sides of their own."""
+    wide = np.zeros_like(near)
+    np.maximum.at(wide, mesh.simplices, near[mesh.simplices].max(axis=1)[:, None])
+    return wide
 
 
 def _circles(corners: Real) -> tuple[Real, Real]:
