@@ -54,8 +54,10 @@ class Circuit:
         return np.asarray(self.liquid / self.interface.admittance)
 
     @cached_property
-    def _answers(self) -> tuple[Complex, Real]:
+    def _answers(self) -> tuple[Complex, Real | None]:
         """Share behind the interface and largest voltage across it, per volt at the electrodes."""
+        if not self.patterns.response.has_places:
+            return self.patterns.response.share(self.length), None
         return self.patterns.response.share_and_largest(self.length)
 
     @cached_property
@@ -114,8 +116,17 @@ class Circuit:
 
     @cached_property
     def _largest_drop(self) -> Real:
-        """Largest amplitude across interface and film per volt between the terminals."""
-        return np.asarray(np.abs(self.lead_share) * self._answers[1])
+        """Largest amplitude across interface and film per volt between the terminals.
+
+        Raises
+        ------
+        ValueError
+            If it is not known where the electrodes are.
+        """
+        largest = self._answers[1]
+        if largest is None:
+            raise ValueError("it is not known where the electrodes of this chip are")
+        return np.asarray(np.abs(self.lead_share) * largest)
 
     @property
     def diffuse_voltage(self) -> Real:

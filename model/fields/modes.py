@@ -110,9 +110,8 @@ class Modes(Stored):
 def even_mode(width: float, conductance: float) -> Modes:
     """The one mode of two electrodes in series that carry the same current everywhere.
 
-    For electrodes whose shape is not known: the current is that of the liquid, of the given
-    admittance over σ̃ per metre, in series with their interfaces, each with half of the voltage
-    across both.
+    For electrodes whose places are not known: the current is that of the liquid, of the given
+    admittance over σ̃ per metre, in series with their interfaces. It has no places.
 
     Parameters
     ----------
@@ -122,15 +121,10 @@ def even_mode(width: float, conductance: float) -> Modes:
         Without interface, as :attr:`Modes.conductance`.
     """
     part = np.sqrt(width)
-    shapes = np.array([[0.5 / part], [-0.5 / part]])
-    return Modes(
-        np.array([conductance / width]),
-        np.array([part]),
-        shapes,
-        np.zeros((2, 2)),
-        ("one", "other"),
-        Trace(np.zeros((2, 0)), np.zeros(0), np.zeros((0, 1)), np.zeros((0, 1))),
-    )
+    rate, none = conductance / width, np.zeros((0, 1))
+    nowhere = np.zeros((2, 0))
+    bare = Trace(nowhere, np.zeros(0), none, none)
+    return Modes(np.array([rate]), np.array([part]), none, nowhere, (), bare)
 
 
 def electrode_modes(

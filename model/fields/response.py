@@ -25,7 +25,8 @@ class ElectrodeResponse(Stored):
     components
         Modes of each component of the drive, all at the same places.
     peaks
-        Rows of the places at which the largest interface voltage stands for one ℓ or another.
+        Rows of the places at which the largest interface voltage stands for one ℓ or another;
+        none if the places of the electrodes are not known.
     """
 
     components: tuple[Modes, ...]
@@ -34,11 +35,18 @@ class ElectrodeResponse(Stored):
     @classmethod
     def of(cls, components: tuple[Modes, ...]) -> "ElectrodeResponse":
         """Find the peaks: electrode edges, and what else leads where a wide plate stands by."""
+        if not components[0].electrodes:
+            return cls(components, np.zeros(0, dtype=np.intp))
         rates = np.concatenate([modes.rates for modes in components])
         sizes = np.geomspace(1.0 / (_REACH * rates.max()), _REACH / rates.min(), 120)
         lengths = sizes[:, None] * np.exp(0.5j * np.pi * np.linspace(-1.0, 1.0, 9))
         whole = cls(components, np.arange(components[0].places.shape[1]))
         return cls(components, np.unique(np.abs(whole.drop(lengths.ravel())).argmax(axis=0)))
+
+    @property
+    def has_places(self) -> bool:
+        """Whether it is known where the electrodes are, and so the largest voltage on them."""
+        return self.peaks.size > 0
 
     @property
     def places(self) -> Real:

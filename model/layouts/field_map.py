@@ -21,8 +21,9 @@ from model.files import FileError, Files, digest_of, is_digest, no_files
 from model.layout import Face, FlatChannel
 
 INTERFACE = (
-    "The field map does not tell where metal is: the double layers are those of electrodes of the "
-    "width given, loaded evenly. At edges the voltage across them is higher."
+    "A field map does not tell where metal is: what double layers take is reckoned for electrodes "
+    "of the width given that carry the same current everywhere, and the highest voltage across "
+    "double layers and films is not known, so that no limit of theirs is checked."
 )
 ENERGY = (
     "Resistance and current follow from the energy of the field map, as if it held all liquid "

@@ -40,6 +40,8 @@ class DoubleLayerVoltage(Limit):
     default = 1.0
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law, power 1."""
+        """One law, power 1; none if it is not known where the electrodes are."""
+        if not at.patterns.response.has_places:
+            return ()
         peak = PEAK * at.circuit.double_layer_voltage
         return (Law(peak, 1, at.design.threshold(self.id)),)

@@ -21,9 +21,9 @@ class PassivationBreakdown(Limit):
     unit = "V/um"
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
-        """One law of power 1 if there is a film."""
+        """One law of power 1 if there is a film, and it is known where the electrodes are."""
         electrode = at.design.electrode
-        if electrode.film_thickness is None:
+        if electrode.film_thickness is None or not at.patterns.response.has_places:
             return ()
         field = PEAK * at.circuit.film_voltage / electrode.film_thickness
         return (Law(field, 1, electrode.film_strength),)

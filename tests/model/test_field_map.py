@@ -74,13 +74,18 @@ def part(yeast, patterns):
 
 
 def test_a_map_of_a_chip_gives_the_corridor_of_the_chip(own, whole):
-    """What depends on the field away from the edges to 2 %, what on edges or V⁴ to 5 %."""
+    """To 2 %; the ceiling, set by the field at an edge, to 5 %, what goes with V⁴ to 20 %.
+
+    Where the electrodes are is not told by a map, so that it says nothing of double layers.
+    """
     assert whole.floor_pp == pytest.approx(own.floor_pp, rel=0.02)
     assert whole.ceiling_pp == pytest.approx(own.ceiling_pp, rel=0.05)
     assert whole.binding.rule.id == own.binding.rule.id
     values = {row.rule.name: row.value for row in whole.ledger}
-    assert set(values) == {row.rule.name for row in own.ledger}
-    for row in own.ledger:
+    known = [row for row in own.ledger if row.rule.id != "double_layer_voltage"]
+    assert set(values) == {row.rule.name for row in known}
+    assert any("double layers and films is not known" in note for note in notes(whole))
+    for row in known:
         loose = row.rule.id in ("electrothermal_ratio", "membrane_voltage")
         assert values[row.rule.name] == pytest.approx(row.value, rel=0.2 if loose else 0.02)
     assert whole.load.resistance == pytest.approx(own.load.resistance, rel=0.03)
