@@ -47,7 +47,8 @@ class PatternMaps(Stored):
         Nodes from wall to wall, U₁, U₂ and U₃ there, (3, 2, m, n), and their stream functions
         ψ in m, (3, m, n), with u = (∂ψ/∂y, −∂ψ/∂x) and ψ = 0 on the floor or in the middle.
 
-    What lies outside the liquid, or for Θ outside the chip, is NaN.
+    What lies outside the liquid, or for Θ outside the chip, is NaN; all of Θ and flows is where
+    heat is not known.
     """
 
     liquid: Grid
@@ -126,12 +127,15 @@ def pattern_maps(patterns: ChipPatterns) -> PatternMaps:
         np.linspace(low, high, 2 * min(max(round((high - low) / (4 * step)), 20), 45) + 1),
     )
 
-    flow = _laid(patterns, nodes, _flows)
+    flow = _laid(patterns, nodes, _flows) if patterns.has_heat else _nothing(nodes, 3, 2)
+    warmth = _nothing(whole)
+    if patterns.has_heat:
+        warmth = _laid(patterns, whole, ChipPatterns.temperature, in_chip)
     return PatternMaps(
         liquid=liquid,
         field=_laid(patterns, liquid, _size),
         whole=whole,
-        warmth=_laid(patterns, whole, ChipPatterns.temperature, in_chip),
+        warmth=warmth,
         places=places,
         forces=_laid(patterns, places, _forces),
         nodes=nodes,
@@ -166,14 +170,17 @@ def probe(result: Evaluation, particle: Particle, x: float, y: float) -> Probe:
     if here.field is None:
         return Probe(x, y, None, None, rise, None)
     force = volts**2 * _weigh(_force_weights(at, particle), here.forces)
-    velocity = volts**4 * _weigh(_flow_weights(at), here.flows)
+    velocity = None
+    if here.flows is not None:
+        u = volts**4 * _weigh(_flow_weights(at), here.flows)
+        velocity = (float(u[0]), float(u[1]))
     return Probe(
         x,
         y,
         _in_liquid(at) * volts * here.field,
         (float(force[0]), float(force[1])),
         rise,
-        (float(velocity[0]), float(velocity[1])),
+        velocity,
     )
 
 
@@ -184,16 +191,17 @@ class _PlacePatterns(Stored):
     field: float | None
     warmth: float | None
     forces: Real
-    flows: Real
+    flows: Real | None
 
 
 @lru_cache(maxsize=256)  # a knob asks for the same place again and again
 def _place_patterns(patterns: ChipPatterns, x: float, y: float) -> _PlacePatterns:
-    warm = float(patterns.temperature(x, y)) if in_chip(patterns, x, y).all() else None
+    known = patterns.has_heat
+    warm = float(patterns.temperature(x, y)) if known and in_chip(patterns, x, y).all() else None
     if not patterns.inside(x, y).all():
-        return _PlacePatterns(None, warm, np.zeros((2, 2)), np.zeros((3, 2)))
-    size = float(_size(patterns, x, y))
-    return _PlacePatterns(size, warm, _forces(patterns, x, y), _flows(patterns, x, y))
+        return _PlacePatterns(None, warm, np.zeros((2, 2)), None)
+    size, flows = float(_size(patterns, x, y)), _flows(patterns, x, y) if known else None
+    return _PlacePatterns(size, warm, _forces(patterns, x, y), flows)
 
 
 def liquid_window(chip: Layout) -> tuple[float, float, float, float]:
@@ -210,7 +218,10 @@ def in_chip(patterns: ChipPatterns, x: Real | float, y: Real | float) -> np.ndar
     if chip.view == "plan":
         return patterns.inside(x, y)
     low, high = -chip.floor.thickness, chip.height + chip.lid.thickness
-    return np.asarray((np.asarray(y) >= low) & (np.asarray(y) <= high)) & np.isfinite(x)
+    left, right = patterns.span if patterns.period is None else (-np.inf, np.inf)
+    along, up = np.asarray(x), np.asarray(y)
+    beside = np.isfinite(along) & (along >= left) & (along <= right)
+    return np.asarray(beside & (up >= low) & (up <= high))
 
 
 def _in_liquid(at: Conditions) -> float:
@@ -287,6 +298,11 @@ def _laid(
     values = np.full((*found.shape[:-1], *wide.shape), np.nan)
     values[..., known] = found
     return values[..., index]
+
+
+def _nothing(grid: Grid, *count: int) -> Real:
+    """Values that are known nowhere on a grid, (*count, m, n)."""
+    return np.full((*count, grid.y.size, grid.x.size), np.nan)
 
 
 def _one_period(x: Real, period: float | None) -> tuple[Real, np.ndarray]:

@@ -140,6 +140,12 @@ class ChipPatterns(Stored):
         return self.warmth
 
     @cached_property
+    def span(self) -> tuple[float, float]:
+        """Least and greatest x of the piece that was solved, m."""
+        x = self.potential.cells.corners[..., 0]
+        return float(x.min()), float(x.max())
+
+    @cached_property
     def reach(self) -> tuple[float, float]:
         """Least and greatest y of the liquid that the patterns cover, m."""
         y = self.potential.cells.corners[..., 1]

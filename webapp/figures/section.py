@@ -5,6 +5,7 @@ from typing import Any
 import numpy as np
 
 from model.arrays import Real
+from model.cautions import NO_HEAT
 from model.evaluate import Evaluation
 from model.maps import SectionMaps
 from model.particle import Particle
@@ -24,7 +25,7 @@ from webapp.figures.panel import (
     probe_mark,
     tick_count,
 )
-from webapp.figures.theme import Figure, Theme, particle_line
+from webapp.figures.theme import Figure, Theme, particle_line, unknown_figure
 
 #: Decades that the shades of the field span at most, and the share of the map that they leave
 #: out at either end: at the edges of electrodes the field has no greatest value.
@@ -82,6 +83,8 @@ def temperature_figure(
     result: Evaluation, maps: SectionMaps, place: tuple[float, float], theme: Theme, held: bool
 ) -> Figure:
     """Draw the temperature rise in liquid and walls."""
+    if not result.patterns.has_heat:
+        return unknown_figure(theme)
     grid, pattern = maps.patterns.whole, maps.patterns.warmth
     low, high = float(np.nanmin(pattern)), float(np.nanmax(pattern))
     shown = None if held else (pattern - low) / (high - low)
@@ -226,7 +229,7 @@ def _key(chip: Any, full: float, rows: list[float], line: dict[str, Any]) -> dic
 def _particle(result: Evaluation, particle: Particle, line: dict[str, Any]) -> dict[str, Any]:
     """The particle itself, to scale, at the working height."""
     turn = np.linspace(0.0, 2.0 * np.pi, 49)
-    x, y = -default_place(result)[0], default_place(result)[1]
+    x, y = _beside(result), default_place(result)[1]
     radius = particle.equivalent_radius
     ring = np.stack([x + radius * np.cos(turn), y + radius * np.sin(turn)])
     return broken_line([ring], name="particle", line={**line, "width": 2})
@@ -250,6 +253,8 @@ def flow_figure(
     result: Evaluation, maps: SectionMaps, place: tuple[float, float], theme: Theme
 ) -> Figure:
     """Draw the electrothermal flow as streamlines with heads."""
+    if not result.patterns.has_heat:
+        return unknown_figure(theme)
     lines = streamlines(maps)
     line = {"color": theme.accent, "width": 1.5, "simplify": False}
     data = [
@@ -292,15 +297,24 @@ def _closed(line: Real) -> Real:
 def default_place(result: Evaluation) -> tuple[float, float]:
     """The place that is probed before another is chosen, on the line where forces are taken.
 
-    At the first edge of an electrode, or in a plan where the force along the flow is largest.
+    At the first edge of an electrode, a quarter of the way along if no metal is drawn, or in a plan
+    where the force along the flow is largest.
     """
     chip = result.design.chip
     y = chip.force_level(result.design.task.force_height)
     if chip.view == "plan":
         line = result.point.line
         return abs(float(line.x[int(np.abs(line.gradient[0]).argmax())])), y
-    metal = next(shape for shape in chip.drawing().shapes if shape.kind == "electrode")
-    return max(metal.outline)[0], y
+    metal = [shape for shape in chip.drawing().shapes if shape.kind == "electrode"]
+    left, right = chip.drawing().window[:2]
+    return max(metal[0].outline)[0] if metal else 0.75 * left + 0.25 * right, y
+
+
+def _beside(result: Evaluation) -> float:
+    """Where the particle is drawn, x: on the other side of an electrode or of the window, m."""
+    drawing, x = result.design.chip.drawing(), default_place(result)[0]
+    metal = any(shape.kind == "electrode" for shape in drawing.shapes)
+    return -x if metal else drawing.window[0] + drawing.window[1] - x
 
 
 def field_sentence(result: Evaluation, maps: SectionMaps) -> str:
@@ -340,6 +354,8 @@ def _signed(value: float) -> str:
 
 def temperature_sentence(result: Evaluation, maps: SectionMaps) -> str:
     """Say where it is hottest."""
+    if result.temperature_rise is None:
+        return NO_HEAT
     grid = maps.patterns.whole
     row, _ = np.unravel_index(int(np.nanargmax(maps.rise)), maps.rise.shape)
     stage = format_quantity(result.design.liquid.temperature, "degC", 3)
@@ -352,21 +368,23 @@ def temperature_sentence(result: Evaluation, maps: SectionMaps) -> str:
         f"The hottest liquid, {height} up, is {rise} above the stage at {stage}, "
         f"the floor beneath it {format_si(float(floor), 'K')}"
     )
-    return f"{words}; {_with_growth(result)}."
+    return f"{words}; {_with_growth(result, result.temperature_rise)}."
 
 
-def _with_growth(result: Evaluation) -> str:
+def _with_growth(result: Evaluation, linear: float) -> str:
     """What the map leaves out: warm liquid conducts better."""
     grown = result.self_consistent_rise
     if grown is None:
         return "as warm liquid conducts better, no temperature would be steady"
-    if grown < _NOTABLE * result.temperature_rise:
+    if grown < _NOTABLE * linear:
         return "that warm liquid conducts better adds next to nothing"
     return f"as warm liquid conducts better, the hottest grows to {format_si(grown, 'K')}"
 
 
 def flow_sentence(result: Evaluation, maps: SectionMaps) -> str:
     """Say how fast heat stirs the liquid, beside the flow that is pumped."""
+    if not result.patterns.has_heat:
+        return NO_HEAT
     speed = format_si(float(np.nanmax(np.hypot(*maps.velocity))), "m/s")
     words = f"Heat stirs the liquid at up to {speed}; lines close together mean fast flow."
     if result.design.chip.view == "plan":

@@ -21,6 +21,7 @@ from webapp.figures.theme import (
     mark,
     nice_ceiling,
     numbers,
+    unknown_figure,
 )
 
 #: Conductivities shown, S/m: from clean water to beyond body fluids.
@@ -38,7 +39,7 @@ def sweep_of(result: Evaluation, limit: str) -> Sweep | None:
 def heating_figure(found: Sweep | None, result: Evaluation, theme: Theme) -> Figure:
     """Draw the temperature rise of the hottest liquid."""
     if found is None:
-        return _unknown(theme)
+        return unknown_figure(theme)
     reached = found.value if np.isfinite(found.value) else found.allowed
     top = nice_ceiling(1.6 * max(reached, found.allowed))
     y_axis = axis(theme, "Temperature rise (K)", range=[0.0, top], tickformat="~g")
@@ -48,7 +49,7 @@ def heating_figure(found: Sweep | None, result: Evaluation, theme: Theme) -> Fig
 def electrothermal_figure(found: Sweep | None, result: Evaluation, theme: Theme) -> Figure:
     """Draw electrothermal speed over dielectrophoretic speed."""
     if found is None:
-        return _unknown(theme)
+        return unknown_figure(theme)
     low = min(1e-4, 10.0 ** np.floor(np.log10(max(found.value, 1e-6))))
     most = max(found.allowed, min(found.value, 1e6))
     high = max(10.0, 10.0 ** np.ceil(np.log10(most) + 0.2))
@@ -82,21 +83,6 @@ def electrothermal_sentence(found: Sweep | None, result: Evaluation) -> str:
         f"At {height} the liquid stirs at up to {liquid}, while the force moves the slowest "
         f"particle to be collected at up to {force}."
     )
-
-
-def _unknown(theme: Theme) -> Figure:
-    """A figure that says that there is nothing to draw."""
-    words = {
-        "text": "not known for this chip",
-        "xref": "paper",
-        "yref": "paper",
-        "x": 0.5,
-        "y": 0.5,
-        "showarrow": False,
-        "font": {"color": theme.quiet, "size": 15},
-    }
-    bare = {"visible": False}
-    return {"data": [], "layout": layout(theme, annotations=[words], xaxis=bare, yaxis=bare)}
 
 
 def _figure(found: Sweep, result: Evaluation, theme: Theme, y_axis: dict[str, Any]) -> Figure:

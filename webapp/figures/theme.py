@@ -202,6 +202,21 @@ def layout(theme: Theme, **more: Any) -> dict[str, Any]:
     }
 
 
+def unknown_figure(theme: Theme) -> Figure:
+    """A figure that says that there is nothing to draw."""
+    words = {
+        "text": "not known for this chip",
+        "xref": "paper",
+        "yref": "paper",
+        "x": 0.5,
+        "y": 0.5,
+        "showarrow": False,
+        "font": {"color": theme.quiet, "size": 15},
+    }
+    bare = {"visible": False}
+    return {"data": [], "layout": layout(theme, annotations=[words], xaxis=bare, yaxis=bare)}
+
+
 def mark(theme: Theme, x: float, y: float, **more: Any) -> dict[str, Any]:
     """Operating point, the same ring in every figure; the verdict tells its numbers."""
     return {
