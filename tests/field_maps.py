@@ -49,3 +49,18 @@ def table(places, field, volts="1 V rms"):
         values += list(np.imag(field))
     lines = [",".join(f"{value:.12g}" for value in row) for row in np.stack(values, axis=1)]
     return "\n".join([f"# voltage: {volts}", ", ".join(columns), *lines, ""]).encode()
+
+
+def standing(name, digest):
+    """File of a smooth field that stands between a floor and an insulating lid, named by its size.
+
+    φ = ½·cos(kx)·cosh(k(h − y))/cosh(kh) with k = π/w, odd after a window w of 80 µm times the
+    size, under h = 25 µm times the size.
+    """
+    size = float(name)
+    width, height = 80e-6 * size, 25e-6 * size
+    k = np.pi / width
+    x, y = places = grid(np.linspace(-0.25, 1.25, 91) * width, np.linspace(0, height, 31))
+    scale, up = 0.5 * k / np.cosh(k * height), k * (height - y)
+    field = scale * np.array([np.sin(k * x) * np.cosh(up), np.cos(k * x) * np.sinh(up)])
+    return table(places, field)
