@@ -15,6 +15,7 @@ from typing import Any
 from pydantic import BaseModel, ConfigDict, GetCoreSchemaHandler, ValidationInfo
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
+from model.files import FEWEST_DIGITS, is_digest
 from model.quantity import (
     QuantityError,
     canonical,
@@ -237,6 +238,24 @@ class Text(Declared):
     def allowed(self) -> str:
         """State the length."""
         return f"text of at most {self.longest} characters"
+
+
+@dataclass(frozen=True)
+class Digest(Text):
+    """Hexadecimal digits that tell the contents of a file, or nothing."""
+
+    longest: int = field(default=64, kw_only=True)
+
+    def read(self, value: Any, from_person: bool) -> str:
+        """Take the digits of a digest alone."""
+        line = super().read(value, from_person)
+        if line and not is_digest(line):
+            raise QuantityError(f"must be {self.allowed()}")
+        return line
+
+    def allowed(self) -> str:
+        """State the digits."""
+        return f"{FEWEST_DIGITS} to {self.longest} of the digits 0 to 9 and a to f, or empty"
 
 
 @dataclass(frozen=True)

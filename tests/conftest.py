@@ -11,7 +11,7 @@ from hypothesis import strategies as st
 from pydantic import ValidationError
 from threadpoolctl import threadpool_limits
 
-from model.declare import FROM_PERSON, Choice, Count, Flag, Quantity, Text, declarations
+from model.declare import FROM_PERSON, Choice, Count, Digest, Flag, Quantity, Text, declarations
 from model.design import Design, Drive, Flow
 from model.evaluate import evaluate
 from model.fields.solve import solve_chip
@@ -128,6 +128,8 @@ def value_of(declared):
             return st.sampled_from(sorted(declared.options))
         case Flag():
             return st.booleans()
+        case Digest():
+            return st.just("") | st.text("0123456789abcdef", min_size=8, max_size=64)
         case Text(needed=True):
             return LINE.filter(bool)
         case Text():

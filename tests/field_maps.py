@@ -3,6 +3,15 @@
 import numpy as np
 from mpmath import ellipk
 
+from model.declare import FileName, declarations
+from model.layouts import LAYOUTS
+
+#: Layouts whose field is solved for; the others have it from a file, which no random lengths fit.
+SOLVED = {
+    name: kind
+    for name, kind in LAYOUTS.items()
+    if not any(isinstance(found, FileName) for _, found in declarations(kind))
+}
 #: √2·K(k² = ½), 2.622057554292.
 LEMNISCATE = float(np.sqrt(2.0) * ellipk(0.5))
 

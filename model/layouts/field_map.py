@@ -4,9 +4,8 @@ from dataclasses import replace
 from typing import Annotated, ClassVar, Literal
 
 import numpy as np
-from pydantic import model_validator
 
-from model.declare import Count, FileName, Flag, Quantity, Text, misfit
+from model.declare import Count, Digest, FileName, Flag, Quantity
 from model.drawing import Dimension, Drawing, Shape, box
 from model.errors import DesignError, FieldError
 from model.fields.field_header import FieldTableError
@@ -17,7 +16,7 @@ from model.fields.lines import Line
 from model.fields.map_section import map_section
 from model.fields.patterns import ChipPatterns
 from model.fields.section import Section
-from model.files import FileError, Files, digest_of, is_digest, no_files
+from model.files import FileError, Files, digest_of, no_files
 from model.layout import Face, FlatChannel
 
 INTERFACE = (
@@ -53,11 +52,10 @@ class FieldMap(FlatChannel):
     ] = ""
     digest: Annotated[
         str,
-        Text(
+        Digest(
             "Digest of the map",
             "Tells the contents of the file, so that a design never meets another map; filled in "
             "when the file is chosen. Clear it to take the file as it is.",
-            longest=64,
             detail=True,
         ),
     ] = ""
@@ -149,12 +147,6 @@ class FieldMap(FlatChannel):
             detail=True,
         ),
     ] = None
-
-    @model_validator(mode="after")
-    def _digest_is_one(self) -> "FieldMap":
-        if self.digest and not is_digest(self.digest):
-            raise misfit(("digest", "must be 8 to 64 of the digits 0 to 9 and a to f, or empty"))
-        return self
 
     def section(self, refinement: int = 0) -> Section:
         """Without its file there is none: raises :class:`DesignError`."""
