@@ -21,8 +21,8 @@ from model.layout import Face, FlatChannel
 
 INTERFACE = (
     "A field map does not tell where metal is: what double layers take is reckoned for electrodes "
-    "of the width given that carry the same current everywhere, and the highest voltage across "
-    "double layers and films is not known, so that no limit of theirs is checked."
+    "of the width given that carry the same current everywhere; electro-osmosis and the highest "
+    "voltage across double layers and films are not known, and no limit of theirs is checked."
 )
 ENERGY = (
     "Resistance and current follow from the energy of the field map, as if it held all liquid "

@@ -84,7 +84,7 @@ def test_a_map_of_a_chip_gives_the_corridor_of_the_chip(own, whole):
     values = {row.rule.name: row.value for row in whole.ledger}
     known = [row for row in own.ledger if row.rule.id != "double_layer_voltage"]
     assert set(values) == {row.rule.name for row in known}
-    assert any("double layers and films is not known" in note for note in notes(whole))
+    assert any("double layers and films are not known" in note for note in notes(whole))
     for row in known:
         loose = row.rule.id in ("electrothermal_ratio", "membrane_voltage")
         assert values[row.rule.name] == pytest.approx(row.value, rel=0.2 if loose else 0.02)
