@@ -364,3 +364,15 @@ def test_chip_change_shows_that_it_is_busy(page):
     network.send("Network.emulateNetworkConditions", {**slow, "latency": 0})
     settled(page)
     assert not page.evaluate("() => document.body.classList.contains('busy')")
+
+
+def test_a_control_shows_where_it_matters(page):
+    """The coefficient of an outside that is told by it, and not of one that is held."""
+    coefficient = page.get_by_label("Heat-transfer coefficient", exact=True).first
+    assert coefficient.is_hidden()
+    page.get_by_label("Outside", exact=True).first.click()
+    page.locator("[role=option]:visible", has_text="coefficient").first.click()
+    until(
+        page, "() => document.querySelector('[data-only=\"chip.floor.outside\"]').hidden === false"
+    )
+    assert coefficient.is_visible()

@@ -71,8 +71,17 @@ def test_controls_show_what_a_person_would_type(yeast):
 
 
 def test_a_control_tells_label_help_and_range(yeast):
+    keys = {}
+    for field in all_fields(yeast):
+        part, _, key = field.path.rpartition(".")
+        keys.setdefault(part, set()).add(key)
     for field in all_fields(yeast):
         plain = tree_of(control(field))["props"]
+        if field.declared.only_with is not None:  # wrapped, so that it can be hidden
+            part, _, key = plain["data-only"].rpartition(".")
+            assert key in keys[part]
+            assert part == field.path.rpartition(".")[0]
+            plain = tree_of(plain["children"])["props"]
         assert plain["label"] == field.declared.label
         assert plain["description"].startswith(field.declared.help)
         if isinstance(field.declared, Choice):
