@@ -1,13 +1,13 @@
 """Direct solve of cell matrices, each cell's inner unknowns eliminated on the spot."""
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
-from scipy.sparse import csc_matrix
+from scipy.sparse import csc_matrix, csr_matrix
 from scipy.sparse.linalg import SuperLU, splu
 
 from model.arrays import Real
-from model.fields.assembly import gather
 from model.fields.cells import Index
 
 #: Right-hand sides solved at once; more do not fit the processor's cache.
@@ -35,10 +35,26 @@ class CellSystem:
     inner: int
     size: int
 
-    def apply(self, vector: Real) -> Real:
-        """Product with a vector (size,)."""
-        local = (self.blocks @ vector[self.dofs].T[:, :, None])[:, :, 0].T
-        return gather(self.dofs, local, self.size)
+    def apply(self, vectors: Real) -> Real:
+        """Product with a vector (size,) or some side by side (size, n)."""
+        local = _times(self.blocks, vectors[self.dofs])
+        return np.asarray(self._sums[0] @ local.reshape(self.dofs.size, *vectors.shape[1:]))
+
+    def sum_outer(self, parts: Real) -> Real:
+        """Sum what the cells have on their shared rows (n_outer, n_cell, …) by unknowns."""
+        rows = parts.shape[0] * parts.shape[1]
+        return np.asarray(self._sums[1] @ parts.reshape(rows, *parts.shape[2:]))
+
+    @cached_property
+    def _sums(self) -> tuple[csr_matrix, csr_matrix]:
+        """Matrices that sum parts of cells by unknowns: all local rows, and the shared ones."""
+        every = self.dofs.ravel()
+        shared = self.dofs[: len(self.dofs) - self.inner].ravel()
+        first, second = (
+            csr_matrix((np.ones(own.size), (own, np.arange(own.size))), (self.size, own.size))
+            for own in (every, shared)
+        )
+        return first, second
 
 
 @dataclass(frozen=True, eq=False)
@@ -52,14 +68,15 @@ class Factor:
     condensed: Real
     factor: SuperLU
 
-    def solve(self, vector: Real, held: Real) -> Real:
-        """Solution whose held unknowns are those of `held` (size,), the others 0 there.
+    def solve(self, vectors: Real, held: Real) -> Real:
+        """Solution whose held unknowns are those of `held`, the others 0 there.
 
-        `vector` (size,) is the right-hand side. One step of iterative refinement follows.
+        `vectors` is the right-hand side; both are (size,), or some side by side (size, n). One
+        step of iterative refinement follows.
         """
         solution = held.copy()
         for _ in range(2):
-            solution = solution + self._correct(vector - self.system.apply(solution))
+            solution = solution + self._correct(vectors - self.system.apply(solution))
         return solution
 
     def schur(self, kept: Index) -> Real:
@@ -85,14 +102,21 @@ class Factor:
 
     def _correct(self, residual: Real) -> Real:
         dofs, outer = self.system.dofs, len(self.system.dofs) - self.system.inner
-        inner = residual[dofs[outer:]].T[:, :, None]  # (cell, i, 1)
-        passed = (self.extension.transpose(0, 2, 1) @ inner)[:, :, 0].T
-        rest = residual - gather(dofs[:outer], passed, self.system.size)
-        change = np.zeros(self.system.size)
+        inner = residual[dofs[outer:]]  # (i, cell, …)
+        passed = _times(self.extension.transpose(0, 2, 1), inner)
+        rest = residual - self.system.sum_outer(passed)
+        change = np.zeros(residual.shape)
         change[self.free] = self.factor.solve(rest[self.free])
-        along = self.extension @ change[dofs[:outer]].T[:, :, None]
-        change[dofs[outer:]] = (self.inverse @ inner - along)[:, :, 0].T
+        along = _times(self.extension, change[dofs[:outer]])
+        change[dofs[outer:]] = _times(self.inverse, inner) - along
         return change
+
+
+def _times(blocks: Real, parts: Real) -> Real:
+    """Cell matrices (n_cell, i, j) times parts of cells (j, n_cell) or (j, n_cell, n)."""
+    wide = parts if parts.ndim == 3 else parts[:, :, None]
+    found = (blocks @ wide.transpose(1, 0, 2)).transpose(1, 0, 2)
+    return np.asarray(found.reshape(blocks.shape[1], *parts.shape[1:]))
 
 
 def factorise(system: CellSystem, held: Index) -> Factor:

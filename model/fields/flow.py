@@ -90,8 +90,11 @@ def solve_flow(
         for force in forces
     ]
     jobs += [(np.zeros(rest.size), np.concatenate([*slip, still])) for slip in slips]
-    solved = [factor.solve(*job)[: 2 * size] for job in jobs]
-    return [flow.reshape(2, size) for flow in solved]
+    if not jobs:
+        return []
+    pushes, moved = (np.stack(parts, axis=1) for parts in zip(*jobs, strict=True))
+    solved = factor.solve(pushes, moved)[: 2 * size]
+    return [flow.reshape(2, size) for flow in solved.T]
 
 
 def _system(pair: FlowSpace, friction: float) -> tuple[CellSystem, Real]:

@@ -97,12 +97,12 @@ def _sides(functions: Space, name: str) -> tuple[Index, Index, Real]:
 
 def _traces(functions: Space, steps: Real) -> Real:
     """Local functions at `steps` along each reference side, (n_side, n_local, n_step)."""
-    tables = []
-    for start, end in _ENDS[functions.mesh.t.shape[0]]:
-        places = np.outer(start, 1 - steps) + np.outer(end, steps)
-        parts = [functions.element.lbasis(places, i)[0] for i in range(len(functions.dofs))]
-        tables.append(np.stack([np.broadcast_to(part, steps.shape) for part in parts]))
-    return np.stack(tables)
+    ends = np.array(_ENDS[functions.mesh.t.shape[0]])  # (side, end, reference coordinate)
+    places = ends[:, 0].T[:, :, None] * (1 - steps) + ends[:, 1].T[:, :, None] * steps
+    flat = places.reshape(2, -1)  # all sides in one go: each call costs more than its points
+    parts = [functions.element.lbasis(flat, i)[0] for i in range(len(functions.dofs))]
+    tables = np.stack([np.broadcast_to(part, flat.shape[1:]) for part in parts])
+    return tables.reshape(len(parts), *places.shape[1:]).transpose(1, 0, 2)
 
 
 def _places(functions: Space, cells: Index, sides: Index, steps: Real) -> Real:
