@@ -32,8 +32,9 @@ CONSTRICTION = WALLS | {
 EXAMPLES = {
     "four-pole": (
         POLES,
-        POLES | {"drive": "quadrature", "channel_width": 0.1e-3 / np.sqrt(3.125) + 120 * UM},
         POLES | {"drive": "quadrature", "pole_shape": "hyperbolic"},
+        # poles against the walls
+        POLES | {"drive": "quadrature", "channel_width": 80 * UM / np.sqrt(2) + 120 * UM},
     ),
     "insulating-constriction": (
         CONSTRICTION | {"obstacle": "ridge"},
