@@ -11,22 +11,18 @@ from scipy.interpolate import (
     RectBivariateSpline,
 )
 from scipy.ndimage import convolve, maximum_filter
-from scipy.spatial import Delaunay, cKDTree
+from scipy.spatial import Delaunay
 
 from model.arrays import Phasor, Real, components, phasor
 from model.fields.cells import Index
+from model.fields.field_gaps import shown_length, usual_distance
 from model.fields.field_header import FieldTableError
 from model.fields.field_table import SAME_PLACE, FieldTable
-from model.quantity import format_quantity
 
 #: Points that fill this share of a grid of all their x and y are meant as a grid.
 GRID = 0.6
 #: Fewest lines of a grid along each axis.
 FEWEST_LINES = 5
-#: Largest circle without points, its radius over the usual distance of the points around it.
-HOLE = 5.0
-#: Distance of an edge of the window from the nearest points, over their usual distance.
-EDGE = 3.0
 #: A point of a grid with more than this times the field of all its neighbours stands on an edge of
 #: metal, where the field is infinite and a solver's number has no meaning.
 SPIKE = 2.0
@@ -118,7 +114,7 @@ def _gridded(table: FieldTable, axes: list[Real], places: Index) -> Phasor:
     if missing.size:
         where = np.unravel_index(missing[0], shape)
         spot = ", ".join(
-            f"{name} = {_length(axis[k])}"
+            f"{name} = {shown_length(axis[k])}"
             for name, axis, k in zip("xyz", axes, where, strict=False)
         )
         raise FieldTableError(
@@ -138,8 +134,8 @@ def _section(axes: list[Real], values: Phasor, plane: float | None) -> "Grid":
     slack = SAME_PLACE * (z[-1] - z[0])
     if not z[0] - slack <= at <= z[-1] + slack:
         raise FieldTableError(
-            f"has z from {_length(z[0])} to {_length(z[-1])}, and the plane z = {_length(at)} is "
-            "not among them"
+            f"has z from {shown_length(z[0])} to {shown_length(z[-1])}, and the plane "
+            f"z = {shown_length(at)} is not among them"
         )
     if len(z) > 3:
         layer = CubicSpline(z, values, axis=-1)(at)
@@ -210,7 +206,7 @@ class Cloud:
         FieldTableError
             If a part of the window has no points.
         """
-        spacing = _checked(points)
+        spacing = usual_distance(points)
         return cls(points, field, (spacing, spacing))
 
     def counts(self, window: Window) -> tuple[float, float]:
@@ -245,74 +241,3 @@ def _without_spikes(values: Phasor) -> tuple[Phasor, int]:
     for part in tamed.reshape(-1, *size.shape):
         part[spikes] = convolve(part, around / 8, mode="mirror")[spikes]
     return phasor(tamed), int(spikes.sum())
-
-
-def _checked(points: Real) -> float:
-    """Usual distance of the points; raises where a circle holds none, or an edge is far."""
-    low, high = points.min(axis=0), points.max(axis=0)
-    mesh = Delaunay((points - low) / (high - low).max())
-    corners = points[mesh.simplices]  # (triangle, corner, 2)
-    near = _usual(mesh, corners)
-    centres, radii = _circles(corners)
-    around = _widened(mesh, near)[mesh.simplices].max(axis=1)
-    inside = np.all((centres > low) & (centres < high), axis=1)
-    bare = np.where(inside, radii / around, 0.0)
-    worst = int(bare.argmax())
-    if bare[worst] > HOLE:
-        raise FieldTableError(
-            f"has a gap: no point within {_length(radii[worst])} of x = "
-            f"{_length(centres[worst, 0])}, y = {_length(centres[worst, 1])}, more than "
-            f"{HOLE:g} times the usual distance of the points around it"
-        )
-    share = np.linspace(0, 1, 201)
-    x, y = low[0] + share * (high - low)[0], low[1] + share * (high - low)[1]
-    edge = np.concatenate(
-        [np.stack(np.broadcast_arrays(x, level), 1) for level in (low[1], high[1])]
-        + [np.stack(np.broadcast_arrays(level, y), 1) for level in (low[0], high[0])]
-    )
-    distance, nearest = cKDTree(points).query(edge)
-    far = distance / _widened(mesh, near)[nearest]
-    worst = int(far.argmax())
-    if far[worst] > EDGE:
-        raise FieldTableError(
-            "does not fill its rectangle: there is no point near x = "
-            f"{_length(edge[worst, 0])}, y = {_length(edge[worst, 1])}"
-        )
-    return float(np.sqrt(np.prod(high - low) / len(points)))
-
-
-def _usual(mesh: Delaunay, corners: Real) -> Real:
-    """Lower quartile of the lengths of the sides that meet in each point, (n,).
-
-    Of points around a hole many sides go across it, but not the shortest.
-    """
-    lengths = np.linalg.norm(corners - np.roll(corners, -1, axis=1), axis=2)
-    ends = np.stack([mesh.simplices, np.roll(mesh.simplices, -1, axis=1)])  # (2, triangle, side)
-    point = ends.ravel()
-    length = np.broadcast_to(lengths, ends.shape).ravel()
-    order = np.lexsort((length, point))
-    start = np.searchsorted(point[order], np.arange(len(mesh.points) + 1))
-    return np.asarray(length[order][start[:-1] + np.diff(start) // 4])
-
-
-def _widened(mesh: Delaunay, near: Real) -> Real:
-    """The largest of each point and its neighbours, as corners have few sides of their own."""
-    wide = np.zeros_like(near)
-    np.maximum.at(wide, mesh.simplices, near[mesh.simplices].max(axis=1)[:, None])
-    return wide
-
-
-def _circles(corners: Real) -> tuple[Real, Real]:
-    """Centre (n, 2) and radius (n,) of the circle through the corners of each triangle."""
-    a, b = corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0]
-    twice = 2 * (a[:, 0] * b[:, 1] - a[:, 1] * b[:, 0])
-    aa, bb = (a**2).sum(axis=1), (b**2).sum(axis=1)
-    with np.errstate(divide="ignore", invalid="ignore"):  # three points in line have none
-        offset = np.stack([b[:, 1] * aa - a[:, 1] * bb, a[:, 0] * bb - b[:, 0] * aa], 1)
-        offset = offset / twice[:, None]
-    offset[~np.isfinite(offset)] = np.inf
-    return corners[:, 0] + offset, np.linalg.norm(offset, axis=1)
-
-
-def _length(value: float) -> str:
-    return format_quantity(float(value), "um", 4)
