@@ -177,7 +177,7 @@ def test_the_drawing_follows_the_typed_lengths(page):
     type_into(page, "Gap", "45 um")
     settled(page)
     assert "45 µm" in drawing.inner_text().replace("\u00a0", " ")
-    name = drawing.locator("svg").get_attribute("aria-label")
+    name = drawing.get_by_role("img").get_attribute("aria-label")
     assert name.startswith("Coplanar bars")
     assert "gap 45 µm" in name
 
