@@ -41,7 +41,8 @@
     const y = (value) => top + ((high - value) / (high - low)) * tall;
     const svg = make("svg", { width, height: top + tall + ROW * below.count + 6, role: "img" });
     svg.setAttribute("aria-label", found.label);
-    const chip = make("svg", { x: 1, y: top, width: wide, height: tall }); // cuts what goes on
+    const cut = { x: 1, y: top, width: wide, height: tall, role: "presentation" };
+    const chip = make("svg", cut); // what goes on beyond is not seen
     chip.append(make("rect", { class: "liquid", width: "100%", height: "100%" }));
     for (const shape of found.shapes) {
       chip.append(...solid(shape, (value) => x(value) - 1, (value) => y(value) - top, tall / 2));
