@@ -229,9 +229,14 @@ class Evaluation:
 
         Layer by layer, see :mod:`model.warming`; neither voltage nor conductivity matters.
         """
-        liquid = self.design.liquid
-        found = chip_warm_up(self.design.chip, liquid.heat_conductivity, liquid.state.heat_storage)
-        return found.time(-np.expm1(-1.0)), found.time(0.95)
+        chip, liquid = self.design.chip, self.design.liquid
+        parts = liquid.heat_conductivity, liquid.state.heat_storage
+
+        def times() -> tuple[float, float]:
+            found = chip_warm_up(chip, *parts)
+            return found.time(-np.expm1(-1.0)), found.time(0.95)
+
+        return self.patterns.remembered(("warm-up", *parts), times)
 
     @cached_property
     def flow_cooling(self) -> FlowCooling | None:

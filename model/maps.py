@@ -5,7 +5,6 @@ The patterns are laid on grids once per chip; an operating point then only scale
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 
 import numpy as np
 
@@ -19,8 +18,6 @@ from model.particle import Particle
 
 #: Columns of the maps over the drawn length, of the places of arrows, and of the flow's nodes.
 COLUMNS, ARROWS, NODES = 240, 22, 96
-#: Chips whose maps are kept in memory; each takes some two megabytes.
-_KEPT = 16
 
 
 @dataclass(frozen=True, eq=False)
@@ -111,9 +108,12 @@ class Probe:
     velocity: tuple[float, float] | None
 
 
-@lru_cache(maxsize=_KEPT)
 def pattern_maps(patterns: ChipPatterns) -> PatternMaps:
-    """Lay the patterns of a chip on the grids of its maps; kept per chip."""
+    """Patterns of a chip on the grids of its maps; kept with the chip."""
+    return patterns.remembered("maps", lambda: _lay_out(patterns))
+
+
+def _lay_out(patterns: ChipPatterns) -> PatternMaps:
     chip = patterns.chip
     window = chip.drawing().window
     left, right, low, high = liquid_window(chip)
@@ -194,8 +194,12 @@ class _PlacePatterns(Stored):
     flows: Real | None
 
 
-@lru_cache(maxsize=256)  # a knob asks for the same place again and again
 def _place_patterns(patterns: ChipPatterns, x: float, y: float) -> _PlacePatterns:
+    """Patterns at one place; a knob asks for the same one again and again."""
+    return patterns.remembered(("place", x, y), lambda: _at_place(patterns, x, y))
+
+
+def _at_place(patterns: ChipPatterns, x: float, y: float) -> _PlacePatterns:
     known = patterns.has_heat
     warm = float(patterns.temperature(x, y)) if known and in_chip(patterns, x, y).all() else None
     if not patterns.inside(x, y).all():

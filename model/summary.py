@@ -131,7 +131,7 @@ def check_text(result: Evaluation) -> str:
         f"  liquid: {format_si(load.resistance, 'Ω')} and {format_si(load.capacitance, 'F')} in "
         f"parallel, {abs(result.share):.1%} of the voltage reaches it",
         f"  chip: {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
-        f"  {generator_words(result)}",
+        f"  generator: {generator_words(result)}",
         *_heat(result),
         "",
         *_table(
@@ -180,13 +180,13 @@ def _heat(result: Evaluation) -> list[str]:
 
 
 def generator_words(result: Evaluation) -> str:
-    """What to set on the generator, e.g. for the line under the voltage."""
+    """What to set on the generator for the voltage at the chip."""
     setting = {
         "open-circuit": "shows the voltage with nothing connected",
         "into-50-ohm": "shows the voltage into 50 Ω, half of that with nothing connected",
     }[result.design.drive.generator_setting]
     volts = format_si(result.generator_display, "V")
-    return f"generator: set {volts} peak to peak, on a display that {setting}"
+    return f"set {volts} peak to peak, on a display that {setting}"
 
 
 def _particle_row(result: Evaluation, found: ParticleResult) -> tuple[str, ...]:

@@ -3,7 +3,7 @@
 from collections.abc import Callable, Hashable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TYPE_CHECKING, TypeVar
+from typing import TYPE_CHECKING, TypeVar, cast
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -19,10 +19,11 @@ from model.fields.slip import SlipFlow
 from model.fields.stored import Stored
 
 UNKNOWN_HEAT = "heat and electrothermal flow of this chip are not known"
-#: Lines of a plan that are kept: some particles, some radii tried.
-MOST_KEPT = 64
+#: Results that are kept: lines of a plan, places that were probed, maps.
+MOST_KEPT = 256
 
 Values = TypeVar("Values", Real, Complex, Phasor)
+Result = TypeVar("Result")
 
 if TYPE_CHECKING:
     from model.layout import Layout
@@ -278,7 +279,7 @@ class ChipPatterns(Stored):
         """
         if self.table is not None:
             return self.table.line(y)
-        return self._remembered(y, lambda: self._row(y))
+        return self.remembered(("row", y), lambda: self._row(y))
 
     def path(self, x: Real, y: Real) -> Line:
         """All patterns at any places in the liquid, (n,) each, m; kept once found.
@@ -288,7 +289,7 @@ class ChipPatterns(Stored):
         ValueError
             If a place is not in the liquid.
         """
-        return self._remembered((x.tobytes(), y.tobytes()), lambda: self._at(x, y))
+        return self.remembered((x.tobytes(), y.tobytes()), lambda: self._at(x, y))
 
     def _row(self, y: float) -> Line:
         """Patterns where a level line of a plan meets the sides of cells, and between."""
@@ -313,17 +314,20 @@ class ChipPatterns(Stored):
             None if self.through is None else np.array(self.flow_through(x, y)),
         )
 
-    def _remembered(self, key: Hashable, make: Callable[[], Line]) -> Line:
-        found = self._kept.get(key)
-        if found is None:
+    def remembered(self, key: Hashable, make: Callable[[], Result]) -> Result:
+        """What `make` gives from these patterns alone, made once under its key and kept with them.
+
+        Whatever asks may keep its results here, so that they live as long as the chip does.
+        """
+        if key not in self._kept:
             if len(self._kept) >= MOST_KEPT:
                 self._kept.clear()
-            found = self._kept[key] = make()
-        return found
+            self._kept[key] = make()
+        return cast(Result, self._kept[key])
 
     @cached_property
-    def _kept(self) -> dict[Hashable, Line]:
-        """Lines of a plan that were asked for."""
+    def _kept(self) -> dict[Hashable, object]:
+        """Results by their keys."""
         return {}
 
 

@@ -6,6 +6,7 @@ import numpy as np
 
 from model.evaluate import Evaluation
 from model.quantity import format_si
+from model.summary import generator_words
 from webapp.figures.theme import Figure, Theme, axis, layout, log_axis, mark, numbers
 
 #: Where magnitude and phase stand in the figure.
@@ -76,7 +77,8 @@ def impedance_sentence(result: Evaluation) -> str:
         f"At {format_si(result.design.drive.frequency, 'Hz')} the chip is "
         f"{format_si(abs(here), 'Ω')} at {phase}° and draws "
         f"{format_si(result.load.rms_current, 'A')} rms; dashed, the source's "
-        f"{format_si(result.design.drive.source_resistance, 'Ω')}."
+        f"{format_si(result.design.drive.source_resistance, 'Ω')}. "
+        f"On the generator {generator_words(result)}."
     )
 
 

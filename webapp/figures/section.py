@@ -1,15 +1,14 @@
-"""Panels of the section: field, force, temperature rise and flow, each with one sentence."""
+"""Panels of the section: field, force, temperature rise and flow."""
 
 from typing import Any
 
 import numpy as np
 
 from model.arrays import Real
-from model.cautions import NO_HEAT
 from model.evaluate import Evaluation
 from model.maps import SectionMaps
 from model.particle import Particle
-from model.quantity import format_quantity, format_si
+from model.quantity import format_si
 from model.streamlines import streamlines
 from webapp.figures.panel import (
     BAR,
@@ -32,10 +31,6 @@ from webapp.figures.theme import Figure, Theme, particle_line, unknown_figure
 _DECADES, _LEFT_OUT = 3.0, 0.4
 #: Decades of force between a full arrow and none.
 _ARROW_DECADES = 4.0
-#: A field that is so weak beside the strongest is none.
-_NOTHING = 1e-6
-#: From this factor on the growth of the rise by its own warmth is told.
-_NOTABLE = 1.02
 #: Full length of an arrow over the spacing of its grid, and its head over that.
 _FULL, _HEAD = 0.92, 0.3
 
@@ -315,83 +310,3 @@ def _beside(result: Evaluation) -> float:
     drawing, x = result.design.chip.drawing(), default_place(result)[0]
     metal = any(shape.kind == "electrode" for shape in drawing.shapes)
     return -x if metal else drawing.window[0] + drawing.window[1] - x
-
-
-def field_sentence(result: Evaluation, maps: SectionMaps) -> str:
-    """Say how strong the field is where the task takes its force."""
-    field = maps.liquid_voltage * np.sqrt((np.abs(result.point.line.field) ** 2).sum(axis=0))
-    low, high = float(field.min()), float(field.max())
-    words = f"from {_volts(low if low > _NOTHING * high else 0.0)} to {_volts(high)} rms"
-    if result.design.chip.view == "plan":
-        return f"Along the dotted line, where forces are taken, the field runs {words}."
-    height = format_quantity(result.design.task.force_height, "um", 3)
-    return (
-        f"Along the dotted line, {height} up, the field runs {words}; at the edge of an electrode "
-        "it has no greatest value."
-    )
-
-
-def _volts(field: float) -> str:
-    return format_si(field, "V/m")
-
-
-def force_sentence(result: Evaluation, maps: SectionMaps, particle: Particle) -> str:
-    """Say where the force leads and what the arrows mean."""
-    most = longest_force(maps, particle, result)
-    if most == 0.0:
-        return f"No force acts on {particle.name} where its centre can be."
-    factor = complex(result.point.polarisation(particle)[0]).real
-    where = "towards strong field" if factor > 0 else "towards weak field"
-    return (
-        f"{particle.name}, drawn to scale, is led {where} (Re K {_signed(factor)}). The longest "
-        f"arrow is {format_si(most, 'N')}; each quarter less is a tenth of it."
-    )
-
-
-def _signed(value: float) -> str:
-    return f"{value:.2f}".replace("-", "−")
-
-
-def temperature_sentence(result: Evaluation, maps: SectionMaps) -> str:
-    """Say where it is hottest."""
-    if result.temperature_rise is None:
-        return NO_HEAT
-    grid = maps.patterns.whole
-    row, _ = np.unravel_index(int(np.nanargmax(maps.rise)), maps.rise.shape)
-    stage = format_quantity(result.design.liquid.temperature, "degC", 3)
-    rise = format_si(result.temperature_rise, "K")
-    if result.design.chip.view == "plan":
-        return f"The hottest liquid is {rise} above the stage at {stage}."
-    height = format_quantity(float(grid.y[row]), "um", 2)
-    floor = np.interp(0.0, grid.y, np.nanmax(maps.rise, axis=1))
-    words = (
-        f"The hottest liquid, {height} up, is {rise} above the stage at {stage}, "
-        f"the floor beneath it {format_si(float(floor), 'K')}"
-    )
-    return f"{words}; {_with_growth(result, result.temperature_rise)}."
-
-
-def _with_growth(result: Evaluation, linear: float) -> str:
-    """What the map leaves out: warm liquid conducts better."""
-    grown = result.self_consistent_rise
-    if grown is None:
-        return "as warm liquid conducts better, no temperature would be steady"
-    if grown < _NOTABLE * linear:
-        return "that warm liquid conducts better adds next to nothing"
-    return f"as warm liquid conducts better, the hottest grows to {format_si(grown, 'K')}"
-
-
-def flow_sentence(result: Evaluation, maps: SectionMaps) -> str:
-    """Say how fast heat stirs the liquid, beside the flow that is pumped."""
-    if not result.patterns.has_heat:
-        return NO_HEAT
-    speed = format_si(float(np.nanmax(np.hypot(*maps.velocity))), "m/s")
-    words = f"Heat stirs the liquid at up to {speed}; lines close together mean fast flow."
-    if result.design.chip.view == "plan":
-        return words
-    height = result.design.task.force_height
-    pumped = format_si(result.point.flow_speed(height), "m/s")
-    return (
-        f"{words} The pumped flow, not drawn, runs at {pumped} "
-        f"{format_quantity(height, 'um', 3)} up."
-    )

@@ -14,12 +14,14 @@ from webapp.figures.panel import MICRO, frame
 from webapp.figures.section import (
     default_place,
     field_figure,
-    field_sentence,
     flow_figure,
-    flow_sentence,
     force_figure,
-    force_sentence,
     temperature_figure,
+)
+from webapp.figures.section_words import (
+    field_sentence,
+    flow_sentence,
+    force_sentence,
     temperature_sentence,
 )
 from webapp.figures.share import share_figure, share_sentence
