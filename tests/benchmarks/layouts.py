@@ -7,63 +7,52 @@ import numpy as np
 from threadpoolctl import threadpool_limits
 
 from model.fields.patterns import ChipPatterns
-from model.fields.solve import solve_chip
+from model.fields.solve import WATER, solve_chip
 from model.layouts import LAYOUTS
 from tests.field_maps import SOLVED
 from tests.model.test_layouts import EXAMPLES
+from tests.reference.independent import FINE, Solution
+from tests.reference.independent_chips import PROBLEMS
 
-#: Levels of refinement; the last one, which takes a minute, is what the others are compared with.
-LEVELS = (0, 1, 2)
+LEVELS = (0, 1)
 #: Places of which errors are told.
 PLACES = 10
 
-
-def places(patterns: ChipPatterns) -> tuple[np.ndarray, np.ndarray]:
-    """Draw places over one period, from a tenth of the height up."""
-    rng = np.random.default_rng(1)
-    x = rng.uniform(0, patterns.period or patterns.length, PLACES)
-    return x, rng.uniform(0.1, 0.9, PLACES) * patterns.height
-
-
-def square(patterns: ChipPatterns) -> np.ndarray:
-    """|Ê|² at the places."""
-    return np.sum(np.abs(patterns.electric_field(*places(patterns))) ** 2, axis=0)
-
-
-def flow(patterns: ChipPatterns) -> np.ndarray:
-    """Both flows at the places."""
-    return np.array(patterns.electrothermal(*places(patterns)))
-
-
-#: What is compared, each as a number or an array.
-QUANTITIES: dict[str, Callable[[ChipPatterns], object]] = {
-    "cell factor": lambda patterns: patterns.cell_factor,
-    "E²": square,
-    "hottest place": lambda patterns: patterns.peak_temperature,
-    "flow": flow,
+Solved = ChipPatterns | Solution
+#: What is compared, each as a number or an array, at places (2, n).
+QUANTITIES: dict[str, Callable[[Solved, np.ndarray], object]] = {
+    "cell factor": lambda solved, at: solved.cell_factor,
+    "E²": lambda solved, at: np.sum(np.abs(solved.electric_field(*at)) ** 2, axis=0),
+    "∇E²": lambda solved, at: solved.gradient_e2(*at),
+    "heat": lambda solved, at: solved.temperature(*at),
+    "flow": lambda solved, at: solved.electrothermal(*at),
 }
 
 
 def rows(name: str) -> Iterable[str]:
     """One row for each mesh of the last example of a layout."""
     chip = LAYOUTS[name](**EXAMPLES[name][-1])
-    found, seconds = [], []
+    exact = Solution(PROBLEMS[name](chip, WATER), FINE)
+    first = None
     for level in LEVELS:
         start = time.process_time()
-        found.append(solve_chip(chip, refinement=level))
-        seconds.append(time.process_time() - start)
-    for level, patterns in zip(LEVELS[:-1], found, strict=False):
+        patterns = solve_chip(chip, refinement=level)
+        seconds = time.process_time() - start
+        first = first or seconds
         cells = chip.section(level).mesh.nelements
-        ratio = seconds[level] / seconds[0]
-        yield f"| {name} | {level} | {cells} | {ratio:.1f} | {_errors(patterns, found[-1])} |"
+        yield f"| {name} | {level} | {cells} | {seconds / first:.1f} | {_errors(patterns, exact)} |"
 
 
-def _errors(patterns: ChipPatterns, finest: ChipPatterns) -> str:
-    """Greatest errors as shares of the largest value."""
+def _errors(patterns: ChipPatterns, exact: Solution) -> str:
+    """Greatest errors as shares of the largest value, a tenth of the height from floor and lid."""
+    rng = np.random.default_rng(1)
+    at = rng.uniform(0, 1, (2, PLACES))
+    at[0] *= patterns.period or patterns.length
+    at[1] = (0.1 + 0.8 * at[1]) * patterns.height
     shown = []
     for quantity in QUANTITIES.values():
-        value, exact = np.asarray(quantity(patterns)), np.asarray(quantity(finest))
-        shown.append(f"{np.abs(value - exact).max() / np.abs(exact).max():.0e}")
+        found, true = (np.asarray(quantity(solved, at)) for solved in (patterns, exact))
+        shown.append(f"{np.abs(found - true).max() / np.abs(true).max():.0e}")
     return " | ".join(shown)
 
 

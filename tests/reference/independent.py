@@ -8,8 +8,8 @@ implementation of finite elements in NGSolve*, ASC report 30/2014, TU Wien.
 """
 
 from collections.abc import Mapping
-from dataclasses import dataclass
-from functools import reduce
+from dataclasses import dataclass, field
+from functools import cached_property, reduce
 from operator import add
 
 import ngsolve as ng
@@ -21,6 +21,8 @@ UNIT = 1e-6
 #: Share by which the liquid yields to pressure, whose constant would else be left open; the flow
 #: changes by about as much.
 YIELD = 1e-9
+#: Sides of a plan where the flow through the channel enters and leaves.
+ENDS = ("inlet", "outlet")
 Place = tuple[float, float]
 
 
@@ -42,7 +44,7 @@ class Side:
 
 @dataclass(frozen=True)
 class Problem:
-    """A whole period of a chip, lengths in µm.
+    """A whole period of a chip, or all of it in plan, lengths in µm.
 
     Parameters
     ----------
@@ -50,6 +52,8 @@ class Problem:
         All boundaries.
     singular
         Places where metal ends, and the shortest length beside each.
+    near
+        Places where the boundary bends, and the longest cell there.
     longest
         Longest cell of each material.
     potentials
@@ -59,12 +63,17 @@ class Problem:
     outsides
         Heat-transfer coefficient of each side over the liquid's thermal conductivity, 1/µm; None
         holds it at 0.
-    start, period
-        Where the piece begins along x, and its length.
     length
         What scales the flow patterns: the pitch.
     shares
         How many gaps or pitches of the chip's cell factor it holds.
+    start, period
+        Where the piece begins along x, and its length; None if it does not repeat.
+    sink, friction
+        In plan, heat that leaves through floor and lid over the liquid's thermal conductivity, and
+        12/h² for the drag of both, 1/µm².
+    depth
+        In plan, of the liquid.
     """
 
     sides: tuple[Side, ...]
@@ -73,10 +82,14 @@ class Problem:
     potentials: Mapping[str, complex]
     conductors: Mapping[str, float]
     outsides: Mapping[str, float | None]
-    start: float
-    period: float
     length: float
     shares: int
+    start: float = 0.0
+    period: float | None = None
+    sink: float = 0.0
+    friction: float = 0.0
+    depth: float | None = None
+    near: Mapping[Place, float] = field(default_factory=dict)
 
 
 @dataclass(frozen=True)
@@ -103,8 +116,11 @@ def mesh_of(problem: Problem, fineness: Fineness) -> ng.Mesh:
 
     def point(place: Place) -> int:
         if place not in points:
-            size = problem.singular.get(place)
-            marks = {} if size is None else {"maxh": CELL * size, "hpref": 1}
+            marks = {}
+            if place in problem.singular:
+                marks = {"maxh": CELL * problem.singular[place], "hpref": 1}
+            elif place in problem.near:
+                marks = {"maxh": problem.near[place]}
             points[place] = geometry.AppendPoint(*place, **marks)
         return points[place]
 
@@ -140,13 +156,13 @@ class Solution:
             components.append({name: phasor.imag for name, phasor in phasors.items()})
         self._potentials = [self._solve_potential(levels) for levels in components]
         fields = [-ng.grad(potential) for potential in self._potentials]
-        self._square = reduce(add, [field * field for field in fields])
+        self._square = reduce(add, [one * one for one in fields])
         self._heat = self._solve_heat(self._square)
         rise = ng.grad(self._heat)
-        forces = [reduce(add, [(rise * field) * field for field in fields]), self._square * rise]
+        forces = [reduce(add, [(rise * one) * one for one in fields]), self._square * rise]
         if len(fields) == 2:
             forces.append((rise * fields[1]) * fields[0] - (rise * fields[0]) * fields[1])
-        self._flows = self._solve_flows(forces)
+        self._flows = self._solve_flows(forces, self._walls)
 
     @property
     def components(self) -> int:
@@ -165,13 +181,13 @@ class Solution:
 
     def gradient_e2(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
         """∇|Ê|² = 2 Re (Ê*·∂ᵢÊ), (2, …), 1/m³."""
-        field, rise = self.electric_field(x, y), self._rise(x, y)
-        return 2 * np.einsum("i...,ij...->j...", field.conj(), rise).real
+        here, rise = self.electric_field(x, y), self._rise(x, y)
+        return 2 * np.einsum("i...,ij...->j...", here.conj(), rise).real
 
     def travelling(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
         """2(Ê₀·∂ᵢÊ₁ − Ê₁·∂ᵢÊ₀) = 2 Im (Ê*·∂ᵢÊ), (2, …), 1/m³."""
-        field, rise = self.electric_field(x, y), self._rise(x, y)
-        return 2 * np.einsum("i...,ij...->j...", field.conj(), rise).imag
+        here, rise = self.electric_field(x, y), self._rise(x, y)
+        return 2 * np.einsum("i...,ij...->j...", here.conj(), rise).imag
 
     def temperature(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
         """Θ, the shape of the places."""
@@ -186,6 +202,19 @@ class Solution:
         """U₃, (2, …)."""
         return self._at(self._flows[2], x, y) * self.problem.length
 
+    def flow_through(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
+        """Mean velocity over the depth in plan for a flow rate of 1, (2, …), 1/m²."""
+        return self._at(self._through, x, y) / UNIT**2
+
+    @cached_property
+    def _through(self) -> ng.CoefficientFunction:
+        """Pushed by a pressure that falls evenly, straight across both ends, 1/µm²."""
+        beside = "|".join(set(self._walls.split("|")) - set(ENDS))
+        push = ng.CoefficientFunction((1.0, 0.0))
+        (flow,) = self._solve_flows([push], beside, across="|".join(ENDS))
+        rate = ng.Integrate(flow[0] * ng.ds(ENDS[0]), self.mesh) * self.problem.depth
+        return flow / rate
+
     def _rise(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
         """∂Êᵢ/∂xⱼ, (2, 2, …), 1/m²."""
         parts = [-self._at(part.Operator("hesse"), x, y) / UNIT**2 for part in self._potentials]
@@ -195,14 +224,16 @@ class Solution:
     def _at(self, function: ng.CoefficientFunction, x: np.ndarray, y: np.ndarray) -> np.ndarray:
         """Values at places of one shape, components first."""
         start, period = self.problem.start, self.problem.period
-        place = start + (np.ravel(x) / UNIT - start) % period
+        place = np.ravel(x) / UNIT
+        if period is not None:
+            place = start + (place - start) % period
         values = np.array(function(self.mesh(place, np.ravel(y) / UNIT)))
         return values.reshape(np.size(x), -1).T.reshape(-1, *np.shape(x))
 
     def _solve_potential(self, levels: Mapping[str, float]) -> ng.GridFunction:
         """∇²φ = 0 in the liquid, φ held on the electrodes."""
         metal = "|".join(levels)
-        space = ng.Periodic(
+        space = self._joined(
             ng.H1(self.mesh, order=self.degree, definedon="liquid", dirichlet=metal)
         )
         held = ng.GridFunction(space)
@@ -215,24 +246,33 @@ class Solution:
         """−∇·(k/k_liquid·∇Θ) = |Ê|² in the liquid, films outside."""
         outsides = self.problem.outsides
         held = "|".join(name for name, film in outsides.items() if film is None)
-        space = ng.Periodic(ng.H1(self.mesh, order=self.degree, dirichlet=held))
+        space = self._joined(ng.H1(self.mesh, order=self.degree, dirichlet=held))
         u, v = space.TnT()
         conductor = self.mesh.MaterialCF(dict(self.problem.conductors))
         form = ng.BilinearForm(conductor * ng.grad(u) * ng.grad(v) * ng.dx, condense=True)
+        form += self.problem.sink * u * v * ng.dx
         for name, film in outsides.items():
             if film:
                 form += film * u * v * ng.ds(name)
         load = ng.LinearForm(density * v * ng.dx("liquid", bonus_intorder=self.degree))
         return _solved(form, [load])[0]
 
-    def _solve_flows(self, forces: list[ng.CoefficientFunction]) -> list[ng.GridFunction]:
-        """−∇²w + ∇p = f, ∇·w = 0, at rest on all walls; Taylor–Hood elements."""
+    def _solve_flows(
+        self, forces: list[ng.CoefficientFunction], walls: str, across: str = ""
+    ) -> list[ng.GridFunction]:
+        """−∇²w + g·w + ∇p = f, ∇·w = 0; Taylor–Hood elements.
+
+        At rest on `walls`; straight across the sides `across`, which stand along y, where p = 0.
+        """
         degree, where = self.degree - 1, {"definedon": "liquid"}
-        velocity = ng.VectorH1(self.mesh, order=degree, dirichlet=self._walls, **where)
+        held = {"dirichlet": walls}
+        if across:
+            held = {"dirichletx": walls, "dirichlety": f"{walls}|{across}"}
+        velocity = ng.VectorH1(self.mesh, order=degree, **held, **where)
         pressure = ng.H1(self.mesh, order=degree - 1, **where)
-        space = ng.Periodic(velocity) * ng.Periodic(pressure)
+        space = self._joined(velocity) * self._joined(pressure)
         (u, p), (v, q) = space.TnT()
-        viscous = ng.InnerProduct(ng.Grad(u), ng.Grad(v))
+        viscous = ng.InnerProduct(ng.Grad(u), ng.Grad(v)) + self.problem.friction * u * v
         sources = ng.div(u) * q + ng.div(v) * p + YIELD * p * q
         form = ng.BilinearForm((viscous - sources) * ng.dx("liquid"), condense=True)
         loads = [
@@ -240,6 +280,10 @@ class Solution:
             for force in forces
         ]
         return [found.components[0] for found in _solved(form, loads)]
+
+    def _joined(self, space: ng.FESpace) -> ng.FESpace:
+        """The space with sides that repeat one another made one."""
+        return space if self.problem.period is None else ng.Periodic(space)
 
     @property
     def _walls(self) -> str:
