@@ -217,3 +217,24 @@ def test_two_wide_electrodes_and_a_narrow_gap():
     r = 30 * UM
     ex, ey = chip.electric_field(centre + r * np.cos(angle), r * np.sin(angle))
     np.testing.assert_allclose(np.hypot(ex, ey) * r, 1 / np.pi, rtol=3e-3)
+
+
+def test_two_half_planes():
+    """Bars so wide that each gap stands alone: E = V/(π·√(z² − g²/4)), z from its middle.
+
+    Near the gap 2V/(πg) = 0.63662 V/g in its middle, and V/(πr) at a distance r that is far from
+    the gap and near against the bars (exact; the second as in Ramos et al. 1998 J. Phys. D
+    31:2338). A hundredth of the pitch away the neighbouring gaps change it by (πr/p)²/6.
+    """
+    gap, width = 1 * UM, 1000 * UM
+    patterns = solve_chip(bars(width, gap, 2000 * UM))
+    middle = 0.5 * (width + gap)
+    along, up = patterns.electric_field(middle, 0.0)
+    assert np.hypot(along, up) * gap == pytest.approx(2 / np.pi, rel=1e-3)
+    turns = np.radians([20.0, 45.0, 90.0, 130.0])
+    for distance in np.array([0.9, 3.0, 12.0]) * UM:
+        z = distance * np.exp(1j * turns)
+        field = np.hypot(*patterns.electric_field(middle + z.real, z.imag))
+        exact = 1 / (np.pi * np.abs(np.sqrt(z**2 - 0.25 * gap**2)))
+        np.testing.assert_allclose(field, exact, rtol=1e-3)
+    np.testing.assert_allclose(field, 1 / (np.pi * distance), rtol=2e-3)
