@@ -123,8 +123,11 @@ def check_mirrors(case):
             assert np.abs(before - after).max() < 1e-4 * scale
 
 
-def check_through_flow(case):
-    """The flow rate passes every x, is slow at solid sides, and no heat pumps the liquid."""
+def check_through_flow(case, uneven=2e-3):
+    """The flow rate passes every x, is slow at solid sides, and no heat pumps the liquid.
+
+    `uneven` is what heat may seem to pump through any x, as a share of all that moves there.
+    """
     chip, patterns = case.chip, case.patterns
     rates = np.array([flux(case, x, patterns.flow_through) for x in columns(case)])
     np.testing.assert_allclose(rates[:, 0] * chip.depth, 1.0, rtol=1e-3)
@@ -132,7 +135,7 @@ def check_through_flow(case):
     for which in (0, 1):
         driven = partial(flow_pattern, patterns, which)
         net, gross = np.array([flux(case, x, driven) for x in columns(case)]).T
-        assert np.abs(net).max() < 2e-3 * gross.max()
+        assert np.abs(net).max() < uneven * gross.max()
     across = np.linspace(0, 0.499, 101) * chip.channel_width
     speeds = patterns.flow_through(-0.49 * window(case)[0], across)[0]
     assert speeds[-1] < 0.1 * speeds.max()

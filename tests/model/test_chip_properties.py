@@ -4,6 +4,7 @@ The lengths of the examples in ``test_layouts.py`` are each made up to three tim
 shorter, which keeps the chips within what is built; extremes have tests of their own.
 """
 
+from functools import partial
 from itertools import pairwise
 
 import numpy as np
@@ -39,6 +40,10 @@ from tests.model.test_layouts import (
 #: Times as long or short as in the example at most.
 STRETCH = 3.0
 FACTORS = st.floats(-1, 1).map(lambda power: STRETCH**power)
+#: Shares that flows may be off by. In low channels with wide bars, and far from poles, the mesh is
+#: coarse along the flow: a level of refinement lowers UNEVEN tenfold. Around corners of 270° the
+#: slopes are infinite, and so are sources beside them.
+SOURCES, UNEVEN = 3e-2, 1e-2
 EVERY = pytest.mark.parametrize("name", SOLVED)
 
 
@@ -84,11 +89,11 @@ def cases(name):
 @EVERY
 def test_balances_and_symmetry_of_any_chip(name):
     """Current and heat in are current and heat out, flow has no sources, ports are reciprocal."""
-    checks = [check_current, check_heat, check_flow, check_ports]
+    checks = [check_current, check_heat, partial(check_flow, sources_allowed=SOURCES), check_ports]
     if LAYOUTS[name].view == "plan":
-        checks += [check_mirrors, check_through_flow]
+        checks += [check_mirrors, partial(check_through_flow, uneven=UNEVEN)]
     else:
-        checks += [check_symmetry, check_even_flow]
+        checks += [check_symmetry, partial(check_net_flow, uneven=UNEVEN)]
     if issubclass(LAYOUTS[name], Bars):
         checks.append(check_current_of_a_bar)
 
@@ -99,11 +104,6 @@ def test_balances_and_symmetry_of_any_chip(name):
             check(case)
 
     checked()
-
-
-def check_even_flow(case):
-    """In low channels with wide bars and gaps the mesh of the flow is coarse along x."""
-    check_net_flow(case, uneven=1e-2)
 
 
 def check_current_of_a_bar(case):
