@@ -115,6 +115,15 @@ class Circuit:
         return np.asarray(self.lead_share * self._behind_interface)
 
     @cached_property
+    def heat_share(self) -> Real:
+        """Heat in the liquid over that without leads and interface, at the same voltage.
+
+        At least |share|²: the current that the interface leaves also takes other paths.
+        """
+        heat = self.patterns.response.energy(self.length)
+        return np.asarray(np.abs(self.lead_share) ** 2 * heat)
+
+    @cached_property
     def _largest_drop(self) -> Real:
         """Largest amplitude across interface and film per volt between the terminals.
 

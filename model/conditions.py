@@ -188,11 +188,13 @@ class Conditions:
 
     @property
     def electrothermal_scale(self) -> Real:
-        """From weighted flow patterns to speed: εσ|share|⁴·duty²/(kηL), K m/s per V⁴."""
+        """Flow patterns to speed: εσ·|share|²·heat share·duty²/(kηL), K m/s per V⁴."""
         liquid = self.liquid
         scale = liquid.permittivity * self.conductivity * self.design.drive.duty**2
         scale = scale / (self.patterns.thermal_conductivity * liquid.viscosity)
-        return np.asarray(scale * self._square_share**2 / self.patterns.length)
+        return np.asarray(
+            scale * self._square_share * self.circuit.heat_share / self.patterns.length
+        )
 
     @cached_property
     def electrothermal_speed(self) -> Real:
@@ -213,9 +215,9 @@ class Conditions:
 
     @property
     def heat_scale(self) -> Real:
-        """From Θ to temperature rise at the stage's conductivity: duty · σ/k · |share|², K/V²."""
+        """From Θ to temperature rise at the stage's conductivity: duty · σ/k · heat share, K/V²."""
         scale = self.design.drive.duty / self.patterns.thermal_conductivity
-        return np.asarray(scale * self.conductivity * self._square_share)
+        return np.asarray(scale * self.conductivity * self.circuit.heat_share)
 
     @cached_property
     def electro_osmotic_speed(self) -> Real | None:

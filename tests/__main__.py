@@ -1,10 +1,12 @@
 """Every check that a change must pass, in one command: ``python -m tests``."""
 
+import os
 import shutil
 import subprocess
 import sys
 
 CHROMIUM = ("chromium", "chromium-browser", "google-chrome", "google-chrome-stable")
+_PYTEST = ["-m", "pytest", "-q", "--durations", "15"]
 CHECKS = (
     ("format", ["-m", "ruff", "format", "--check", "."]),
     ("lint", ["-m", "ruff", "check", "."]),
@@ -13,8 +15,12 @@ CHECKS = (
         "import contracts",
         ["-c", "import sys, importlinter.cli as cli; sys.exit(cli.lint_imports_command())"],
     ),
-    ("tests", ["-m", "pytest", "-q"]),
+    # one file to a process, as each solves its chips but once
+    ("tests", [*_PYTEST, "-m", "not browser", "-n", "auto", "--dist", "loadfile"]),
+    ("browser tests", [*_PYTEST, "-m", "browser"]),
 )
+#: Each process on one thread of linear algebra, as a second gains nothing.
+_SETTING = {**os.environ, "OMP_NUM_THREADS": "1", "OPENBLAS_NUM_THREADS": "1"}
 
 
 def main() -> int:
@@ -31,7 +37,7 @@ def main() -> int:
     failed = []
     for name, arguments in CHECKS:
         print(f"== {name}", flush=True)
-        if subprocess.run([sys.executable, *arguments], check=False).returncode:
+        if subprocess.run([sys.executable, *arguments], check=False, env=_SETTING).returncode:
             failed.append(name)
     print(f"failed: {', '.join(failed)}" if failed else "all checks passed")
     return 1 if failed else 0

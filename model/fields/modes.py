@@ -102,6 +102,12 @@ class Modes(Stored):
         """Current with the interface over current without; see :meth:`answers`."""
         return np.asarray(self.answers(length, self.shapes[:0])[0])
 
+    def energy(self, length: Complex) -> Real:
+        """∫|∇φ|² over that without interface, Σ c²λ/|1 + λℓ|²: the share of the heat."""
+        weights = self.parts**2 * self.rates / self.conductance
+        rates = self.rates.reshape(-1, *[1] * np.ndim(length))
+        return np.asarray(np.tensordot(weights, 1.0 / np.abs(1.0 + rates * length) ** 2, 1))
+
     def drop(self, length: Complex) -> Complex:
         """Voltage across the interface at all places; see :meth:`answers`."""
         return self.answers(length, self.shapes)[1:]

@@ -67,6 +67,11 @@ class ElectrodeResponse(Stored):
         """Admittance with the interface over that without, complex."""
         return self._answers(length, slice(0))[0]
 
+    def energy(self, length: Complex) -> Real:
+        """Heat in the liquid with the interface over that without; at least |share|²."""
+        parts = [modes.conductance * modes.energy(length) for modes in self.components]
+        return np.asarray(sum(parts) / self.conductance)
+
     def drop(self, length: Complex) -> Complex:
         """Voltage across the interface at every place, (n, …), per volt between opposite phases."""
         return self._answers(length, slice(None))[1]

@@ -189,3 +189,23 @@ def test_the_double_layer_is_a_limit(yeast, patterns, vary):
     row = next(row for row in result.ledger if row.rule.id == "double_layer_voltage")
     assert row.value == pytest.approx(0.75, rel=5e-3)
     assert row.headroom == pytest.approx(1 / row.value)
+
+
+def test_what_the_generator_gives_warms_the_liquid(yeast, patterns, vary):
+    """Where neither layers, walls nor leads dissipate, all power is the liquid's heat."""
+    still = {f"chip.{wall}.conductivity": "0 S/m" for wall in ("floor", "lid")}
+    design = vary(yeast, still)
+    at = circuit(design, patterns, np.geomspace(1, 1e8, 30))
+    conductance = design.liquid.conductivity * patterns.cell_factor * design.chip.parallel_length
+    np.testing.assert_allclose(at.admittance.real, conductance * at.heat_share, rtol=1e-6)
+    assert np.all(at.heat_share >= np.abs(at.share) ** 2 * (1 - 1e-12))
+
+
+def test_leads_take_their_share_of_the_heat(yeast, patterns, vary):
+    """I²R of the leads and the liquid's heat are the whole power."""
+    changes = {f"chip.{wall}.conductivity": "0 S/m" for wall in ("floor", "lid")}
+    design = vary(yeast, {**changes, "electrode.lead_resistance": "120 ohm"})
+    at = circuit(design, patterns, np.geomspace(1e3, 1e7, 9))
+    conductance = design.liquid.conductivity * patterns.cell_factor * design.chip.parallel_length
+    heat = conductance * at.heat_share + 120 * np.abs(at.admittance) ** 2
+    np.testing.assert_allclose(at.admittance.real, heat, rtol=1e-6)

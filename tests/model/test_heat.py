@@ -6,15 +6,22 @@ import pytest
 from model.evaluate import evaluate
 from model.fields.solve import solve_chip
 
-#: A chip whose heat leaves evenly and slowly: the liquid is as warm everywhere.
+#: A chip whose heat leaves evenly and slowly: the liquid is as warm everywhere. Its walls carry no
+#: current, whose heat would come on top of the liquid's.
 POOR = {
     "chip.floor": {
         "material": "silicon",
         "thickness": "20 um",
         "outside": "transfer",
         "heat_transfer_coefficient": "40 W/m^2/K",
+        "conductivity": "0 S/m",
     },
-    "chip.lid": {"material": "silicon", "thickness": "20 um", "outside": "insulated"},
+    "chip.lid": {
+        "material": "silicon",
+        "thickness": "20 um",
+        "outside": "insulated",
+        "conductivity": "0 S/m",
+    },
     "liquid.temperature": "25 degC",
 }
 STORAGE = 997.0476 * 4181.32  # J/(m³ K), water at 25 °C, IAPWS-95

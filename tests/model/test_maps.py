@@ -49,8 +49,8 @@ def test_the_field_is_the_pattern_times_the_voltage_in_the_liquid(result, maps):
 def test_the_rise_is_that_of_ohmic_heat_over_the_duty(result, maps):
     x, y, places = at_nodes(maps.patterns.whole)
     design, patterns = result.design, result.patterns
-    volts = liquid_volts(result)
-    scale = 0.5 * design.liquid.conductivity * volts**2 / patterns.thermal_conductivity
+    power = result.point.circuit.heat_share[0] * result.rms_voltage**2
+    scale = 0.5 * design.liquid.conductivity * power / patterns.thermal_conductivity
     np.testing.assert_allclose(maps.rise[places], scale * patterns.temperature(x, y), rtol=1e-6)
 
 

@@ -149,7 +149,7 @@ def test_reciprocity():
 def test_modes_are_kept_small_and_read_only():
     few = solved("plate")[2]
     again = pickle.loads(pickle.dumps(few))
-    assert len(pickle.dumps(few)) < 100_000
+    assert len(pickle.dumps(few)) < 200_000  # with what slips along electrodes are made of
     np.testing.assert_array_equal(again.rates, few.rates)
     with pytest.raises(ValueError, match="read-only"):
         again.rates[0] = 0.0
