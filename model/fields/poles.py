@@ -1,6 +1,5 @@
 """Mesh of the liquid around one of four poles, a quarter of the plan."""
 
-import math
 from dataclasses import dataclass
 
 import numpy as np
@@ -78,12 +77,12 @@ def pole_quarter(pole: Pole, refinement: int = 0) -> Mesh:
 
 def _blocks(pole: Pole) -> list[Real]:
     """Blocks between the pole, the axes, the end and the wall."""
-    back, waist = pole.back, pole.waist
+    tip, back, waist = pole.tip, pole.back, pole.waist
     rear = BACK_CELL * min(waist, pole.width)
     shares = _toward_one(rear / waist if pole.hyperbolic else TIP_CELL)
     face = _face(pole)
     corner = face[0]
-    beyond = back + march(pole.reach - back, rear, _freely)
+    beyond = back + march(pole.reach - back, rear, lambda far: max(0.3 * tip, far))
     inner = shares * corner[0]
     blocks = [
         ruled(_row(inner, 0.0), _row(inner, corner[1]), shares),
@@ -93,7 +92,7 @@ def _blocks(pole: Pole) -> list[Real]:
     ]
     beside = pole.half_width - back
     if beside > 0:
-        above = back + march(beside, min(rear, 0.2 * beside), _freely)
+        above = back + march(beside, min(rear, 0.2 * beside), lambda far: max(0.3 * tip, far))
         across = _flank(pole, rear)
         blocks += [
             ruled(_column(0.0, above), _column(waist, above), shares),
@@ -104,11 +103,6 @@ def _blocks(pole: Pole) -> list[Real]:
     else:
         blocks.append(rectangle(beyond, _flank(pole, rear)))
     return blocks
-
-
-def _freely(distance: float) -> float:
-    """No limit to the growth of cells: far from the poles the field dies out."""
-    return math.inf
 
 
 def _toward_one(first: float) -> Real:
