@@ -6,7 +6,8 @@ import subprocess
 import sys
 
 CHROMIUM = ("chromium", "chromium-browser", "google-chrome", "google-chrome-stable")
-_PYTEST = ["-m", "pytest", "-q", "--durations", "15"]
+#: One file to a process, as each solves its chips but once; browsers wait for a quiet machine.
+_PYTEST = ["-m", "pytest", "-q", "--durations", "15", "-n", "auto", "--dist", "loadfile"]
 CHECKS = (
     ("format", ["-m", "ruff", "format", "--check", "."]),
     ("lint", ["-m", "ruff", "check", "."]),
@@ -15,8 +16,7 @@ CHECKS = (
         "import contracts",
         ["-c", "import sys, importlinter.cli as cli; sys.exit(cli.lint_imports_command())"],
     ),
-    # one file to a process, as each solves its chips but once
-    ("tests", [*_PYTEST, "-m", "not browser", "-n", "auto", "--dist", "loadfile"]),
+    ("tests", [*_PYTEST, "-m", "not browser"]),
     ("browser tests", [*_PYTEST, "-m", "browser"]),
 )
 #: Each process on one thread of linear algebra, as a second gains nothing.
