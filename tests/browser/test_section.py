@@ -161,14 +161,14 @@ def test_sketched_panels_are_the_picture_that_the_full_drawing_gives(section):
             assert here == pytest.approx(there, abs=1.5), name
 
 
-@pytest.mark.parametrize("name", [*PANELS, "impedance", "share"])
-def test_panels_save_as_pictures(section, name):
-    with section.expect_download() as download:
-        section.locator(f'button.export[data-figure="{name}"][data-format="svg"]').click()
-    with open(download.value.path(), encoding="utf-8") as file:
-        text = file.read()
-    assert shown_fingerprint(section) in text
-    assert ("<image" in text) == (name in ("field-map", "temperature-map"))
+def test_panels_save_as_pictures(section):
+    for name in (*PANELS, "impedance", "share"):
+        with section.expect_download() as download:
+            section.locator(f'button.export[data-figure="{name}"][data-format="svg"]').click()
+        with open(download.value.path(), encoding="utf-8") as file:
+            text = file.read()
+        assert shown_fingerprint(section) in text
+        assert ("<image" in text) == (name in ("field-map", "temperature-map"))
 
 
 def test_the_drawing_follows_the_typed_lengths(page):
