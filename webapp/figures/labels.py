@@ -68,8 +68,8 @@ def place_labels(wishes: Sequence[Wish], lines: Sequence[tuple[Real, Real]]) -> 
 
 
 def _dense(x: Real, y: Real) -> Real:
-    """Points of a curve in pixels, with three more in each step so that steep ones count too."""
-    steps = np.arange(4 * (x.size - 1) + 1) / 4.0
+    """Points of a curve in pixels, with one more in each step so that steep ones count too."""
+    steps = np.arange(2 * (x.size - 1) + 1) / 2.0
     index = np.arange(x.size)
     points = np.stack([np.interp(steps, index, x) * WIDTH, np.interp(steps, index, y) * HEIGHT])
     return points[:, (points[1] > -LINE) & (points[1] < HEIGHT + LINE)]
@@ -94,7 +94,7 @@ def _covered_points(spots: Real, drawn: Real) -> Real:
     """Weight of the curve points under each box."""
     left, low, right, high = spots.T[:, :, np.newaxis]
     x, y = drawn
-    return 0.025 * ((x > left) & (x < right) & (y > low) & (y < high)).sum(axis=1)
+    return 0.05 * ((x > left) & (x < right) & (y > low) & (y < high)).sum(axis=1)
 
 
 def _covered_names(spots: Real, boxes: Sequence[Real]) -> Real:
