@@ -112,14 +112,3 @@ class LiquidHeat:
         """Mean of Θ over the liquid."""
         weights = self.functions.weights[self.liquid]
         return float((weights * self.warmth(solution)).sum() / weights.sum())
-
-
-def solve_temperature(
-    functions: Space,
-    conductivity: Real,
-    density: Real,
-    cooling: Cooling,
-    sink: float = 0.0,
-) -> Real:
-    """Solve once for a single source; arguments, result and errors as of :func:`conduction`."""
-    return conduction(functions, conductivity, cooling, sink).solve(density)

@@ -9,7 +9,7 @@ from model.fields.assembly import space
 from model.fields.blocks import joined, oriented, rectangle, ruled
 from model.fields.cells import Cells
 from model.fields.flow import FlowSpace, solve_flow
-from model.fields.heat import Cooling, solve_temperature
+from model.fields.heat import Cooling, conduction
 from model.fields.obstacles import post_quarter, ridge_quarter
 from model.fields.piecewise import Piecewise
 from model.fields.poles import Pole, pole_quarter
@@ -119,7 +119,7 @@ def test_heat_that_leaves_across_the_plane():
     conductivity = np.full(functions.mesh.nelements, k)
     density = np.full(functions.weights.shape, q)
     cooling = Cooling({"right": None})
-    solution = solve_temperature(functions, conductivity, density, cooling, sink=g)
+    solution = conduction(functions, conductivity, cooling, g).solve(density)
     cells = Cells.of(functions.mesh)
     x = np.linspace(0, 2, 9)
     at = cells.locate(np.stack([x, np.full_like(x, 0.21)]))
@@ -127,7 +127,7 @@ def test_heat_that_leaves_across_the_plane():
     expected = q / g * (1 - np.cosh(rate * x) / np.cosh(2 * rate))
     found = Piecewise.of(functions, solution[None], cells).values(*at)[0]
     np.testing.assert_allclose(found, expected, atol=1e-4 * q / g)
-    alone = solve_temperature(functions, conductivity, density, Cooling({}), sink=g)
+    alone = conduction(functions, conductivity, Cooling({}), g).solve(density)
     assert float(alone @ functions.constant()) / functions.constant().sum() == pytest.approx(q / g)
 
 

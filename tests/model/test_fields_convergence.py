@@ -9,7 +9,7 @@ from model.fields.cells import Cells
 from model.fields.condensed import CellSystem, factorise
 from model.fields.electric import solve_potential
 from model.fields.flow import FlowSpace, solve_flow
-from model.fields.heat import Cooling, solve_temperature
+from model.fields.heat import Cooling, conduction
 from model.fields.piecewise import Piecewise
 from model.fields.sides import project_on_side
 from model.fields.solve import solve_chip
@@ -115,8 +115,8 @@ def test_place_of_the_highest_value(kind, top):
     mesh = square(kind, 4)
     functions = space(mesh, 4, 10)
     cooling = Cooling({"left": None, "right": (1 - top) / (top - 0.5)})
-    heat = solve_temperature(
-        functions, np.ones(mesh.nelements), np.ones_like(functions.weights), cooling
+    heat = conduction(functions, np.ones(mesh.nelements), cooling).solve(
+        np.ones_like(functions.weights)
     )
     found = Piecewise.of(functions, heat[None], Cells.of(mesh))
     cell, place = found.place_of_highest(np.arange(mesh.nelements))
@@ -144,12 +144,9 @@ def test_temperature(kind, degree):
         mesh = square(kind, count)
         functions = space(mesh, degree, 2 * degree + 4)
         wave = np.sin(np.pi * functions.points[0]) * np.sin(np.pi * functions.points[1])
-        heat = solve_temperature(
-            functions,
-            np.full(mesh.nelements, 0.7),
-            0.7 * 2 * np.pi**2 * wave,
-            Cooling(dict.fromkeys(SIDES)),
-        )
+        heat = conduction(
+            functions, np.full(mesh.nelements, 0.7), Cooling(dict.fromkeys(SIDES))
+        ).solve(0.7 * 2 * np.pi**2 * wave)
         found = Piecewise.of(functions, heat[None], Cells.of(mesh))
         exact = np.sin(np.pi * spots[0]) * np.sin(np.pi * spots[1])
         errors.append(size(found.values(*found.cells.locate(spots))[0] - exact))
@@ -219,7 +216,7 @@ def test_no_steady_state_without_cooling():
     functions = space(mesh, 2, 4)
     density = np.ones_like(functions.weights)
     with pytest.raises(ValueError, match="no side lets heat leave"):
-        solve_temperature(functions, np.ones(4), density, Cooling({"lid": 0.0}))
+        conduction(functions, np.ones(4), Cooling({"lid": 0.0})).solve(density)
 
 
 def test_potential_needs_a_held_side():
@@ -234,8 +231,8 @@ def test_heat_through_two_slabs():
     centre = mesh.p[1, mesh.t].mean(axis=0)
     functions = space(mesh, 2, 6)
     density = np.where(centre < 0.5, 4.0, 0.0)[:, None] * np.ones_like(functions.weights)
-    heat = solve_temperature(
-        functions, np.where(centre < 0.5, 0.5, 2.0), density, Cooling({"lid": 3.0})
+    heat = conduction(functions, np.where(centre < 0.5, 0.5, 2.0), Cooling({"lid": 3.0})).solve(
+        density
     )
     found = Piecewise.of(functions, heat[None], Cells.of(mesh))
     flux = 4.0 * 0.5

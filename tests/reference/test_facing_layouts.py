@@ -27,7 +27,7 @@ from scipy.special import jv
 from model.fields.assembly import space
 from model.fields.cells import Cells
 from model.fields.electric import solve_potential
-from model.fields.heat import Cooling, solve_temperature
+from model.fields.heat import Cooling, conduction
 from model.fields.piecewise import Piecewise
 from model.layouts.bars_under_plate import BarsUnderPlate
 from model.layouts.coplanar_bars import CoplanarBars
@@ -319,12 +319,11 @@ def test_isothermal_electrodes_heat_the_liquid_by_an_eighth(name):
     functions = space(section.liquid(), 7, 14, section.joined)
     potential = solve_potential(functions, section.potentials[0])
     field = potential.gradients()
-    heat = solve_temperature(
+    heat = conduction(
         functions,
         np.full(functions.mesh.nelements, 0.6),
-        0.6 * np.einsum("ckq,ckq->kq", field, field),
         Cooling(dict.fromkeys(section.electrodes)),
-    )
+    ).solve(0.6 * np.einsum("ckq,ckq->kq", field, field))
     cells = Cells.of(functions.mesh)
     both = Piecewise.of(functions, np.stack([potential.solution, heat]), cells)
     highest = float(both.highest(np.arange(functions.mesh.nelements))[1])

@@ -14,7 +14,7 @@ from model.fields.assembly import space
 from model.fields.cells import Cells
 from model.fields.electric import solve_potential
 from model.fields.flow import FlowSpace, solve_flow
-from model.fields.heat import Cooling, solve_temperature
+from model.fields.heat import Cooling, conduction
 from model.fields.piecewise import Piecewise
 from model.layouts.coplanar_bars import CoplanarBars
 
@@ -67,11 +67,8 @@ def solve_half_ring(kind, layers):
     potential = solve_potential(space(mesh, 4, 8), {"right": 0.5, "left": -0.5})
     field = potential.gradients()
     warm = space(mesh, 4, 8)
-    heat = solve_temperature(
-        warm,
-        np.ones(mesh.nelements),
-        np.einsum("ckq,ckq->kq", field, field),
-        Cooling({"right": None, "left": None}),
+    heat = conduction(warm, np.ones(mesh.nelements), Cooling({"right": None, "left": None})).solve(
+        np.einsum("ckq,ckq->kq", field, field)
     )
     slopes = warm.gradients(heat)
     forces = [
@@ -212,11 +209,8 @@ def test_isothermal_bars_heat_the_liquid_by_an_eighth(kind):
     functions = space(mesh, 7, 14)
     potential = solve_potential(functions, section.potentials[0])
     field = potential.gradients()
-    heat = solve_temperature(
-        functions,
-        np.full(mesh.nelements, 0.6),
-        0.6 * np.einsum("ckq,ckq->kq", field, field),
-        Cooling({"bar": None}),
+    heat = conduction(functions, np.full(mesh.nelements, 0.6), Cooling({"bar": None})).solve(
+        0.6 * np.einsum("ckq,ckq->kq", field, field)
     )
     cells = Cells.of(mesh)
     both = Piecewise.of(functions, np.stack([potential.solution, heat]), cells)
