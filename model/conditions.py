@@ -17,6 +17,7 @@ from model.design import Design
 from model.fields.lines import Line
 from model.fields.patterns import UNKNOWN_HEAT, ChipPatterns
 from model.liquid.liquid import LiquidState
+from model.medium import Medium
 from model.motion import drag_parallel, drag_perpendicular
 from model.particle import Particle
 
@@ -61,9 +62,9 @@ class Conditions:
         return self.design.liquid.state
 
     @cached_property
-    def medium(self) -> Complex:
-        """Complex permittivity of the liquid, ε − jσ/ω, F/m."""
-        return np.asarray(self.liquid.permittivity - 1j * self.conductivity / self.omega)
+    def medium(self) -> Medium:
+        """The liquid as particles meet it."""
+        return self.design.liquid.medium(self.omega, self.conductivity)
 
     @cached_property
     def circuit(self) -> Circuit:
@@ -95,12 +96,12 @@ class Conditions:
     def polarisation(self, particle: Particle) -> Complex:
         """Polarisation factor K of a particle, computed once."""
         if particle not in self._kept:
-            self._kept[particle] = particle.polarisation(self.omega, self.medium)
+            self._kept[particle] = particle.polarisation(self.medium)
         return self._kept[particle]
 
     def membrane_gain(self, particle: Particle) -> Real | None:
         """Induced membrane voltage at the pole per outside field, m."""
-        return particle.membrane_gain(self.omega, self.medium)
+        return particle.membrane_gain(self.medium)
 
     def exposure(self, particle: Particle) -> Real:
         """Strongest field that a particle has to endure, 1/m per V rms.

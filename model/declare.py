@@ -69,6 +69,10 @@ class Declared(ABC):
         """Write a value as it stands in a profile."""
         return value
 
+    def shown(self, value: Any) -> str | bool:
+        """What a control shows: text as people write it, or yes and no."""
+        return "" if value is None else str(value)
+
     def allowed(self) -> str:
         """Say what may be entered."""
         return ""
@@ -130,12 +134,68 @@ class Quantity(Declared):
             return None
         return plain_text(value, self.unit) if self.unit else value
 
+    def shown(self, value: Any) -> str | bool:
+        """Write as a person would type it."""
+        if value is None:
+            return ""
+        return format_quantity(value, self.unit).replace("−", "-")
+
     def allowed(self) -> str:
         """Range in the shown unit."""
         low, high = (format_quantity(bound, self.unit) for bound in self.range())
         if self.unit and low.endswith(pretty_unit(self.unit)):
             low = low.removesuffix(pretty_unit(self.unit)).strip()
         return f"from {low} to {high}"
+
+
+@dataclass(frozen=True)
+class Quantities(Quantity):
+    """Several numbers of one kind, e.g. the semi-axes of an ellipsoid; held as a tuple.
+
+    In a profile they are a list; a person may also type them in one line, ``4 × 0.5 × 0.5 um``,
+    where the last unit serves those without one.
+    """
+
+    count: int = field(kw_only=True)
+
+    def read(self, value: Any, from_person: bool) -> Any:
+        """Parse each and check it."""
+        items = _split(value) if isinstance(value, str) else value
+        if not isinstance(items, list | tuple) or len(items) != self.count:
+            raise QuantityError(f"needs {self.count} numbers, each {self.allowed()}")
+        one = super().read
+        return tuple(one(item, from_person) for item in items)
+
+    def text(self, value: Any) -> Any:
+        """Write as a list."""
+        one = super().text
+        return [one(item) for item in value]
+
+    def shown(self, value: Any) -> str | bool:
+        """Write in one line, the unit once.
+
+        >>> axes = Quantities("Semi-axes", "", unit="um", low="1 nm", high="1 mm", count=3)
+        >>> axes.shown((4e-6, 5e-7, 5e-7))
+        '4 × 0.5 × 0.5 µm'
+        """
+        *others, last = (str(super(Quantities, self).shown(item)) for item in value)
+        unit = f" {pretty_unit(self.unit)}"
+        return " × ".join([*(text.removesuffix(unit) for text in others), last])
+
+
+#: What may stand between numbers in one line; a comma or semicolon with a blank behind it.
+_BETWEEN = re.compile(r"\s*(?:×|\bx\b|[,;](?=\s))\s*")
+
+
+def _split(text: str) -> list[str]:
+    """Take a line of numbers apart and give every one a unit if the last has one.
+
+    >>> _split("4 × 0.5 × 0.5 um")
+    ['4 um', '0.5 um', '0.5 um']
+    """
+    items = _BETWEEN.split(text.strip()[:200])
+    unit = items[-1].lstrip("+-.0123456789eE ")
+    return [item if item[-1:].isalpha() or not unit else f"{item} {unit}" for item in items]
 
 
 _MEASURE = re.compile(r"(.*[0-9 ][kmu]?V)\s*(pp|p-p|rms|pk|peak)", re.IGNORECASE)
@@ -203,6 +263,10 @@ class Choice(Declared):
 @dataclass(frozen=True)
 class Flag(Declared):
     """Yes or no."""
+
+    def shown(self, value: Any) -> str | bool:
+        """The value itself."""
+        return bool(value)
 
     def read(self, value: Any, from_person: bool) -> bool:
         """Take true and false alone."""

@@ -8,14 +8,8 @@ from scipy.constants import epsilon_0
 
 from model.arrays import Complex, Real
 from model.declare import Choice, Part, Quantity
-from model.interface import (
-    capacitive,
-    constant_phase,
-    debye_length,
-    debye_length_of,
-    in_series,
-    slab,
-)
+from model.interface import capacitive, constant_phase, in_series, slab
+from model.liquid.electrolyte import debye_length
 
 if TYPE_CHECKING:
     from model.liquid.liquid import Liquid
@@ -156,10 +150,10 @@ class Electrode(Part):
         """Admittances at angular frequencies (n_frequency,) and conductivities (…, 1) or ()."""
         permittivity = liquid.state.permittivity
         if self.ionic_strength is None:
-            length = debye_length(permittivity, conductivity)
+            length = liquid.electrolyte(conductivity).debye_length(permittivity)
         else:
             strength, warm = self.ionic_strength, liquid.temperature
-            length = np.asarray(debye_length_of(permittivity, strength, warm))
+            length = debye_length(permittivity, strength, warm)
         diffuse = permittivity / length
         if self.interface == "double-layer":
             layer = in_series(capacitive(omega, self.stern_capacitance), capacitive(omega, diffuse))

@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 from typing import Annotated, Any
 
+import numpy as np
 from pydantic import BeforeValidator, Discriminator, Tag
 from scipy.constants import epsilon_0
 
@@ -26,17 +27,71 @@ Conductivity = Annotated[
 ]
 
 
+DispersionFrequency = Annotated[
+    float,
+    Quantity(
+        "Dispersion at",
+        "Frequency in the middle of the dispersion.",
+        unit="MHz",
+        low="10 Hz",
+        high="100 GHz",
+        detail=True,
+    ),
+]
+DispersionSpread = Annotated[
+    float,
+    Quantity(
+        "Dispersion spread",
+        "0 for a single relaxation time (Debye), towards 1 for ever more spread ones (Cole–Cole's "
+        "α).",
+        unit="",
+        low="0",
+        high="0.99",
+        source="Cole and Cole 1941 J. Chem. Phys. 9:341",
+        detail=True,
+    ),
+]
+
+
+def relaxation(omega: Real, strength: float, frequency: float, spread: float) -> Complex:
+    """Δ/(1 + (jω/ω₀)^(1−α)), what a dispersion adds: Debye 1929 for α = 0, Cole and Cole 1941."""
+    if strength == 0.0:
+        return np.zeros_like(omega, dtype=complex)
+    return np.asarray(strength / (1.0 + (1j * omega / (2.0 * np.pi * frequency)) ** (1.0 - spread)))
+
+
 class Material(Part):
-    """A homogeneous conducting dielectric."""
+    """A conducting dielectric, with a dispersion if it has a strength."""
 
     relative_permittivity: RelativePermittivity
     conductivity: Conductivity
+    dispersion_strength: Annotated[
+        float,
+        Quantity(
+            "Dispersion strength",
+            "Fall of the relative permittivity over a dispersion, down to the relative "
+            "permittivity above; the conductivity is then that at low frequency. 0 for none.",
+            unit="",
+            low="0",
+            high="1e6",
+            detail=True,
+        ),
+    ] = 0.0
+    dispersion_frequency: DispersionFrequency = 1e6
+    dispersion_spread: DispersionSpread = 0.0
+
+    @property
+    def permittivity(self) -> float:
+        """Above any dispersion, F/m."""
+        return float(epsilon_0 * self.relative_permittivity)
 
     def complex_permittivity(self, omega: Real) -> Complex:
-        """ε̃ = ε − jσ/ω, F/m, the shape of `omega`."""
-        return complex_permittivity(
-            epsilon_0 * self.relative_permittivity, self.conductivity, omega
+        """ε̃ = ε∞ + Δε/(1 + (jω/ω₀)^(1−α)) − jσ/ω, F/m, the shape of `omega`."""
+        extra = relaxation(
+            omega, self.dispersion_strength, self.dispersion_frequency, self.dispersion_spread
         )
+        lossy = complex_permittivity(self.permittivity, self.conductivity, omega)
+        return np.asarray(lossy + epsilon_0 * extra)
 
 
 class Core(Material):
@@ -83,6 +138,21 @@ class Membrane(Part):
         ),
     ]
 
+    dispersion_strength: Annotated[
+        float,
+        Quantity(
+            "Dispersion strength",
+            "Fall of the capacitance over a dispersion, down to the capacitance above; the "
+            "conductance is then that at low frequency. 0 for none.",
+            unit="mF/m^2",
+            low="0 mF/m^2",
+            high="10 F/m^2",
+            detail=True,
+        ),
+    ] = 0.0
+    dispersion_frequency: DispersionFrequency = 1e6
+    dispersion_spread: DispersionSpread = 0.0
+
     @property
     def thickness(self) -> float:
         """None of its own."""
@@ -94,8 +164,11 @@ class Membrane(Part):
         return True
 
     def complex_capacitance(self, omega: Real) -> Complex:
-        """c̃ = C + G/(jω), F/m², the shape of `omega`."""
-        return complex_permittivity(self.capacitance, self.conductance, omega)
+        """c̃ = C + ΔC/(1 + (jω/ω₀)^(1−α)) + G/(jω), F/m², the shape of `omega`."""
+        extra = relaxation(
+            omega, self.dispersion_strength, self.dispersion_frequency, self.dispersion_spread
+        )
+        return complex_permittivity(self.capacitance, self.conductance, omega) + extra
 
 
 def _tag(value: Any) -> str | None:

@@ -1,12 +1,15 @@
 """What every particle kind provides; the kinds themselves stand in ``model/particles/``."""
 
 from abc import ABC, abstractmethod
+from dataclasses import dataclass
 from typing import Annotated, Literal
 
-from numpy.typing import ArrayLike
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
 
 from model.arrays import Complex, Real
 from model.declare import Choice, Flag, Part, Quantity, Text
+from model.medium import Medium
 
 Role = Literal["collect", "pass", "watch"]
 Radius = Annotated[
@@ -15,13 +18,48 @@ Radius = Annotated[
 ]
 
 
+@dataclass(frozen=True)
+class Sample:
+    """Single particles of a population, relative to the declared one.
+
+    Parameters
+    ----------
+    size
+        Of all radii or semi-axes; layers keep their thickness.
+    membrane
+        Of the capacitance of every membrane.
+    """
+
+    size: ArrayLike = 1.0
+    membrane: ArrayLike = 1.0
+
+
+#: The declared particle itself.
+MEDIAN = Sample()
+
+
+@dataclass(frozen=True)
+class Alignment:
+    """How a particle that can turn lies in the field.
+
+    Parameters
+    ----------
+    axis
+        Which semi-axis stands along the field, counted from 0, (…, n_frequency).
+    advantage
+        By how much Re K along it exceeds that along the next one of another length.
+    """
+
+    axis: NDArray[np.intp]
+    advantage: Real
+
+
 class Particle(Part, ABC):
     """One population in the liquid.
 
     A kind adds its own fields, a ``kind`` literal, and the methods below. All of them take the
-    angular frequency `omega` and the medium's complex permittivity ε̃ = ε − jσ/ω (phasors
-    exp(+jωt)), and the `size` of single particles relative to the declared one; all three
-    broadcast against one another with frequency as the last axis, e.g. sizes ``(n_sample, 1)``.
+    medium with its frequencies (phasors exp(+jωt)) and a sample of single particles; all broadcast
+    against one another with frequency as the last axis, e.g. sizes ``(n_sample, 1)``.
     """
 
     name: Annotated[str, Text("Name", "How this population is called.", longest=40, needed=True)]
@@ -70,12 +108,29 @@ class Particle(Part, ABC):
         return 0.0
 
     @abstractmethod
-    def polarisation(self, omega: Real, medium: Complex, size: ArrayLike = 1.0) -> Complex:
-        """Polarisation factor K (Clausius–Mossotti factor), dimensionless."""
+    def polarisation(self, medium: Medium, sample: Sample = MEDIAN) -> Complex:
+        """Polarisation factor K, dimensionless: F = 2πε_m a³ Re K ∇|E_rms|².
+
+        a is the equivalent radius. Of particles that can turn it is that of the orientation they
+        take.
+        """
 
     @abstractmethod
-    def membrane_gain(self, omega: Real, medium: Complex, size: ArrayLike = 1.0) -> Real | None:
+    def membrane_gain(self, medium: Medium, sample: Sample = MEDIAN) -> Real | None:
         """Induced membrane voltage at the pole per outside field, |ΔV|/E in m (V per V/m).
 
         Of several membranes the largest at each frequency. None if the kind has no membrane.
         """
+
+    def spinning_factor(self, medium: Medium, sample: Sample = MEDIAN) -> Complex:
+        """Polarisation factor of which Im K makes it spin in a rotating field."""
+        return self.polarisation(medium, sample)
+
+    @property
+    def spinning_ease(self) -> float:
+        """Share c in the rate of spinning −c·(ε_m/η)·Im K·E²; ½ for a sphere."""
+        return 0.5
+
+    def alignment(self, medium: Medium, sample: Sample = MEDIAN) -> Alignment | None:
+        """How the particle lies in the field; None if it does not matter or is left to chance."""
+        return None

@@ -13,7 +13,6 @@ from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
 from model.evaluate import Evaluation, LedgerRow, ParticleResult
 from model.fields.patterns import UNKNOWN_HEAT
-from model.polarisation import complex_permittivity
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
 from model.verdict import format_value, format_volts, row_headroom, row_value, verdict
@@ -221,10 +220,8 @@ def _corridor(result: Evaluation) -> str:
 
 def spectrum_rows(design: Design, frequency: Real) -> Iterator[str]:
     """CSV lines: frequency_Hz, then Re K and Im K of every particle."""
-    omega = 2.0 * np.pi * frequency
-    liquid = design.liquid
-    medium = complex_permittivity(liquid.state.permittivity, liquid.conductivity, omega)
-    spectra = [particle.polarisation(omega, medium) for particle in design.particles]
+    medium = design.liquid.medium(2.0 * np.pi * frequency)
+    spectra = [particle.polarisation(medium) for particle in design.particles]
     names = [
         f"{particle.name} {part}" for particle in design.particles for part in ("re_k", "im_k")
     ]

@@ -9,7 +9,16 @@ from dash import dcc, html
 from dash.development.base_component import Component
 from pydantic import BaseModel
 
-from model.declare import Choice, Count, Declared, FileName, Flag, Quantity, declarations
+from model.declare import (
+    Choice,
+    Count,
+    Declared,
+    FileName,
+    Flag,
+    Quantities,
+    Quantity,
+    declarations,
+)
 from model.design import Design
 from model.layout import FlatChannel, Layout
 from model.layouts import LAYOUTS
@@ -36,13 +45,7 @@ class Field:
     @property
     def text(self) -> str | bool:
         """What the control shows: text as people write it, or yes and no."""
-        if isinstance(self.declared, Flag):
-            return bool(self.value)
-        if self.value is None:
-            return ""
-        if isinstance(self.declared, Quantity):
-            return format_quantity(self.value, self.declared.unit).replace("−", "-")
-        return str(self.value)
+        return self.declared.shown(self.value)
 
 
 def fields(part: BaseModel, path: str) -> Iterator[Field]:
@@ -173,7 +176,8 @@ def _input(field: Field) -> Component:
         )
     if isinstance(declared, FileName):
         return _file(base, field, declared)
-    wide = "" if isinstance(declared, Quantity | Count) else "wide"
+    narrow = isinstance(declared, Quantity | Count) and not isinstance(declared, Quantities)
+    wide = "" if narrow else "wide"
     placeholder = declared.empty if declared.optional else ""
     return dmc.TextInput(
         **base, value=field.text, debounce=True, className=wide, placeholder=placeholder

@@ -4,10 +4,14 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import Annotated
 
+import numpy as np
 from scipy.constants import epsilon_0
 
+from model.arrays import Real
 from model.declare import Part, Quantity
 from model.liquid import water
+from model.liquid.electrolyte import Electrolyte, simple_salt
+from model.medium import Medium
 
 
 class Liquid(Part):
@@ -118,6 +122,22 @@ class Liquid(Part):
             heat_capacity=float(water.heat_capacity(warm)),
             permittivity_slope=float(water.permittivity_slope(warm)),
             conductivity_slope=self.conductivity_per_kelvin,
+        )
+
+    def electrolyte(self, conductivity: Real) -> Electrolyte:
+        """Its ions at other conductivities, S/m, of any shape."""
+        return simple_salt(conductivity, self.temperature)
+
+    def medium(self, omega: Real, conductivity: Real | None = None) -> Medium:
+        """The liquid as particles meet it, at its own conductivity unless others are given."""
+        state = self.state
+        return Medium(
+            omega,
+            state.permittivity,
+            np.asarray(self.conductivity) if conductivity is None else conductivity,
+            state.viscosity,
+            self.temperature,
+            self.electrolyte,
         )
 
 

@@ -4,25 +4,34 @@ from typing import Annotated, Literal
 
 import numpy as np
 from numpy.typing import ArrayLike
-from scipy.constants import epsilon_0
 
 from model.arrays import Complex, Real
-from model.declare import Quantity
-from model.layers import Conductivity, RelativePermittivity
-from model.particle import Particle, Radius
-from model.polarisation import clausius_mossotti, complex_permittivity
+from model.declare import Choice, Quantity
+from model.layers import Material
+from model.medium import Medium
+from model.particle import MEDIAN, Particle, Radius, Sample
+from model.polarisation import clausius_mossotti
+from model.surface_conduction import diffuse_conductance
 
 
-class SolidSphere(Particle):
+class SolidSphere(Particle, Material):
     """A solid sphere whose surface adds 2K_s/a to the conductivity of its bulk.
 
-    Source: C. T. O'Konski 1960 J. Phys. Chem. 64:605, for the surface conductance.
+    Source: C. T. O'Konski 1960 J. Phys. Chem. 64:605, for the surface conductance. It takes the
+    surface as thin: the diffuse layer a small part of the radius.
     """
 
     kind: Literal["solid-sphere"] = "solid-sphere"
     radius: Radius
-    relative_permittivity: RelativePermittivity
-    conductivity: Conductivity
+    surface: Annotated[
+        Literal["conductance", "zeta-potential"],
+        Choice(
+            "Surface from",
+            "Conductance: one number whatever the liquid. Zeta potential: the diffuse layer "
+            "follows the ions of the liquid, and the Stern layer adds its own.",
+            options={"conductance": "conductance", "zeta-potential": "zeta potential"},
+        ),
+    ] = "conductance"
     surface_conductance: Annotated[
         float,
         Quantity(
@@ -33,6 +42,30 @@ class SolidSphere(Particle):
             low="0 nS",
             high="1000 nS",
             source="latex: Arnold et al. 1987, Hughes et al. 1999, from memory",
+            only_with=("surface", "conductance"),
+        ),
+    ] = 0.0
+    zeta_potential: Annotated[
+        float,
+        Quantity(
+            "Zeta potential",
+            "At the plane of shear, in the liquid of this design.",
+            unit="mV",
+            low="-200 mV",
+            high="200 mV",
+            source="diffuse layer after Bikerman, with electro-osmosis",
+            only_with=("surface", "zeta-potential"),
+        ),
+    ] = -0.05
+    stern_conductance: Annotated[
+        float,
+        Quantity(
+            "Stern conductance",
+            "Along the layer beneath the plane of shear; hardly changes with the liquid.",
+            unit="nS",
+            low="0 nS",
+            high="1000 nS",
+            only_with=("surface", "zeta-potential"),
         ),
     ] = 0.0
 
@@ -41,22 +74,31 @@ class SolidSphere(Particle):
         """The radius, m."""
         return self.radius
 
-    def total_conductivity(self, size: ArrayLike = 1.0) -> Real:
-        """σ_p = σ_bulk + 2K_s/a, S/m, the shape of `size`.
+    def conductance(self, medium: Medium) -> Real:
+        """K_s, S, of the shape of the medium's conductivity, or a number if it does not matter."""
+        if self.surface == "conductance":
+            return np.asarray(self.surface_conductance)
+        diffuse = diffuse_conductance(
+            self.zeta_potential, medium.electrolyte, medium.permittivity, medium.viscosity
+        )
+        return np.asarray(diffuse + self.stern_conductance)
+
+    def surface_share(self, medium: Medium, size: ArrayLike = 1.0) -> Real:
+        """2K_s/a, what the surface adds to the conductivity of the bulk, S/m.
 
         >>> bead = SolidSphere(name="bead", radius=108e-9, relative_permittivity=2.55,
         ...                    conductivity=0.0, surface_conductance=1e-9)
-        >>> round(float(bead.total_conductivity()), 7)
+        >>> water = Medium(np.array(1e6), 6.94e-10, np.array(1e-3))
+        >>> round(float(bead.surface_share(water)), 7)
         0.0185185
         """
-        radius = self.radius * np.asarray(size)
-        return np.asarray(self.conductivity + 2.0 * self.surface_conductance / radius)
+        return np.asarray(2.0 * self.conductance(medium) / (self.radius * np.asarray(size)))
 
-    def polarisation(self, omega: Real, medium: Complex, size: ArrayLike = 1.0) -> Complex:
+    def polarisation(self, medium: Medium, sample: Sample = MEDIAN) -> Complex:
         """Polarisation factor K = (ε̃p − ε̃m)/(ε̃p + 2ε̃m)."""
-        permittivity = epsilon_0 * self.relative_permittivity
-        sphere = complex_permittivity(permittivity, self.total_conductivity(size), omega)
-        return clausius_mossotti(sphere, medium)
+        surface = self.surface_share(medium, sample.size) / medium.omega
+        whole = self.complex_permittivity(medium.omega) - 1j * surface
+        return clausius_mossotti(whole, medium.complex_permittivity)
 
-    def membrane_gain(self, omega: Real, medium: Complex, size: ArrayLike = 1.0) -> None:
+    def membrane_gain(self, medium: Medium, sample: Sample = MEDIAN) -> None:
         """Give none: a solid sphere has no membrane."""

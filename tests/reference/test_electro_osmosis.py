@@ -17,7 +17,7 @@ from model.fields.electric import solve_potential
 from model.fields.layered import Channel, Span, layered
 from model.fields.modes import combined, electrode_modes
 from model.fields.response import ElectrodeResponse
-from model.interface import debye_length
+from model.liquid.electrolyte import simple_salt
 from model.walls import Wall
 
 GLASS = Wall(material="glass", thickness=0.02, outside="held")
@@ -83,7 +83,7 @@ def test_tube_model_overstates_the_peak_by_64_percent(response):
 def test_numbers_of_the_tube_model():
     """1 V peak, x = 20 µm, 2 mS/m, D = 2·10⁻⁹ m²/s, no Stern layer: exact within the model."""
     permittivity, viscosity, x, conductivity = 78.4 * 8.8541878e-12, 0.89e-3, 20e-6, 2e-3
-    length = debye_length(permittivity, conductivity)
+    length = simple_salt(conductivity).debye_length(permittivity)
     assert length == pytest.approx(26.35e-9, rel=1e-3)
     peak = 2 * conductivity / (np.pi * x * permittivity / length) / (2 * np.pi)
     assert peak == pytest.approx(384.6, rel=1e-3)

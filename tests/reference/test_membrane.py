@@ -3,8 +3,11 @@
 import numpy as np
 import pytest
 
+from model.medium import Medium
+from model.outlines import Sphere
 from model.particles.shelled_sphere import ShelledSphere
-from model.polarisation import Shell, ThinShell, complex_permittivity, pole_voltages
+from model.polarisation import ThinShell, complex_permittivity
+from model.polarisation import pole_voltages as pole_voltages_along
 
 VACUUM = 8.8541878128e-12  # CODATA 2018
 FREQUENCIES = np.array([1e4, 1e5, 1e6, 1e7])
@@ -12,6 +15,14 @@ FREQUENCIES = np.array([1e4, 1e5, 1e6, 1e7])
 
 def material(relative, conductivity, frequency):
     return complex_permittivity(VACUUM * relative, conductivity, 2 * np.pi * np.asarray(frequency))
+
+
+def shell(outer, inner, permittivity):
+    return Sphere(outer).shell(outer - inner, permittivity)[0]
+
+
+def pole_voltages(core, stack, medium, radius):
+    return pole_voltages_along(core, stack, medium, radius, 1 / 3)
 
 
 def solved(radii, permittivities):
@@ -68,7 +79,7 @@ def test_voltage_at_the_pole_of_a_single_shell(conductivity, expected):
     inner = 10e-6 - 5e-9
     membrane = complex_permittivity(5.647 * VACUUM, 0.0, 2 * np.pi * FREQUENCIES)
     core, medium = material(70, 0.5, FREQUENCIES), material(78.5, conductivity, FREQUENCIES)
-    (found,) = pole_voltages(core, [Shell(10e-6, inner, membrane)], medium, 10e-6)
+    (found,) = pole_voltages(core, [shell(10e-6, inner, membrane)], medium, 10e-6)
     np.testing.assert_allclose(np.abs(found) * 1e6, expected, rtol=1e-6)
     for index in range(4):
         (again,) = solved([inner, 10e-6], [core[index], membrane[index], medium[index]])
@@ -84,7 +95,7 @@ def test_every_layer_of_a_deep_stack():
             material(one, other, frequency)
             for one, other in zip(relative, conductivity, strict=True)
         ]
-        stack = [Shell(radii[index + 1], radii[index], parts[index + 1]) for index in range(4)]
+        stack = [shell(radii[index + 1], radii[index], parts[index + 1]) for index in range(4)]
         found = pole_voltages(parts[0], stack, parts[-1], radii[-1])
         np.testing.assert_allclose(found, solved(radii, parts), rtol=1e-7)
 
@@ -96,13 +107,13 @@ def test_thin_membranes_are_the_limit_of_thin_shells():
     medium = material(78.5, 0.1, frequency)
     envelope = complex_permittivity(6.2e-3, 1.5e5, omega)
     membrane = complex_permittivity(8.6e-3, 50.0, omega)
-    thin = [ThinShell(3e-6, envelope), Shell(4e-6, 3e-6, plasma), ThinShell(4e-6, membrane)]
+    thin = [ThinShell(envelope, 3e-6), shell(4e-6, 3e-6, plasma), ThinShell(membrane, 4e-6)]
     expected = pole_voltages(core, thin, medium, 4e-6)
     thickness = 1e-12
     thick = [
-        Shell(3e-6, 3e-6 - thickness, envelope * thickness),
-        Shell(4e-6 - thickness, 3e-6, plasma),
-        Shell(4e-6, 4e-6 - thickness, membrane * thickness),
+        shell(3e-6, 3e-6 - thickness, envelope * thickness),
+        shell(4e-6 - thickness, 3e-6, plasma),
+        shell(4e-6, 4e-6 - thickness, membrane * thickness),
     ]
     for found, wanted in zip(pole_voltages(core, thick, medium, 4e-6), expected, strict=True):
         np.testing.assert_allclose(found, wanted, rtol=2e-6)
@@ -119,7 +130,8 @@ def cell(conductance=0.0, *outside):
 
 def gain(particle, frequency, conductivity):
     frequency = np.asarray(frequency, dtype=float)
-    return particle.membrane_gain(2 * np.pi * frequency, material(78.5, conductivity, frequency))
+    outside = Medium(2 * np.pi * frequency, 78.5 * VACUUM, np.asarray(conductivity))
+    return particle.membrane_gain(outside)
 
 
 def test_steady_field():

@@ -6,8 +6,12 @@ import pytest
 from scipy.integrate import quad
 
 from model.crossovers import find_crossovers
+from model.medium import Medium
+from model.outlines import Sphere
 from model.particles.solid_sphere import SolidSphere
-from model.polarisation import clausius_mossotti, coat, complex_permittivity, seal
+from model.polarisation import ThinShell, clausius_mossotti, complex_permittivity
+from model.polarisation import coat as coat_along
+from model.polarisation import seal as seal_along
 
 VACUUM = 8.8541878128e-12  # CODATA 2018, with which the printed values below were made
 
@@ -16,6 +20,15 @@ def material(relative, conductivity, frequency):
     return complex_permittivity(
         VACUUM * relative, conductivity, 2 * np.pi * np.asarray(frequency, dtype=float)
     )
+
+
+def coat(inner, shell, ratio):
+    """A sphere `inner` in a concentric shell, `ratio` the outer over the inner radius."""
+    return coat_along(inner, Sphere(ratio).shell(ratio - 1, shell)[0])
+
+
+def seal(inner, capacitance, radius):
+    return seal_along(inner, ThinShell(capacitance, radius))
 
 
 def bead(frequency):
@@ -224,6 +237,11 @@ def test_slope_of_the_imaginary_part_of_an_insulated_cell():
     assert factor.imag / omega == pytest.approx(3 * R * C / (4 * conductivity), rel=3e-3)
 
 
+def water(conductivity, frequency):
+    omega = 2 * np.pi * np.asarray(frequency, dtype=float)
+    return Medium(omega, 78.5 * VACUUM, np.asarray(conductivity))
+
+
 def latex(surface_conductance=1e-9):
     return SolidSphere(
         name="latex",
@@ -236,7 +254,7 @@ def latex(surface_conductance=1e-9):
 
 def test_surface_conductance():
     # σp = σbulk + 2K/a: O'Konski 1960. A conducting skin around a tends to it as it gets thin.
-    assert latex().total_conductivity() == pytest.approx(18.5185e-3, rel=5e-6)
+    assert latex().surface_share(water(1e-3, 1e6)) == pytest.approx(18.5185e-3, rel=5e-6)
     omega = np.array(1e-3)  # so low that conduction alone decides
     core = complex_permittivity(2.55 * VACUUM, 0.0, omega)
     found = []
@@ -251,11 +269,9 @@ def test_crossover_of_a_bead_with_surface_conductance():
     # The closed form of the lossy sphere; note the greatest value between 1 and 10 mS/m.
     expected = {0.1e-3: 3.03195e6, 1e-3: 3.09586e6, 5e-3: 3.20617e6, 10e-3: 2.95785e6}
     for conductivity, frequency in expected.items():
-        found = crossovers(
-            lambda f, s=conductivity: latex().polarisation(2 * np.pi * f, material(78.5, s, f))
-        )
+        found = crossovers(lambda f, s=conductivity: latex().polarisation(water(s, f)))
         assert found == [pytest.approx(frequency, rel=1e-5)]
     # At low frequency it is drawn in only below 18.52 mS/m.
     for conductivity, sign in ((18.51e-3, 1.0), (18.53e-3, -1.0)):
-        low = latex().polarisation(np.array(1.0), material(78.5, conductivity, 1 / (2 * np.pi)))
+        low = latex().polarisation(water(conductivity, 1 / (2 * np.pi)))
         assert np.sign(low.real) == sign
