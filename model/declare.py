@@ -340,6 +340,15 @@ def declarations(part: type[BaseModel]) -> tuple[tuple[str, Declared], ...]:
     )
 
 
+def matters(part: BaseModel, declared: Declared) -> bool:
+    """Whether a field of `part` matters with what the field it depends on holds."""
+    if declared.only_with is None:
+        return True
+    other, word = declared.only_with
+    held = getattr(part, other)
+    return held == word if word else held not in (None, "")
+
+
 def counted(one: str, most: int, form: str) -> Callable[[Any], Any]:
     """Make a check that refuses what is no list, or of a wrong length, before its items are read.
 

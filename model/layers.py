@@ -36,6 +36,7 @@ DispersionFrequency = Annotated[
         low="10 Hz",
         high="100 GHz",
         detail=True,
+        only_with=("dispersion_strength", ""),
     ),
 ]
 DispersionSpread = Annotated[
@@ -49,13 +50,14 @@ DispersionSpread = Annotated[
         high="0.99",
         source="Cole and Cole 1941 J. Chem. Phys. 9:341",
         detail=True,
+        only_with=("dispersion_strength", ""),
     ),
 ]
 
 
-def relaxation(omega: Real, strength: float, frequency: float, spread: float) -> Complex:
+def relaxation(omega: Real, strength: float | None, frequency: float, spread: float) -> Complex:
     """Δ/(1 + (jω/ω₀)^(1−α)), what a dispersion adds: Debye 1929 for α = 0, Cole and Cole 1941."""
-    if strength == 0.0:
+    if strength is None:
         return np.zeros_like(omega, dtype=complex)
     return np.asarray(strength / (1.0 + (1j * omega / (2.0 * np.pi * frequency)) ** (1.0 - spread)))
 
@@ -66,17 +68,19 @@ class Material(Part):
     relative_permittivity: RelativePermittivity
     conductivity: Conductivity
     dispersion_strength: Annotated[
-        float,
+        float | None,
         Quantity(
             "Dispersion strength",
             "Fall of the relative permittivity over a dispersion, down to the relative "
-            "permittivity above; the conductivity is then that at low frequency. 0 for none.",
+            "permittivity above; the conductivity is then that at low frequency.",
             unit="",
             low="0",
             high="1e6",
+            optional=True,
+            empty="none",
             detail=True,
         ),
-    ] = 0.0
+    ] = None
     dispersion_frequency: DispersionFrequency = 1e6
     dispersion_spread: DispersionSpread = 0.0
 
@@ -139,17 +143,19 @@ class Membrane(Part):
     ]
 
     dispersion_strength: Annotated[
-        float,
+        float | None,
         Quantity(
             "Dispersion strength",
             "Fall of the capacitance over a dispersion, down to the capacitance above; the "
-            "conductance is then that at low frequency. 0 for none.",
+            "conductance is then that at low frequency.",
             unit="mF/m^2",
             low="0 mF/m^2",
             high="10 F/m^2",
+            optional=True,
+            empty="none",
             detail=True,
         ),
-    ] = 0.0
+    ] = None
     dispersion_frequency: DispersionFrequency = 1e6
     dispersion_spread: DispersionSpread = 0.0
 

@@ -12,7 +12,7 @@ from typing import Any
 import tomli_w
 from pydantic import BaseModel, ValidationError
 
-from model.declare import FROM_PERSON, declarations
+from model.declare import FROM_PERSON, declarations, matters
 from model.design import Design
 from model.errors import DesignError, FieldError
 from model.files import Files, Folder
@@ -146,6 +146,8 @@ def _part_document(part: BaseModel) -> dict[str, Any]:
     for name, info in type(part).model_fields.items():
         key, value = info.alias or name, getattr(part, name)
         if key in known:
+            if value == info.default and not matters(part, known[key]):
+                continue
             value = known[key].text(value)
         elif isinstance(value, BaseModel):
             value = _part_document(value)
