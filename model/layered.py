@@ -55,6 +55,11 @@ class LayeredParticle(Particle):
         return self
 
     @property
+    def membrane_spread(self) -> float:
+        """Coefficient of variation of the membrane capacitance; 0 without a membrane."""
+        return self.membrane_cv if any(layer.is_membrane for layer in self.layers) else 0.0
+
+    @property
     def _thickness(self) -> float:
         """Of all layers together, m."""
         return sum(layer.thickness for layer in self.layers)

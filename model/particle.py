@@ -44,12 +44,15 @@ class Alignment:
 
     Parameters
     ----------
+    lengths
+        All semi-axes, m, (3,).
     axis
-        Which semi-axis stands along the field, counted from 0, (…, n_frequency).
+        Which of them stands along the field, (…, n_frequency).
     advantage
         By how much Re K along it exceeds that along the next one of another length.
     """
 
+    lengths: Real
     axis: NDArray[np.intp]
     advantage: Real
 
@@ -101,6 +104,11 @@ class Particle(Part, ABC):
     @abstractmethod
     def equivalent_radius(self) -> float:
         """Radius of the sphere of equal volume, in m: a³ is the volume over 4π/3."""
+
+    @property
+    def membrane_spread(self) -> float:
+        """Coefficient of variation of the membrane capacitance; 0 without a membrane."""
+        return 0.0
 
     @property
     def smallest_size(self) -> float:

@@ -117,7 +117,7 @@ class Ellipsoid(LayeredParticle):
         best = lengths[axis]
         unlike = np.abs(lengths.reshape(3, *(1,) * axis.ndim) - best) > _EQUAL * best
         next_one = np.where(unlike, factors, -np.inf).max(axis=0)
-        return Alignment(axis, np.asarray(factors.max(axis=0) - next_one))
+        return Alignment(lengths, axis, np.asarray(factors.max(axis=0) - next_one))
 
     @property
     def _by_length(self) -> tuple[int, ...]:
