@@ -1,4 +1,4 @@
-"""Laws that hold for every solid and shelled sphere, and what a person may type for them."""
+"""Laws that hold for every particle, and what a person may type for them."""
 
 import numpy as np
 import pytest
@@ -11,9 +11,12 @@ from model.crossovers import NOISE, POINTS_PER_DECADE, Crossover, find_crossover
 from model.declare import FROM_PERSON
 from model.layers import MOST_LAYERS, Layer, Membrane
 from model.medium import Medium
+from model.outlines import Ellipsoid as Outline
 from model.particle import Sample
+from model.particles.ellipsoid import Ellipsoid
 from model.particles.shelled_sphere import ShelledSphere
 from model.particles.solid_sphere import SolidSphere
+from model.polarisation import polarisation_factor
 
 FREQUENCY = np.geomspace(1.0, 1e10, 201)
 OMEGA = 2 * np.pi * FREQUENCY
@@ -25,18 +28,29 @@ def logarithmic(low, high):
 
 relative = st.floats(1.0, 200.0)
 conductivity = st.just(0.0) | logarithmic(1e-8, 10.0)
+dispersion = {
+    "dispersion_frequency": logarithmic(1e4, 1e9),
+    "dispersion_spread": st.floats(0.0, 0.5),
+}
 thick = st.builds(
     Layer,
     thickness=logarithmic(1e-9, 1e-7),
     relative_permittivity=relative,
     conductivity=conductivity,
+    dispersion_strength=st.none() | st.floats(0.0, 1e3),
+    **dispersion,
 )
 thin = st.builds(
     Membrane,
     capacitance=logarithmic(1e-3, 1e-1),
     conductance=st.just(0.0) | logarithmic(1e-1, 1e6),
+    dispersion_strength=st.none() | logarithmic(1e-4, 1e-2),
+    **dispersion,
 )
-material = st.fixed_dictionaries({"relative_permittivity": relative, "conductivity": conductivity})
+material = st.fixed_dictionaries(
+    {"relative_permittivity": relative, "conductivity": conductivity},
+    optional={"dispersion_strength": st.floats(0.0, 1e3), **dispersion},
+)
 shelled = st.builds(
     ShelledSphere,
     name=st.just("shelled"),
@@ -51,6 +65,15 @@ solid = st.builds(
     relative_permittivity=relative,
     conductivity=conductivity,
     surface_conductance=st.just(0.0) | logarithmic(1e-11, 1e-8),
+)
+#: Tumbling, as what turns with frequency is no answer of one linear body.
+tumbling = st.builds(
+    Ellipsoid,
+    name=st.just("ellipsoid"),
+    semi_axes=st.tuples(*[logarithmic(1e-6, 2e-5)] * 3),
+    orientation=st.just("random"),
+    core=material,
+    layers=st.lists(thick | thin, min_size=1, max_size=4),
 )
 medium = st.tuples(st.floats(2.0, 100.0), logarithmic(1e-4, 5.0))
 
@@ -67,6 +90,18 @@ def test_factor_stays_within_its_bounds(particle, liquid):
     assert np.all(np.abs(factor.imag) <= 0.75 + 1e-12)
 
 
+@given(tumbling, medium)
+@settings(max_examples=100, deadline=None)
+def test_factors_of_ellipsoids_stay_within_their_bounds(particle, liquid):
+    # As an insulator −⅓/(1 − A), as a perfect conductor ⅓/A along an axis.
+    outline = Outline(np.array(particle.semi_axes)).depolarisation[:, None]
+    factors = particle.factors(around(liquid)).real
+    assert np.all(factors >= -1.0 / (3.0 * (1.0 - outline)) - 1e-9)
+    assert np.all(factors <= 1.0 / (3.0 * outline) + 1e-9)
+    aligned = particle.model_copy(update={"orientation": "aligned"})
+    np.testing.assert_array_equal(aligned.polarisation(around(liquid)).real, factors.max(axis=0))
+
+
 @given(shelled, medium)
 @settings(max_examples=100, deadline=None)
 def test_voltages_of_all_layers_are_bounded_by_an_empty_sphere(particle, liquid):
@@ -78,26 +113,24 @@ def test_voltages_of_all_layers_are_bounded_by_an_empty_sphere(particle, liquid)
     assert np.all(gain >= 0.0)
 
 
-@given(solid, st.lists(logarithmic(1e-9, 1e-8), min_size=1, max_size=6), medium)
+@given(material, st.lists(logarithmic(1e-9, 1e-8), min_size=1, max_size=6), medium)
 @settings(max_examples=60, deadline=None)
-def test_layers_without_contrast_vanish(bead, thicknesses, liquid):
-    same = {
-        "relative_permittivity": bead.relative_permittivity,
-        "conductivity": bead.conductivity,
-    }
+def test_layers_without_contrast_vanish(same, thicknesses, liquid):
     plain = SolidSphere(name="plain", radius=1e-6, **same)
-    layered = ShelledSphere(
-        name="layered",
-        radius=1e-6,
-        core=same,
-        layers=[{"thickness": thickness, **same} for thickness in thicknesses],
-    )
+    outside = around(liquid)
+    layers = [{"thickness": thickness, **same} for thickness in thicknesses]
+    layered = ShelledSphere(name="layered", radius=1e-6, core=same, layers=layers)
     np.testing.assert_allclose(
-        layered.polarisation(around(liquid)),
-        plain.polarisation(around(liquid)),
-        rtol=1e-10,
-        atol=1e-13,
+        layered.polarisation(outside), plain.polarisation(outside), rtol=1e-9, atol=1e-12
     )
+    axes = (2e-6, 1e-6, 0.7e-6)
+    rod = Ellipsoid(name="rod", semi_axes=axes, core=same, layers=layers)
+    bare = polarisation_factor(
+        plain.complex_permittivity(OMEGA),
+        outside.complex_permittivity,
+        Outline(np.array(axes)).depolarisation[:, None],
+    )
+    np.testing.assert_allclose(rod.factors(outside), bare, rtol=1e-9, atol=1e-12)
 
 
 @given(st.floats(2.0, 11.0), conductivity, medium)
@@ -123,11 +156,11 @@ def test_a_thin_layer_is_a_membrane(permittivity, conducts, liquid):
         np.testing.assert_allclose(found, expected, atol=1e-3 * np.max(np.abs(expected)))
 
 
-@given(solid | shelled, medium)
-@settings(max_examples=60, deadline=None)
+@given(solid | shelled | tumbling, medium)
+@settings(max_examples=90, deadline=None)
 def test_kramers_kronig_sum(particle, liquid):
     # ∫ Im K d ln ω = (π/2)(K∞ − K0); every relaxation of these particles lies well inside.
-    log = np.linspace(np.log(1e-11), np.log(1e21), 20001)
+    log = np.linspace(np.log(1e-14), np.log(1e24), 20001)
     omega = np.exp(log)
     factor = particle.polarisation(around(liquid, omega))
     area = np.trapezoid(factor.imag, log)
@@ -155,6 +188,26 @@ def test_no_crossover_is_missed(particle, liquid):
         near = one.frequency * np.array([1 - 1e-9, 1 + 1e-9])
         low, high = real_part(near)
         assert low * high <= 0.0 or max(abs(low), abs(high)) < 1e-14
+
+
+@given(logarithmic(1e-6, 2e-5), st.floats(1.05, 3.0), logarithmic(1e-3, 0.1))
+@settings(max_examples=40, deadline=None)
+def test_larger_cells_cross_over_lower(radius, growth, conducts):
+    # f = √2σ/(2πrC) of a thin insulating membrane: monotone in the radius.
+    def lower(size):
+        cell = ShelledSphere(
+            name="cell",
+            radius=radius * size,
+            core={"relative_permittivity": 60, "conductivity": 0.6},
+            layers=[{"capacitance": 0.012, "conductance": 0.0}],
+        )
+        found = find_crossovers(
+            lambda f: cell.polarisation(around((78.5, conducts), 2 * np.pi * f)).real
+        )
+        return found[0].frequency
+
+    assert lower(growth) < lower(1.0)
+    assert lower(growth) == pytest.approx(lower(1.0) / growth, rel=0.03)
 
 
 def test_crossovers_come_in_order_with_their_direction():
