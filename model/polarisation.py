@@ -74,8 +74,8 @@ def polarisation_factor(particle: Value, medium: Value, depolarisation: Scalar) 
     A third of (ε̃p − ε̃m)/ε̃m where the depolarising factor A is 0, and for a sphere, A = ⅓, the
     Clausius–Mossotti factor.
     """
-    excess = np.asarray(particle) / medium - 1.0
-    return np.asarray(excess / (3.0 + (3.0 * np.asarray(depolarisation)) * excess))
+    excess = np.asarray(particle) - medium
+    return np.asarray(excess / (3.0 * (medium + np.asarray(depolarisation) * excess)))
 
 
 def clausius_mossotti(particle: Value, medium: Value) -> Complex:
@@ -94,9 +94,9 @@ def coat(inner: Value, shell: Shell) -> Complex:
     nothing cancels when the coat is thin.
     """
     missing, spread = np.asarray(shell.missing), np.asarray(shell.spread)
-    contrast = np.asarray(inner) / shell.permittivity
-    above = (1.0 - missing + spread) * contrast + (missing - spread)
-    return np.asarray(shell.permittivity * (above / (spread * contrast + (1.0 - spread))))
+    above = (1.0 - missing + spread) * inner + (missing - spread) * shell.permittivity
+    below = spread * inner + (1.0 - spread) * shell.permittivity
+    return np.asarray(above / below * shell.permittivity)
 
 
 def seal(inner: Value, membrane: ThinShell) -> Complex:
