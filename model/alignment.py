@@ -8,6 +8,7 @@ from model.evaluate import Evaluation
 from model.liquid.liquid import Liquid
 from model.motion import thermal_energy
 from model.particle import Particle
+from model.quantity import format_quantity, format_si
 
 #: Frequencies that are looked at, per factor of ten.
 POINTS_PER_DECADE = 60
@@ -58,3 +59,21 @@ def alignment_energy(result: Evaluation, particle: Particle) -> float | None:
     square = float(at.line.square.max()) * result.rms_voltage**2
     energy = float(at.force_scale(particle)[0]) * float(found.advantage[0]) * square
     return energy / float(thermal_energy(result.design.liquid.temperature))
+
+
+def alignment_words(result: Evaluation, particle: Particle) -> str | None:
+    """Say which semi-axis lies along the field and how firmly; None if the particle does not turn.
+
+    Over the frequencies of the result's spectra.
+    """
+    energy = alignment_energy(result, particle)
+    if energy is None:
+        return None
+    ends = float(result.frequency[0]), float(result.frequency[-1])
+    pieces = [
+        f"{format_quantity(one.length, 'um', 3)} from {format_si(one.low, 'Hz')} to "
+        f"{format_si(one.high, 'Hz')}"
+        for one in alignment_ranges(particle, result.design.liquid, *ends)
+    ]
+    held = format_quantity(energy, "", 2)
+    return f"semi-axis along the field: {', '.join(pieces)}; held by {held} kT here"

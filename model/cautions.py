@@ -19,6 +19,9 @@ NOTABLE_GROWTH = 0.1
 NOTABLE_LOSS = 0.05
 #: Admittance of the walls over that of the liquid above which they are not negligible.
 NOTABLE_WALLS = 0.1
+#: Debye length over radius up to which a charged surface counts as thin; common practice, no
+#: source.
+THIN_LAYER = 0.1
 #: Electro-osmotic over dielectrophoretic speed that is worth a note.
 NOTABLE_SLIP = 0.1
 #: Peak voltage over the diffuse layer up to which its linear theory is a guide: some kT/e.
@@ -74,6 +77,12 @@ def notes(result: Evaluation) -> tuple[str, ...]:
             )
         if 2.0 * radius > design.chip.narrowest:
             found.append(f"{particle.name} is wider than the narrowest gap between electrodes.")
+        layer = particle.diffuse_layer(result.point.medium)
+        if layer is not None and layer > THIN_LAYER * radius:
+            found.append(
+                f"{particle.name}: the diffuse layer reaches {layer / radius:.0%} of its radius; "
+                f"above {THIN_LAYER:.0%} a surface conductance no longer tells all that it does."
+            )
         if particle.must_live and result.point.membrane_gain(particle) is None:
             found.append(
                 f"{particle.name} must live but has no membrane; no membrane voltage is checked."

@@ -167,7 +167,7 @@ class Conditions:
 
         Each direction with its own wall correction of the drag.
         """
-        radius = particle.equivalent_radius
+        radius = particle.hydrodynamic_radius
         relative = self.wall_distance / radius
         slowed = np.array([drag_parallel(relative), drag_perpendicular(relative)])[:, None]
         patterns = [pattern / slowed for pattern in self._force_patterns]

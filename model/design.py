@@ -176,7 +176,7 @@ def _misfits(design: Design) -> Iterable[tuple[str, str]]:
         yield "chip.lid.outside", "must let heat out when the floor is insulated"
     height, channel = design.task.force_height, design.chip.height
     for particle in design.collected:
-        clear = CLEARANCE * particle.equivalent_radius
+        clear = CLEARANCE * particle.hydrodynamic_radius
         slack = 1e-9 * height  # so that the told bounds themselves can be typed
         if not clear - slack <= height <= channel - clear + slack:
             low, high = (format_quantity(bound, "um") for bound in (clear, channel - clear))

@@ -106,6 +106,11 @@ class Particle(Part, ABC):
         """Radius of the sphere of equal volume, in m: a³ is the volume over 4π/3."""
 
     @property
+    def hydrodynamic_radius(self) -> float:
+        """Radius of the sphere of equal Stokes drag, m, the mean over all orientations."""
+        return self.equivalent_radius
+
+    @property
     def membrane_spread(self) -> float:
         """Coefficient of variation of the membrane capacitance; 0 without a membrane."""
         return 0.0
@@ -138,6 +143,10 @@ class Particle(Part, ABC):
     def spinning_ease(self) -> float:
         """Share c in the rate of spinning −c·(ε_m/η)·Im K·E²; ½ for a sphere."""
         return 0.5
+
+    def diffuse_layer(self, medium: Medium) -> float | None:
+        """Debye length, m, of a particle whose surface is told by its charge; None of others."""
+        return None
 
     def alignment(self, medium: Medium, sample: Sample = MEDIAN) -> Alignment | None:
         """How the particle lies in the field; None if it does not matter or is left to chance."""

@@ -91,11 +91,11 @@ def coat(inner: Value, shell: Shell) -> Complex:
     """ε̃ of the homogeneous particle that equals a particle `inner` in one coat `shell`.
 
     ε̃s[ε̃s + (ε̃in − ε̃s)(A_in + v(1 − A_out))]/[ε̃s + (ε̃in − ε̃s)(A_in − vA_out)], written so that
-    nothing cancels when the coat is thin.
+    nothing cancels when the coat is thin, and a coat of what it encloses changes nothing.
     """
     missing, spread = np.asarray(shell.missing), np.asarray(shell.spread)
-    above = (1.0 - missing + spread) * inner + (missing - spread) * shell.permittivity
-    below = spread * inner + (1.0 - spread) * shell.permittivity
+    excess = np.asarray(inner) - shell.permittivity
+    above, below = inner - (missing - spread) * excess, shell.permittivity + spread * excess
     return np.asarray(above / below * shell.permittivity)
 
 

@@ -62,7 +62,7 @@ def travelling_speed(at: "Conditions", particle: Particle) -> Real | None:
     if line.travelling is None or line.through is not None:
         return None
     mean = float(np.trapezoid(line.travelling[0], line.x) / np.ptp(line.x))
-    radius = particle.equivalent_radius
-    slowed = float(drag_parallel(at.wall_distance / radius))
+    radius = particle.hydrodynamic_radius
+    slowed = drag_parallel(max(at.wall_distance / radius, 1.0))  # one that touches stands still
     drag = slowed * stokes_drag(radius, at.liquid.viscosity, 1.0)
     return np.asarray(at.force_scale(particle) * at.polarisation(particle).imag * mean / drag)

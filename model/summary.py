@@ -8,6 +8,7 @@ from typing import Any
 
 import numpy as np
 
+from model.alignment import alignment_energy, alignment_ranges, alignment_words
 from model.arrays import Real
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
@@ -71,6 +72,14 @@ def _particle(result: Evaluation, found: ParticleResult) -> dict[str, Any]:
         "force_pN": found.force * 1e12,
     }
     voltage = found.membrane_voltage
+    if (energy := alignment_energy(result, found.particle)) is not None:
+        ends = float(result.frequency[0]), float(result.frequency[-1])
+        ranges = alignment_ranges(found.particle, result.design.liquid, *ends)
+        data["alignment_kT"] = energy
+        data["aligned_semi_axes"] = [
+            {"semi_axis_um": one.length * 1e6, "from_Hz": one.low, "to_Hz": one.high}
+            for one in ranges
+        ]
     return {**data, **_finite("membrane_voltage_V_peak", voltage, "the particle has no membrane")}
 
 
@@ -151,6 +160,11 @@ def check_text(result: Evaluation) -> str:
             ("particle", "Re K", "force", "membrane, peak", "crossovers"),
             [_particle_row(result, item) for item in result.particles],
         ),
+    ]
+    lines += [
+        f"  {particle.name}: {words}"
+        for particle in design.particles
+        if (words := alignment_words(result, particle))
     ]
     lines += ["", *(f"Note: {note}" for note in notes(result))] if notes(result) else []
     return "\n".join([*lines, "", *cautions(result)])

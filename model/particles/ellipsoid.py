@@ -5,6 +5,7 @@ from typing import Annotated, Literal, TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.special import elliprf
 
 from model import outlines
 from model.arrays import Complex, Real
@@ -55,6 +56,11 @@ class Ellipsoid(LayeredParticle):
     def equivalent_radius(self) -> float:
         """Radius of the sphere of equal volume, ∛(abc), m."""
         return float(np.cbrt(np.prod(self.semi_axes)))
+
+    @property
+    def hydrodynamic_radius(self) -> float:
+        """1/R_F(a², b², c²), m: F. Perrin 1936 J. Phys. Radium 7:1, with Carlson's integral."""
+        return float(1.0 / elliprf(*np.square(self.semi_axes)))
 
     @property
     def half_width(self) -> float:

@@ -66,7 +66,7 @@ class Hold(Task):
 
     def _against_drag(self, at: "Conditions", particle: "Particle", pull: Real) -> Law:
         """Pull per V² against the drag on the particle at rest in the flow."""
-        radius = particle.equivalent_radius
+        radius = particle.hydrodynamic_radius
         speed = at.flow_speed(self.working_height)
         free = stokes_drag(radius, at.liquid.viscosity, speed)
         relative = max(at.wall_distance / radius, 1.0)  # one too large to pass there touches

@@ -238,3 +238,19 @@ def test_drag_on_a_spinning_spheroid():
     disc = rod.model_copy(update={"semi_axes": (1e-6, 1e-6, 1e-10)})
     drag = 4 * np.pi * 1e-6 * 1e-6 * 1e-10 / disc.spinning_ease
     assert drag == pytest.approx(32e-18 / 3, rel=1e-3)
+
+
+@pytest.mark.parametrize(
+    ("axes", "expected"),
+    [
+        # √(a² − b²)/ln[(a + √(a² − b²))/b], prolate, and √(a² − c²)/arctan(√(a² − c²)/c), oblate:
+        # Perrin 1936 J. Phys. Radium 7:1, as Berg, Random Walks in Biology, quotes them, from memory.
+        ((2e-6, 0.5e-6, 0.5e-6), np.sqrt(3.75) / np.log((2 + np.sqrt(3.75)) / 0.5) * 1e-6),
+        ((1.65e-6, 3.3e-6, 3.3e-6), 1.65e-6 * np.sqrt(3) / np.arctan(np.sqrt(3))),
+        ((1e-6, 1e-6, 1e-6), 1e-6),
+    ],
+)
+def test_hydrodynamic_radius(axes, expected):
+    found = red_cell(semi_axes=axes)
+    assert found.hydrodynamic_radius == pytest.approx(expected, rel=1e-9)
+    assert found.hydrodynamic_radius >= found.equivalent_radius * (1 - 1e-12)
