@@ -244,7 +244,7 @@ def test_drag_on_a_spinning_spheroid():
     ("axes", "expected"),
     [
         # √(a² − b²)/ln[(a + √(a² − b²))/b], prolate, and √(a² − c²)/arctan(√(a² − c²)/c), oblate:
-        # Perrin 1936 J. Phys. Radium 7:1, as Berg, Random Walks in Biology, quotes them, from memory.
+        # Perrin 1936 J. Phys. Radium 7:1, from memory.
         ((2e-6, 0.5e-6, 0.5e-6), np.sqrt(3.75) / np.log((2 + np.sqrt(3.75)) / 0.5) * 1e-6),
         ((1.65e-6, 3.3e-6, 3.3e-6), 1.65e-6 * np.sqrt(3) / np.arctan(np.sqrt(3))),
         ((1e-6, 1e-6, 1e-6), 1e-6),
