@@ -289,8 +289,11 @@ class Conditions:
 def _largest(weights: Sequence[Real], patterns: Sequence[Real]) -> Real:
     """Largest |Σ wᵢ pᵢ| along a line, of patterns (2, n) and factors (…, n_frequency).
 
-    The square at every place is one product over the sums pᵢ·pⱼ that the patterns give.
+    The square at every place is one product over the sums pᵢ·pⱼ that the patterns give; of a
+    single pattern the place does not change.
     """
+    if len(patterns) == 1:
+        return np.asarray(np.abs(weights[0]) * np.hypot(*patterns[0]).max())
     pairs = [(i, j) for i in range(len(patterns)) for j in range(i, len(patterns))]
     sums = np.stack(
         [(1 if i == j else 2) * (patterns[i] * patterns[j]).sum(axis=0) for i, j in pairs]
