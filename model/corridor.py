@@ -72,14 +72,19 @@ class Corridor:
         return tuple(bound for bound in self.bounds if bound.sense == "least")
 
 
-def rules(at: Conditions) -> tuple[Rule, ...]:
-    """Every law that the design has to keep: the task's first, then each limit's."""
+def rules(at: Conditions, only: str = "") -> tuple[Rule, ...]:
+    """Every law that the design has to keep: the task's first, then each limit's.
+
+    `only` those of one id, if it is given.
+    """
     task = at.design.task
-    found = [
-        Rule(task.kind, task.label, task.why, task.source, task.remedy, task.unit, law)
-        for law in task.laws(at)
-    ]
+    found = []
+    if only in ("", task.kind):
+        words = (task.kind, task.label, task.why, task.source, task.remedy, task.unit)
+        found += [Rule(*words, law) for law in task.laws(at)]
     for limit in LIMITS.values():
+        if only not in ("", limit.id):
+            continue
         words = (limit.id, limit.label, limit.why, limit.source, limit.remedy, limit.unit)
         found += [Rule(*words, law, limit.symbol) for law in limit.laws(at)]
     return tuple(found)

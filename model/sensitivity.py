@@ -53,8 +53,8 @@ def sensitivities(result: Evaluation) -> tuple[Sensitivity, ...]:
         conductivity = np.array(design.liquid.conductivity)
         at = Conditions(design, result.patterns, frequency, conductivity)
         voltage = design.drive.voltage
-        for rule in rules(at):
-            if (rule.id, rule.law.subject) == (binding.id, binding.law.subject):
+        for rule in rules(at, binding.id):
+            if rule.law.subject == binding.law.subject:
                 bound = float(rule.law.bound().reshape(-1)[0])
                 return bound / voltage if rule.law.sense == "most" else voltage / bound
         return None
