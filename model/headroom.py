@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 
 from model.arrays import Real
 from model.conditions import Conditions
-from model.corridor import Bound, corridor
+from model.corridor import corridor
 from model.design import Design
 from model.evaluate import Evaluation
 from model.fields.patterns import ChipPatterns
@@ -15,6 +15,15 @@ from model.voltage import PEAK_TO_PEAK
 
 #: Where nothing is asked of the voltage, the best point leaves this factor to the ceiling.
 _AMPLE = 4.0
+
+
+@dataclass(frozen=True)
+class Binder:
+    """A floor or ceiling by the id of its task or limit, its words, and its particle's name."""
+
+    id: str
+    label: str
+    subject: str
 
 
 @dataclass(frozen=True)
@@ -30,7 +39,7 @@ class HeadroomMap:
     floor_rule, ceiling_rule
         Which of `bounds` sets them, of the same shape.
     bounds
-        All floors and ceilings, as in :class:`model.corridor.Corridor`.
+        All floors and ceilings, as in :class:`model.corridor.Corridor`, without their values.
     """
 
     frequency: Real
@@ -39,7 +48,7 @@ class HeadroomMap:
     ceiling: Real
     floor_rule: NDArray[np.intp]
     ceiling_rule: NDArray[np.intp]
-    bounds: tuple[Bound, ...]
+    bounds: tuple[Binder, ...]
 
     def headroom(self, rms_voltage: float) -> Real:
         """min(ceiling/V, V/floor): the least headroom of all rules; at least 1 inside."""
@@ -82,7 +91,23 @@ def headroom_map(
         found.ceiling,
         np.asarray(places["least"])[stacks["least"].argmax(axis=0)],
         np.asarray(places["most"])[stacks["most"].argmin(axis=0)],
-        found.bounds,
+        tuple(Binder(bound.id, bound.label, bound.subject) for bound in found.bounds),
+    )
+
+
+def remembered_map(result: Evaluation, frequency: Real, conductivity: Real) -> HeadroomMap:
+    """:func:`headroom_map` of a result, kept with its chip while only the operating point moves."""
+    design = result.design
+    drive = design.drive.model_copy(update={"voltage": 1.0, "frequency": 1e6})
+    liquid = design.liquid.model_copy(update={"conductivity": 1.0})
+    resting = design.model_copy(
+        update={"title": "", "question": "", "drive": drive, "liquid": liquid}
+    )
+    ends = float(frequency[0]), float(frequency[-1]), frequency.size
+    rows = float(conductivity[0]), float(conductivity[-1]), conductivity.size
+    return result.patterns.remembered(
+        ("headroom", resting, ends, rows),
+        lambda: headroom_map(design, result.patterns, frequency, conductivity),
     )
 
 

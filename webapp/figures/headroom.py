@@ -1,0 +1,159 @@
+"""Headroom over frequency and conductivity at the present voltage, by what binds."""
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from scipy.ndimage import distance_transform_edt
+
+from model.arrays import Real
+from model.evaluate import Evaluation
+from model.headroom import HeadroomMap, remembered_map
+from model.quantity import format_si
+from model.verdict import format_headroom
+from webapp.figures.picture import colour_parts, picture
+from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark
+
+#: Columns and rows of the map, and the conductivities that it spans, S/m: those of the knob.
+COLUMNS, ROWS = 96, 56
+LOWEST, HIGHEST = 1e-4, 3.16
+#: Shades of the inside from a headroom of 1 to this one and more.
+_FULL = 3.0
+#: Strength of the colour of what binds outside, and of the accent inside at 1 and in full.
+_OUTSIDE, _INSIDE = 0.26, (0.3, 0.95)
+#: A region that has no room for a circle of this radius, in cells, gets no name.
+_ROOM = 3.0
+#: Text of an empty slot: a word joiner, which is drawn as nothing.
+_NOTHING = "\u2060"
+
+
+@dataclass(frozen=True)
+class _Name:
+    """Name of a region and its place, as shares of the axes."""
+
+    text: str
+    key: str
+    x: float
+    y: float
+
+
+def map_of(result: Evaluation) -> HeadroomMap:
+    """The map of a result, over its frequencies and the conductivities of the knob."""
+    ends = float(result.frequency[0]), float(result.frequency[-1])
+    return remembered_map(result, _centres(*ends, COLUMNS), _centres(LOWEST, HIGHEST, ROWS))
+
+
+def _centres(low: float, high: float, count: int) -> Real:
+    """Middles of so many equal stretches of a logarithmic axis."""
+    return np.asarray(low * (high / low) ** ((np.arange(count) + 0.5) / count))
+
+
+def headroom_figure(found: HeadroomMap, result: Evaluation, theme: Theme) -> Figure:
+    """Shade the inside by headroom, the outside by the limit that binds there."""
+    rms = result.rms_voltage
+    headroom, binding = found.headroom(rms), found.binding(rms)
+    low, high = float(result.frequency[0]), float(result.frequency[-1])
+    design = result.design
+    x_axis = log_axis(theme, "Frequency", low, high, "Hz")
+    y_axis = log_axis(theme, "Medium conductivity", LOWEST, HIGHEST, "S/m")
+    image = {
+        "source": picture(_colours(found, headroom, binding, theme)[::-1]),
+        "xref": "paper",
+        "yref": "paper",
+        "x": 0,
+        "y": 0,
+        "xanchor": "left",
+        "yanchor": "bottom",
+        "sizex": 1,
+        "sizey": 1,
+        "sizing": "stretch",
+        "layer": "below",
+    }
+    names = _names(found, headroom, binding)
+    slots = 2 + len({bound.id for bound in found.bounds})
+    return {
+        "data": [
+            _name_trace(names, slots, (low, high), theme),
+            mark(theme, design.drive.frequency, design.liquid.conductivity),
+        ],
+        "layout": layout(
+            theme,
+            xaxis={**x_axis, "showgrid": False},
+            yaxis={**y_axis, "showgrid": False},
+            images=[image],
+            margin={"l": 84, "r": 24, "t": 10, "b": 48},
+        ),
+    }
+
+
+def headroom_sentence(found: HeadroomMap, result: Evaluation) -> str:
+    """Say where there is room at this voltage."""
+    headroom = found.headroom(result.rms_voltage)
+    volts = format_si(result.design.drive.voltage, "V")
+    if not (headroom >= 1.0).any():
+        return f"At {volts} peak to peak no frequency and conductivity lies inside the corridor."
+    row, column = np.unravel_index(int(headroom.argmax()), headroom.shape)
+    share = float((headroom >= 1.0).mean())
+    place = (
+        f"{format_si(float(found.frequency[column]), 'Hz')} and "
+        f"{format_si(float(found.conductivity[row]), 'S/m')}"
+    )
+    return (
+        f"Inside the corridor at {volts} peak to peak, darker with more headroom: {share:.0%} of "
+        f"the map, most ({format_headroom(float(headroom.max()))}) near {place}. Elsewhere the "
+        "colour tells what binds. A click moves frequency and conductivity there."
+    )
+
+
+def _colours(found: HeadroomMap, headroom: Real, binding: Any, theme: Theme) -> Real:
+    """Colours of all cells, (rows, columns, 3)."""
+    paper, accent = colour_parts(theme.paper), colour_parts(theme.accent)
+    palette = np.array([colour_parts(limit_colour(theme, one.id)) for one in found.bounds])
+    outside = paper + _OUTSIDE * (palette[binding] - paper)
+    depth = np.clip(np.log(np.maximum(headroom, 1.0)) / np.log(_FULL), 0.0, 1.0)
+    strength = _INSIDE[0] + (_INSIDE[1] - _INSIDE[0]) * depth[..., None]
+    inside = paper + strength * (accent - paper)
+    return np.where((headroom >= 1.0)[..., None], inside, outside)
+
+
+def _names(found: HeadroomMap, headroom: Real, binding: Any) -> list[_Name]:
+    """A name for the inside and for each limit, where its region has most room."""
+    kinds = {bound.id: bound.label for bound in found.bounds}
+    regions = {"": headroom >= 1.0}
+    for key in kinds:
+        members = [k for k, bound in enumerate(found.bounds) if bound.id == key]
+        regions[key] = (headroom < 1.0) & np.isin(binding, members)
+    names = []
+    for key, region in regions.items():
+        framed = np.pad(region, 1)
+        room = distance_transform_edt(framed)[1:-1, 1:-1]
+        if room.max() < _ROOM:
+            continue
+        row, column = np.unravel_index(int(room.argmax()), room.shape)
+        text = kinds[key] if key else "corridor"
+        names.append(_Name(text, key, (column + 0.5) / COLUMNS, (row + 0.5) / ROWS))
+    return names
+
+
+def _name_trace(
+    names: list[_Name], slots: int, ends: tuple[float, float], theme: Theme
+) -> dict[str, Any]:
+    """Names as one trace of so many slots, so that they can move."""
+    full = [*names, *[_Name(_NOTHING, "", 0.0, 0.0)] * (slots - len(names))]
+    low, high = ends
+    return {
+        "type": "scatter",
+        "mode": "text",
+        "x": [low * (high / low) ** name.x for name in full],
+        "y": [LOWEST * (HIGHEST / LOWEST) ** name.y for name in full],
+        "text": [name.text for name in full],
+        "textposition": "middle center",
+        "textfont": {
+            "size": 13,
+            "color": [limit_colour(theme, name.key) if name.key else theme.text for name in full],
+            "shadow": ", ".join([f"0 0 3px {theme.paper}"] * 4),
+        },
+        "hoverinfo": "skip",
+        "cliponaxis": False,
+        "name": "regions",
+    }
