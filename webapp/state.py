@@ -40,12 +40,15 @@ class Options:
         Place (x, y) to be read out, m.
     held
         Key of the maps that the page holds already, so that they need not be sent again.
+    resting
+        Whether the hand rests, so that there is time for what is slow.
     """
 
     show: str = "four"
     particle: int = 0
     probe: tuple[float, float] | None = None
     held: str = ""
+    resting: bool = False
 
 
 #: Of a visitor who has chosen nothing.
@@ -99,7 +102,10 @@ def read_options(data: Any) -> Options:
         raise BadRequestError("an option is no short text")
     if type(particle) is not int or not 0 <= particle <= MOST_VALUES:
         raise BadRequestError("an option is no place in a list")
-    return Options(show, particle, _place(data.get("probe")), held)
+    resting = data.get("resting", False)
+    if not isinstance(resting, bool):
+        raise BadRequestError("an option is neither yes nor no")
+    return Options(show, particle, _place(data.get("probe")), held, resting)
 
 
 def _place(data: Any) -> tuple[float, float] | None:

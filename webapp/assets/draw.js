@@ -27,10 +27,10 @@
     if (!place) return;
     const kept = drawn[name];
     const data = figure.data.map((trace, index) => unpack(trace, kept && kept.data[index]));
-    const layout = JSON.stringify(figure.layout);
+    const layout = JSON.stringify(figure.layout, withoutPictures);
     const shape = JSON.stringify(data, withoutNumbers);
     const size = place.clientWidth + "×" + place.clientHeight;
-    const now = { data, layout, shape, parts: null, sketched: false, size };
+    const now = { data, layout, shape, parts: null, sketched: false, size, images: figure.layout.images };
     drawn[name] = now;
     const alike =
       kept &&
@@ -38,7 +38,7 @@
       kept.shape === shape &&
       size === kept.size &&
       data.every((trace, index) => trace.z === kept.data[index].z);
-    if (alike && page.sketch(place, kept.parts, data)) {
+    if (alike && page.sketch(place, kept.parts, data, figure.layout.images)) {
       now.parts = kept.parts;
       now.sketched = true;
       clearTimeout(resting);
@@ -59,8 +59,18 @@
   }
 
   function full(place, figure) {
-    window.Plotly.react(place, figure.data, JSON.parse(figure.layout), CONFIG);
+    window.Plotly.react(place, figure.data, layoutOf(figure), CONFIG);
     figure.parts = page.sketchParts(place);
+  }
+
+  /* A picture behind a figure may change without a full redraw, so it is kept apart. */
+  function withoutPictures(key, value) {
+    return key === "images" ? undefined : value;
+  }
+
+  function layoutOf(figure) {
+    const layout = JSON.parse(figure.layout);
+    return figure.images ? { ...layout, images: figure.images } : layout;
   }
 
   function withoutNumbers(key, value) {
@@ -118,7 +128,7 @@
     if (!place || !kept) return;
     const width = Math.max(760, place.clientWidth);
     const height = Math.max(420, place.clientHeight) + 84;
-    const layout = JSON.parse(kept.layout);
+    const layout = layoutOf(kept);
     const margin = layout.margin;
     layout.title = {
       text: place.getAttribute("aria-label"),

@@ -25,16 +25,32 @@
   let dirty = false;
   let asked = 0;
   let sent = "";
+  let resting = 0;
+  const RESTS = 350; // ms without a change, after which there is time for what is slow
 
   /* Ask for an answer to the values as they are now. */
   gate.push = function () {
     if (!dirty) asked = performance.now();
     dirty = true;
+    rest(false);
     pump();
   };
 
   /* Whether newer values wait or are under way than those that were answered last. */
   gate.moving = () => dirty || waiting;
+
+  /* Whether the hand rests travels with each request; the last of a drag says that it does. */
+  function rest(rests) {
+    gate.options.resting = rests;
+    clearTimeout(resting);
+    if (rests) {
+      dirty = true;
+      asked = performance.now();
+      pump();
+    } else {
+      resting = setTimeout(rest, RESTS, true);
+    }
+  }
 
   /* What a request carries. */
   gate.body = function () {

@@ -109,6 +109,16 @@
     for (const [name, figure] of Object.entries(answer.figures)) page.draw(name, figure);
     for (const [name, words] of Object.entries(answer.sentences)) text("sentence-" + name, words);
     if (answer.ledger) page.ledger(answer.ledger);
+    if (answer.best !== undefined) best(answer.best);
+    if (answer.sensitivity) page.sensitivity(answer.sensitivity);
+  }
+
+  /* The button that goes where the corridor is widest, if there is one. */
+  function best(found) {
+    const button = byId("best-point");
+    button.disabled = found === null;
+    button.title = found ? bound(found.words) : "No frequency has a corridor in this liquid";
+    page.best = found;
   }
 
   function show(answer) {
@@ -309,12 +319,16 @@
     const button = event.target.closest && event.target.closest("button.export");
     if (button) page.save(button.dataset.figure, button.dataset.format);
     if (event.target.id === "heed") document.querySelector("#view > footer").scrollIntoView();
-    const figure = event.target.closest && event.target.closest("#figure-corridor");
-    if (figure) {
-      const place = page.valueAt(figure, event);
+    if (event.target.id === "best-point" && page.best) {
+      page.knobs.set("drive.frequency", page.best.frequency);
+      page.knobs.set("drive.voltage", page.best.voltage);
+    }
+    for (const [name, path] of [["corridor", "drive.voltage"], ["headroom", "liquid.conductivity"]]) {
+      const figure = event.target.closest && event.target.closest("#figure-" + name);
+      const place = figure && page.valueAt(figure, event);
       if (place) {
         page.knobs.set("drive.frequency", place.x);
-        page.knobs.set("drive.voltage", place.y);
+        page.knobs.set(path, place.y);
       }
     }
   }

@@ -25,10 +25,14 @@
   };
 
   /* Move all parts to new numbers; false, with nothing moved, where the parts do not fit them. */
-  page.sketch = function (place, parts, data) {
+  page.sketch = function (place, parts, data, images) {
     if (!parts || !place._fullLayout || !data.every((trace, index) => fits(trace, parts[index], parts[index - 1]))) {
       return false;
     }
+    place.querySelectorAll(".imagelayer image").forEach((image, k) => {
+      const source = images[k].source;
+      if (image.getAttribute("href") !== source) image.setAttribute("href", source);
+    });
     let before = null; // pixels of the trace before, for the fill between two
     data.forEach((trace, index) => {
       if (trace.z) return; // a map stays as it was drawn

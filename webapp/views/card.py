@@ -6,8 +6,8 @@ from dash import html
 from dash.development.base_component import Component
 
 
-def card(name: str, heading: str) -> Component:
-    """Place for the figure `name`; the browser draws into it."""
+def card(name: str, heading: str, *more: Component) -> Component:
+    """Place for the figure `name`; the browser draws into it. `more` stands beside the heading."""
     place: dict[str, Any] = {
         "role": "img",
         "aria-label": heading,
@@ -17,7 +17,8 @@ def card(name: str, heading: str) -> Component:
     return html.Section(
         [
             html.Div(
-                [html.H2(heading), html.Div(exports, className="exports")], className="card-head"
+                [html.H2(heading), *more, html.Div(exports, className="exports")],
+                className="card-head",
             ),
             html.Div(id=f"figure-{name}", className="figure", **place),
             html.P(id=f"sentence-{name}", className="sentence"),
