@@ -9,13 +9,14 @@ from scipy.ndimage import distance_transform_edt
 from model.arrays import Real
 from model.evaluate import Evaluation
 from model.headroom import HeadroomMap, remembered_map
+from model.limits import LIMITS
 from model.quantity import format_si
 from model.verdict import format_headroom
 from webapp.figures.picture import colour_parts, picture
 from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark
 
 #: Columns and rows of the map, and the conductivities that it spans, S/m: those of the knob.
-COLUMNS, ROWS = 96, 56
+COLUMNS, ROWS = 120, 72
 LOWEST, HIGHEST = 1e-4, 3.16
 #: Shades of the inside from a headroom of 1 to this one and more.
 _FULL = 3.0
@@ -81,7 +82,7 @@ def headroom_figure(found: HeadroomMap, result: Evaluation, theme: Theme) -> Fig
             xaxis={**x_axis, "showgrid": False},
             yaxis={**y_axis, "showgrid": False},
             images=[image],
-            margin={"l": 84, "r": 24, "t": 10, "b": 48},
+            margin={"l": 96, "r": 24, "t": 10, "b": 48},
         ),
     }
 
@@ -108,12 +109,17 @@ def headroom_sentence(found: HeadroomMap, result: Evaluation) -> str:
 def _colours(found: HeadroomMap, headroom: Real, binding: Any, theme: Theme) -> Real:
     """Colours of all cells, (rows, columns, 3)."""
     paper, accent = colour_parts(theme.paper), colour_parts(theme.accent)
-    palette = np.array([colour_parts(limit_colour(theme, one.id)) for one in found.bounds])
+    palette = np.array([colour_parts(_colour(one.id, theme)) for one in found.bounds])
     outside = paper + _OUTSIDE * (palette[binding] - paper)
     depth = np.clip(np.log(np.maximum(headroom, 1.0)) / np.log(_FULL), 0.0, 1.0)
     strength = _INSIDE[0] + (_INSIDE[1] - _INSIDE[0]) * depth[..., None]
     inside = paper + strength * (accent - paper)
     return np.where((headroom >= 1.0)[..., None], inside, outside)
+
+
+def _colour(key: str, theme: Theme) -> str:
+    """Colour of a limit; grey for the task, as the accent is the inside's."""
+    return limit_colour(theme, key) if key in LIMITS else theme.quiet
 
 
 def _names(found: HeadroomMap, headroom: Real, binding: Any) -> list[_Name]:
@@ -150,7 +156,7 @@ def _name_trace(
         "textposition": "middle center",
         "textfont": {
             "size": 13,
-            "color": [limit_colour(theme, name.key) if name.key else theme.text for name in full],
+            "color": [_colour(name.key, theme) if name.key else theme.text for name in full],
             "shadow": ", ".join([f"0 0 3px {theme.paper}"] * 4),
         },
         "hoverinfo": "skip",
