@@ -24,6 +24,8 @@ _FULL = 3.0
 _OUTSIDE, _INSIDE = 0.26, (0.3, 0.95)
 #: A region that has no room for a circle of this radius, in cells, gets no name.
 _ROOM = 3.0
+#: Half the width of a letter as a share of the axis, on a narrow page.
+_LETTER = 0.0085
 #: Text of an empty slot: a word joiner, which is drawn as nothing.
 _NOTHING = "\u2060"
 
@@ -100,7 +102,7 @@ def headroom_sentence(found: HeadroomMap, result: Evaluation) -> str:
         f"{format_si(float(found.conductivity[row]), 'S/m')}"
     )
     return (
-        f"Inside the corridor at {volts} peak to peak, darker with more headroom: {share:.0%} of "
+        f"Inside the corridor at {volts} peak to peak, the stronger the colour the more headroom: {share:.0%} of "
         f"the map, most ({format_headroom(float(headroom.max()))}) near {place}. Elsewhere the "
         "colour tells what binds. A click moves frequency and conductivity there."
     )
@@ -137,7 +139,9 @@ def _names(found: HeadroomMap, headroom: Real, binding: Any) -> list[_Name]:
             continue
         row, column = np.unravel_index(int(room.argmax()), room.shape)
         text = kinds[key] if key else "corridor"
-        names.append(_Name(text, key, (column + 0.5) / COLUMNS, (row + 0.5) / ROWS))
+        half = _LETTER * len(text)
+        x = min(max((column + 0.5) / COLUMNS, half), 1.0 - half)  # no name leaves the axes
+        names.append(_Name(text, key, x, (row + 0.5) / ROWS))
     return names
 
 
