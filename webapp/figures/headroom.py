@@ -102,8 +102,9 @@ def headroom_sentence(found: HeadroomMap, result: Evaluation) -> str:
         f"{format_si(float(found.conductivity[row]), 'S/m')}"
     )
     return (
-        f"Inside the corridor at {volts} peak to peak, the stronger the colour the more headroom: {share:.0%} of "
-        f"the map, most ({format_headroom(float(headroom.max()))}) near {place}. Elsewhere the "
+        f"Inside the corridor at {volts} peak to peak lies {share:.0%} of the map, the stronger "
+        "the colour the more headroom; most "
+        f"({format_headroom(float(headroom.max()))}) near {place}. Elsewhere the "
         "colour tells what binds. A click moves frequency and conductivity there."
     )
 
