@@ -4,6 +4,7 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.ndimage import distance_transform_edt
 
 from model.arrays import Real
@@ -22,6 +23,10 @@ LOWEST, HIGHEST = 1e-4, 3.16
 _FULL = 3.0
 #: Strength of the colour of what binds outside, and of the accent inside at 1 and in full.
 _OUTSIDE, _INSIDE = 0.26, (0.3, 0.95)
+#: Shades of the inside.
+_STEPS = 24
+#: Names are placed on every so many cells.
+_COARSE = 3
 #: A region that has no room for a circle of this radius, in cells, gets no name.
 _ROOM = 3.0
 #: Half the width of a letter as a share of the axis, on a narrow page.
@@ -60,7 +65,7 @@ def headroom_figure(found: HeadroomMap, result: Evaluation, theme: Theme) -> Fig
     x_axis = log_axis(theme, "Frequency", low, high, "Hz")
     y_axis = log_axis(theme, "Medium conductivity", LOWEST, HIGHEST, "S/m")
     image = {
-        "source": picture(_colours(found, headroom, binding, theme)[::-1]),
+        "source": _picture(found, headroom, binding, theme),
         "xref": "paper",
         "yref": "paper",
         "x": 0,
@@ -109,15 +114,19 @@ def headroom_sentence(found: HeadroomMap, result: Evaluation) -> str:
     )
 
 
-def _colours(found: HeadroomMap, headroom: Real, binding: Any, theme: Theme) -> Real:
-    """Colours of all cells, (rows, columns, 3)."""
+def _picture(found: HeadroomMap, headroom: Real, binding: NDArray[np.intp], theme: Theme) -> str:
+    """Picture of all cells: inside in steps of headroom, outside in the colour of what binds."""
     paper, accent = colour_parts(theme.paper), colour_parts(theme.accent)
-    palette = np.array([colour_parts(_colour(one.id, theme)) for one in found.bounds])
-    outside = paper + _OUTSIDE * (palette[binding] - paper)
-    depth = np.clip(np.log(np.maximum(headroom, 1.0)) / np.log(_FULL), 0.0, 1.0)
-    strength = _INSIDE[0] + (_INSIDE[1] - _INSIDE[0]) * depth[..., None]
-    inside = paper + strength * (accent - paper)
-    return np.where((headroom >= 1.0)[..., None], inside, outside)
+    limits = np.array([colour_parts(_colour(one.id, theme)) for one in found.bounds])
+    strength = np.linspace(*_INSIDE, _STEPS)[:, None]
+    palette = np.concatenate(
+        [paper + strength * (accent - paper), paper + _OUTSIDE * (limits - paper)]
+    )
+    with np.errstate(divide="ignore"):
+        step = np.log(headroom) * ((_STEPS - 1) / np.log(_FULL))
+    inside = np.minimum(step, _STEPS - 1)
+    indices = np.where(headroom >= 1.0, inside, binding + _STEPS).astype(np.uint8)
+    return picture(indices[::-1], palette)
 
 
 def _colour(key: str, theme: Theme) -> str:
@@ -125,24 +134,23 @@ def _colour(key: str, theme: Theme) -> str:
     return limit_colour(theme, key) if key in LIMITS else theme.quiet
 
 
-def _names(found: HeadroomMap, headroom: Real, binding: Any) -> list[_Name]:
+def _names(found: HeadroomMap, headroom: Real, binding: NDArray[np.intp]) -> list[_Name]:
     """A name for the inside and for each limit, where its region has most room."""
     kinds = {bound.id: bound.label for bound in found.bounds}
-    regions = {"": headroom >= 1.0}
-    for key in kinds:
-        members = [k for k, bound in enumerate(found.bounds) if bound.id == key]
-        regions[key] = (headroom < 1.0) & np.isin(binding, members)
+    order = list(kinds)
+    kind = np.array([order.index(bound.id) for bound in found.bounds])[binding]
+    kind = np.where(headroom >= 1.0, -1, kind)[::_COARSE, ::_COARSE]
     names = []
-    for key, region in regions.items():
-        framed = np.pad(region, 1)
-        room = distance_transform_edt(framed)[1:-1, 1:-1]
-        if room.max() < _ROOM:
+    for index in np.unique(kind):
+        room = distance_transform_edt(np.pad(kind == index, 1))[1:-1, 1:-1]
+        if room.max() * _COARSE < _ROOM:
             continue
         row, column = np.unravel_index(int(room.argmax()), room.shape)
-        text = kinds[key] if key else "corridor"
+        key = order[index] if index >= 0 else ""
+        text = kinds.get(key, "corridor")
         half = _LETTER * len(text)
-        x = min(max((column + 0.5) / COLUMNS, half), 1.0 - half)  # no name leaves the axes
-        names.append(_Name(text, key, x, (row + 0.5) / ROWS))
+        x = min(max((column + 0.5) * _COARSE / COLUMNS, half), 1.0 - half)  # within the axes
+        names.append(_Name(text, key, x, (row + 0.5) * _COARSE / ROWS))
     return names
 
 

@@ -5,23 +5,31 @@ import struct
 import zlib
 
 import numpy as np
+from numpy.typing import NDArray
 
 from model.arrays import Real
 
 
-def picture(colours: Real) -> str:
+def picture(indices: NDArray[np.uint8], palette: Real) -> str:
     """Address of a PNG picture (W3C recommendation, 2003) that holds its own data.
 
     Parameters
     ----------
-    colours
-        Red, green and blue from 0 to 1, (rows, columns, 3), the top row first.
+    indices
+        Which colour each cell has, (rows, columns), the top row first.
+    palette
+        Red, green and blue from 0 to 1 of at most 256 colours, (n, 3).
     """
-    rows, columns, _ = colours.shape
-    plain = np.zeros((rows, 1 + 3 * columns), dtype=np.uint8)  # each row led by its filter: none
-    plain[:, 1:] = np.rint(255.0 * np.clip(colours, 0.0, 1.0)).reshape(rows, -1)
-    header = struct.pack(">IIBBBBB", columns, rows, 8, 2, 0, 0, 0)
-    parts = ((b"IHDR", header), (b"IDAT", zlib.compress(plain.tobytes(), 6)), (b"IEND", b""))
+    rows, columns = indices.shape
+    plain = np.zeros((rows, 1 + columns), dtype=np.uint8)  # each row led by its filter: none
+    plain[:, 1:] = indices
+    colours = np.rint(255.0 * np.clip(palette, 0.0, 1.0)).astype(np.uint8)
+    parts = (
+        (b"IHDR", struct.pack(">IIBBBBB", columns, rows, 8, 3, 0, 0, 0)),
+        (b"PLTE", colours.tobytes()),
+        (b"IDAT", zlib.compress(plain.tobytes(), 6)),
+        (b"IEND", b""),
+    )
     data = b"\x89PNG\r\n\x1a\n" + b"".join(_chunk(*part) for part in parts)
     return "data:image/png;base64," + base64.b64encode(data).decode()
 
