@@ -169,7 +169,7 @@ class Conditions:
         """
         radius = particle.hydrodynamic_radius
         relative = self.wall_distance / radius
-        slowed = np.array([drag_parallel(relative), drag_perpendicular(relative)])[:, None]
+        slowed = self.patterns.remembered(("walls", relative), lambda: _slowed(relative))
         patterns = [pattern / slowed for pattern in self._force_patterns]
         drag = 6.0 * np.pi * self.liquid.viscosity * radius
         return self.force_scale(particle) / drag * _largest(self.force_weights(particle), patterns)
@@ -280,7 +280,10 @@ class Conditions:
         """
         chip, rate = self.design.chip, self.design.flow.rate
         if self.line.through is None:
-            return float(local_speed(rate, chip.height, chip.channel_width, height))
+            sizes = chip.height, chip.channel_width, height
+            return rate * self.patterns.remembered(
+                ("flow", height), lambda: float(local_speed(1.0, *sizes))
+            )
         share = height / chip.height
         mean = self.line.through[0, self._best_place]
         return float(6.0 * share * (1.0 - share) * rate * mean)
@@ -300,6 +303,11 @@ def _largest(weights: Sequence[Real], patterns: Sequence[Real]) -> Real:
     )
     products = np.stack([weights[i] * weights[j] for i, j in pairs], axis=-1)
     return np.asarray(np.sqrt(np.maximum((products @ sums).max(axis=-1), 0.0)))
+
+
+def _slowed(relative: float) -> Real:
+    """Wall factors of the drag along the walls and straight to them, (2, 1)."""
+    return np.array([drag_parallel(relative), drag_perpendicular(relative)])[:, None]
 
 
 def _with_gradient(line: Line, radius: float) -> float:
