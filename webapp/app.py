@@ -13,6 +13,7 @@ from flask_compress import Compress
 from werkzeug.exceptions import MethodNotAllowed
 
 from model.files import either
+from model.library import load_library
 from webapp import callbacks
 from webapp.answer import answer
 from webapp.cache import ChipCache, Solver, default_folder, settings, solve
@@ -36,6 +37,8 @@ class Settings:
         Folder of profiles offered under "Open a demo".
     first
         Profile shown to a visitor without a link, instead of the folder's first.
+    library
+        File of particles that are offered beside the published ones.
     cache_folder
         Private folder for solved chips; by default one of this user's.
     solver
@@ -44,6 +47,7 @@ class Settings:
 
     profiles: Path = DEMO_PROFILES
     first: Path | None = None
+    library: Path | None = None
     cache_folder: Path | None = None
     solver: Solver | None = None
 
@@ -54,7 +58,7 @@ def make_app(chosen: Settings | None = None) -> Dash:
     Raises
     ------
     DesignError, FileNotFoundError
-        If a profile of the folder is bad, or there is none.
+        If a profile of the folder is bad, or there is none, or the file of particles is bad.
     """
     chosen = chosen or Settings()
     folder = chosen.cache_folder or default_folder()
@@ -67,7 +71,7 @@ def make_app(chosen: Settings | None = None) -> Dash:
     files = either(files_of(profiles, folders), uploads)
     solver = chosen.solver or partial(solve, files=files)
     chips = ChipCache(Cache(server, config=settings(folder)), folder, solver)
-    services = Services(chips, profiles)
+    services = Services(chips, profiles, load_library(chosen.library))
 
     app = Dash(
         "slackwater",
