@@ -11,6 +11,7 @@ from model.arrays import Real
 from model.declare import Part, Quantity
 from model.liquid import water
 from model.liquid.electrolyte import Electrolyte, simple_salt
+from model.liquid.recipe import Recipe
 from model.medium import Medium
 
 
@@ -94,6 +95,8 @@ class Liquid(Part):
             detail=True,
         ),
     ] = None
+
+    recipe: Recipe | None = None
 
     @property
     def heat_conductivity(self) -> float:
