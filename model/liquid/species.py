@@ -16,12 +16,14 @@ Sources of the numbers, unless one stands beside them:
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import lru_cache
 from types import MappingProxyType
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.constants import Avogadro, elementary_charge, gas_constant
 
-from model.arrays import Real
+from model.arrays import Real, read_only
 from model.liquid import water
 
 FARADAY = Avogadro * elementary_charge
@@ -103,6 +105,7 @@ SPECIES: Mapping[str, Species] = MappingProxyType(
 )
 
 
+@lru_cache(maxsize=64)  # liquids of few kinds at few temperatures; pure
 def diffusivity(names: tuple[str, ...], temperature: float) -> Real:
     """D = RTλ/(|z|F²), m²/s, at infinite dilution in water; (n_species,), 0 for molecules.
 
@@ -119,4 +122,36 @@ def diffusivity(names: tuple[str, ...], temperature: float) -> Real:
         ion = SPECIES[name]
         limiting = 1e-4 * ion.conductivity * np.exp((ion.slopes[0] + ion.slopes[1] * log) * log)
         found.append(gas_constant * temperature * limiting / (max(abs(ion.charge), 1) * FARADAY**2))
-    return np.array(found)
+    return read_only(np.array(found))
+
+
+@dataclass(frozen=True)
+class Columns:
+    """Numbers of several species side by side in SI, each (n_species,); see :class:`Species`.
+
+    `ions` tells which are ions; B and decrements are in m³/mol.
+    """
+
+    ions: NDArray[np.bool_]
+    charges: Real
+    masses: Real
+    volumes: Real
+    thickening: Real
+    decrements: Real
+    sizes: Real
+
+
+@lru_cache(maxsize=32)  # liquids of few kinds; pure
+def columns(names: tuple[str, ...]) -> Columns:
+    """The numbers of `names`, keys of :data:`SPECIES`."""
+    found = [SPECIES[name] for name in names]
+    charges = np.array([float(one.charge) for one in found])
+    return Columns(
+        charges != 0.0,
+        charges,
+        1e-3 * np.array([one.mass for one in found]),
+        1e-6 * np.array([one.volume for one in found]),
+        1e-3 * np.array([one.viscosity for one in found]),
+        1e-3 * np.array([one.decrement for one in found]),
+        1e-9 * np.array([one.size for one in found]),
+    )
