@@ -19,7 +19,7 @@ from model.liquid.reaching import blended, reach
 from model.liquid.recipe import Recipe
 from model.liquid.solution import PURE
 from model.medium import Medium
-from model.quantity import canonical
+from model.quantity import plain_text
 
 #: Relative rise of conductivity with temperature where nothing tells it, 1/K.
 USUAL_SLOPE = 0.02
@@ -118,20 +118,24 @@ class Liquid(Part):
             liquid = handler({**data, "conductivity": "1 S/m"})
         else:
             alone, liquid = False, handler(data)
-        recipe, conductivity = liquid.recipe, liquid.conductivity
+        recipe = liquid.recipe
         if recipe is None:
             return liquid
         found = list(fixed_misfits(recipe, liquid.temperature))
         if not found and recipe.amount is not None:
-            stated = None if alone else conductivity
+            stated = None if alone else liquid.conductivity
             found = list(amount_misfits(recipe, liquid.temperature, stated, _CONDUCTIVITY))
-            conductivity = stated or canonical(made_by(recipe, liquid.temperature), "mS/m")
-            recipe = recipe.model_copy(update={"amount": None})
+            if not found:
+                made = made_by(recipe, liquid.temperature) if stated is None else stated
+                recipe = recipe.model_copy(update={"amount": None})
+                liquid = handler(
+                    {**data, "conductivity": plain_text(made, "mS/m"), "recipe": recipe}
+                )
         if not found:
-            found = list(misfits(recipe, conductivity, liquid.temperature))
+            found = list(misfits(recipe, liquid.conductivity, liquid.temperature))
         if found:
             raise misfit(*found)
-        return liquid.model_copy(update={"recipe": recipe, "conductivity": conductivity})
+        return liquid
 
     @property
     def heat_conductivity(self) -> float:
@@ -178,6 +182,11 @@ class Liquid(Part):
             return USUAL_SLOPE
         around = [self.blend.solution.conductivity(self.temperature + step) for step in (0.5, -0.5)]
         return float(np.log(around[0] / around[1]))
+
+    @property
+    def ions(self) -> Electrolyte:
+        """Its ions at its own conductivity."""
+        return self.electrolyte(np.asarray(self.conductivity))
 
     def electrolyte(self, conductivity: Real) -> Electrolyte:
         """Its ions at other conductivities, S/m, of any shape.
