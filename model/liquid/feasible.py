@@ -16,6 +16,8 @@ from model.quantity import format_quantity, format_si, pretty_unit, to_unit
 AGREEMENT = 0.01
 #: Slack of the bounds, so that values that were worked out from them can be used.
 _SLACK = 1e-9
+#: Sugar that is too little to be missed, mol/m³; conductivities are held to ten digits.
+_TOO_LITTLE = 0.01
 _MODELLED = f"{MOST_IONS:.0f} mmol/L of ionic strength, the most that is modelled"
 _CROWDED = "more sugar than is modelled, some 40 % by weight"
 
@@ -78,7 +80,7 @@ def _osmotic_misfits(recipe: Recipe, blend: Blend) -> Iterator[tuple[str, str]]:
     """An osmolality that needs less than no sugar, or more than dissolves."""
     sugar, solution = SOLUTES[recipe.sugar], blend.solution
     there = float(solution.concentrations[solution.names.index(recipe.sugar)])
-    if float(blend.sugar) < -_SLACK * sugar.most:
+    if float(blend.sugar) < -_TOO_LITTLE:
         least = _bound(float(solution.osmolality), "mOsm/kg", up=True)
         yield "recipe.osmolality", f"must be at least {least}: salt and ingredients make so much"
     elif there > sugar.most * (1.0 + _SLACK):

@@ -14,6 +14,11 @@ from model.liquid.solutes import SOLUTES, Solute, of_kind
 from model.liquid.species import REFERENCE
 
 Role = Literal["salt", "sugar", "fixed", "ph"]
+#: Of whatever sets the pH.
+CAUTION = (
+    "Sodium hydroxide and hydrochloric acid burn skin and eyes. Local laboratory safety rules come "
+    "first; add them in drops with a pH meter, the amounts here are estimates."
+)
 #: Carbon dioxide of the air in water, S/m: 1.10 µS/cm at 25 °C, CRC "Standard KCl solutions".
 OF_AIR = 1.1e-4
 #: A conductivity of so many times that of the air's carbon dioxide hardly feels it.
@@ -82,6 +87,11 @@ class Mixed:
     debye_length: float
     ph: float | None
     notes: tuple[str, ...]
+
+    @property
+    def caution(self) -> str:
+        """What can hurt whoever mixes it; empty if nothing does."""
+        return CAUTION if any(portion.role == "ph" for portion in self.portions) else ""
 
 
 def mixed(liquid: Liquid) -> Mixed | None:

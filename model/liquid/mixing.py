@@ -108,7 +108,8 @@ class Mixing:
             # m from m + bm² = missing, without cancellation
             root = np.sqrt(np.maximum(1.0 + 4.0 * sugar.osmotic * missing, 0.0))
             molality = 2.0 * missing / (1.0 + root)
-            water = without / (1.0 + REFERENCE_DENSITY * 1e-6 * sugar.volume * molality)
+            displaced = REFERENCE_DENSITY * 1e-6 * sugar.volume * np.maximum(molality, 0.0)
+            water = without / (1.0 + displaced)
         return np.asarray(molality * water - mixed[index])
 
     def _array(self, counts: dict[str, float]) -> Real:

@@ -106,7 +106,7 @@ class Recipe(Part):
     ph: Annotated[
         float,
         Quantity(
-            "pH",
+            "Acidity, pH",
             "To which the buffers are brought at 25 °C, with sodium hydroxide or hydrochloric "
             "acid; without a buffer it does not count.",
             unit="",

@@ -126,11 +126,9 @@ SOLUTES: Mapping[str, Solute] = MappingProxyType(
             "trehalose", (("trehalose", 1),), "C12H22O11·2H2O", "sugar", 2.0, most=1300.0
         ),
         "NaOH": Solute(
-            "sodium hydroxide, to the pH", (("Na+", 1), ("OH-", 1)), "NaOH", "titrant", stock=_MOLAR
+            "sodium hydroxide", (("Na+", 1), ("OH-", 1)), "NaOH", "titrant", stock=_MOLAR
         ),
-        "HCl": Solute(
-            "hydrochloric acid, to the pH", (("H+", 1), ("Cl-", 1)), "HCl", "titrant", stock=_MOLAR
-        ),
+        "HCl": Solute("hydrochloric acid", (("H+", 1), ("Cl-", 1)), "HCl", "titrant", stock=_MOLAR),
     }
 )
 

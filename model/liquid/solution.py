@@ -65,7 +65,7 @@ class Solution:
         return osmotic.osmolality(self.names, self.concentrations / self.water)
 
     def density(self, temperature: float) -> Real:
-        """kg/m³; within 0.2 % up to 1 mol/L of salt or sugar."""
+        """kg/m³; within 0.3 % up to 1 mol/L of ionic strength or of sugar."""
         return _water(temperature).warmed * (self.water + self._sum(self.columns.masses))
 
     @property
