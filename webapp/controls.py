@@ -25,8 +25,15 @@ from model.layouts import LAYOUTS
 from model.quantity import format_quantity
 from webapp.figures.theme import DASHES
 
-#: Fields that live in the operating strip and the header instead.
-ELSEWHERE = {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
+#: Fields that live in the operating strip and the header instead; the amount of salt is the
+#: conductivity in other words.
+ELSEWHERE = {
+    "drive.frequency",
+    "drive.voltage",
+    "liquid.conductivity",
+    "liquid.recipe.amount",
+    "title",
+}
 
 #: Longest option, in letters, that a control of half the width shows whole.
 _FITS = 12
