@@ -10,6 +10,7 @@ from model.errors import DesignError
 from model.evaluate import Evaluation
 from model.profile import fingerprint
 from model.quantity import DIGITS, format_quantity, format_si
+from model.summary import spectrum_rows
 from model.verdict import verdict
 from model.version import VERSION
 from webapp.controls import all_fields, summaries
@@ -43,6 +44,22 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
         "colours": [particle_line(theme, index)["color"] for index in range(len(design.particles))],
         **view(result, theme, request.options),
     }
+
+
+def spectra(data: Any, services: Services) -> dict[str, Any]:
+    """Polarisation spectra as the command line writes them, or which controls cannot be used.
+
+    Raises
+    ------
+    BadRequestError
+        If no page of ours could have sent `data`.
+    """
+    request = read_request(data)
+    try:
+        result = services.evaluate(design_of(request))
+    except DesignError as problem:
+        return error_answer(request.number, problem)
+    return {"csv": "\n".join([*spectrum_rows(result.design, result.frequency), ""])}
 
 
 def state_answer(number: int, result: Evaluation) -> dict[str, Any]:

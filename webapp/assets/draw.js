@@ -119,6 +119,7 @@
     const width = Math.max(760, place.clientWidth);
     const height = Math.max(420, place.clientHeight) + 84;
     const layout = JSON.parse(kept.layout);
+    layout.showlegend = Boolean(layout.legend); // on the page a key can name the lines instead
     const margin = layout.margin;
     layout.title = {
       text: place.getAttribute("aria-label"),
