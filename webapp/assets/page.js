@@ -262,6 +262,7 @@
   }
 
   page.toast = toast;
+
   function toast(words) {
     const place = byId("toast");
     place.textContent = words;
