@@ -2,7 +2,7 @@
 
 from typing import Any
 
-from model.alignment import alignment_energy, alignment_ranges
+from model.alignment import alignment_energy, alignment_ranges, alignment_words
 from model.evaluate import Evaluation, ParticleResult
 from model.particle import Particle
 from model.quantity import format_quantity, format_si
@@ -36,7 +36,7 @@ _CSV_HEADINGS = (
     "largest Im K by size",
     "its frequency (Hz)",
     "surface conductance (nS)",
-    "along the field",
+    "semi-axes along the field (um from Hz to Hz)",
     "alignment energy (kT)",
 )
 
@@ -76,33 +76,9 @@ def _surface(result: Evaluation, particle: Particle) -> list[str]:
 
 
 def _attitude(result: Evaluation, particle: Particle) -> list[str]:
-    """Which axis stands along the field where, and how firmly; none if the particle cannot turn."""
-    words, energy = _along(result, particle), alignment_energy(result, particle)
-    if not words or energy is None:
-        return []
-    firm = format_quantity(energy, "", 2)
-    return [f"Along the field {words}; alignment energy {firm} kT here, where the field is most."]
-
-
-def _along(result: Evaluation, particle: Particle) -> str:
-    """Axes along the field, by frequency; nothing if the particle cannot turn."""
-    ends = float(result.frequency[0]), float(result.frequency[-1])
-    found = particle.alignment(result.point.medium)
-    if found is None:
-        return ""
-    shortest, longest = float(found.lengths.min()), float(found.lengths.max())
-    return ", then ".join(
-        f"the {_axis_word(one.length, shortest, longest)} from "
-        f"{format_si(one.low, 'Hz')} to {format_si(one.high, 'Hz')}"
-        for one in alignment_ranges(particle, result.design.liquid, *ends)
-    )
-
-
-def _axis_word(length: float, shortest: float, longest: float) -> str:
-    """Call an axis by its length among the three."""
-    if length >= longest:
-        return "long axis"
-    return "short axis" if length <= shortest else "middle axis"
+    """Which axis lies along the field, and how firmly; none if the particle does not turn."""
+    words = alignment_words(result, particle)
+    return [f"{words[:1].upper()}{words[1:]}."] if words else []
 
 
 def table_csv(result: Evaluation) -> str:
@@ -124,9 +100,18 @@ def _values(result: Evaluation, found: ParticleResult) -> list[str]:
         *(_frequencies(kept, rising) for rising in (True, False)),
         *map(_plain, (features.low, features.high, features.peak, features.peak_frequency)),
         "" if conductance is None else _plain(float(conductance) * 1e9),
-        _along(result, particle),
+        _axes(result, particle),
         "" if energy is None else _plain(energy),
     ]
+
+
+def _axes(result: Evaluation, particle: Particle) -> str:
+    """Every semi-axis that lies along the field with its frequencies, in one cell."""
+    ends = float(result.frequency[0]), float(result.frequency[-1])
+    return " ".join(
+        f"{_plain(one.length * 1e6)} from {_plain(one.low)} to {_plain(one.high)}"
+        for one in alignment_ranges(particle, result.design.liquid, *ends)
+    )
 
 
 def _plain(value: float) -> str:
