@@ -5,7 +5,7 @@ from typing import Any
 from model.alignment import alignment_energy, alignment_ranges, alignment_words
 from model.evaluate import Evaluation, ParticleResult
 from model.particle import Particle
-from model.quantity import format_quantity, format_si
+from model.quantity import format_si
 from model.spectral_features import HIGHEST, LOWEST
 from model.summary import csv_line
 from webapp.figures.behaviour import Behaviour, behaviour
