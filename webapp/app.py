@@ -123,7 +123,7 @@ _INDEX = """<!DOCTYPE html>
 
 
 def _answers(server: Flask, services: Services) -> None:
-    """Answer the page's requests for the visible view, and for spectra to save.
+    """Answer the page's requests for the visible view.
 
     A plain route and no framework callback: the page asks many times a second while a knob moves,
     and the framework's bookkeeping in the browser costs more than the answer (see DEVELOPERS.md).

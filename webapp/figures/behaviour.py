@@ -1,7 +1,7 @@
 """What a particle does in a liquid whatever the drive: found once, as mostly another knob moves."""
 
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import cached_property, lru_cache
 
 import numpy as np
 
@@ -11,6 +11,7 @@ from model.crossovers import Crossover, particle_crossovers
 from model.liquid.liquid import Liquid
 from model.particle import Particle
 from model.spectral_features import SpectralFeatures, spectral_features
+from webapp.figures.branches import closed_branches
 
 #: Particles in liquids that are kept; a design has at most twelve particles.
 _MOST_KEPT = 96
@@ -38,6 +39,11 @@ class CrossoverMap:
 
     conductivity: Real
     curves: tuple[CrossoverCurve, CrossoverCurve]
+
+    @cached_property
+    def branches(self) -> tuple[Real, Real]:
+        """Both curves with their ends, as lines (2, n) of conductivity and frequency."""
+        return closed_branches(self.conductivity, *(curve.frequency for curve in self.curves))
 
 
 def crossover_map(particle: Particle, liquid: Liquid) -> CrossoverMap:

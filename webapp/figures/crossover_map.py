@@ -13,7 +13,6 @@ from model.liquid.liquid import Liquid
 from model.particle import Particle
 from model.quantity import format_si
 from webapp.figures.behaviour import CrossoverMap, behaviour, crossover_map
-from webapp.figures.branches import closed_branches
 from webapp.figures.curves import named_on_pictures
 from webapp.figures.polarisation import listed
 from webapp.figures.theme import (
@@ -70,7 +69,6 @@ def _branches(
     found: CrossoverMap, particle: Particle, theme: Theme, index: int
 ) -> list[dict[str, Any]]:
     """The rising and the falling branch."""
-    lines = closed_branches(found.conductivity, *(curve.frequency for curve in found.curves))
     name = plain(particle.name)
     return [
         {
@@ -84,7 +82,7 @@ def _branches(
             "hovertemplate": f"{name}<br>{'rises' if curve.rising else 'falls'} at "
             "%{y:.3~s}Hz in %{x:.3~g} S/m<extra></extra>",
         }
-        for line, curve in zip(lines, found.curves, strict=True)
+        for line, curve in zip(found.branches, found.curves, strict=True)
     ]
 
 

@@ -14,7 +14,7 @@ from webapp.figures.theme import Theme, nice_ceiling, numbers, particle_line, pl
 _MOST_IN_A_ROW = 4
 _LONGEST_BESIDE = 18
 #: Where a value axis may end, times a power of ten.
-_ENDS = (1.0, 1.5, 2.0, 3.0, 4.0, 6.0, 8.0)
+_ENDS = (1.0, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0)
 #: A side of the axis is at least this share of the other.
 _LEAST_SIDE = 0.1
 _PREFIXES = ((1.0, ""), (1e-3, "m"), (1e-6, "µ"), (1e-9, "n"), (1e-12, "p"), (1e-15, "f"))

@@ -66,7 +66,7 @@ def spectrum_figure(
     frequency = result.frequency
     x_axis = log_axis(theme, "Frequency", float(frequency[0]), float(frequency[-1]), "Hz")
     zero = {"zeroline": True, "zerolinecolor": theme.quiet, "zerolinewidth": 1.5}
-    y_axis = axis(theme, title, range=list(ends), tickformat="~g", nticks=8, **zero)
+    y_axis = axis(theme, title, range=list(ends), tickformat="~g", nticks=10, **zero)
     names = named_on_pictures(len(result.design.particles))
     return {"data": data, "layout": layout(theme, xaxis=x_axis, yaxis=y_axis, **names)}
 
