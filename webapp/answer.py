@@ -4,10 +4,12 @@ import math
 from collections.abc import Callable, Mapping
 from typing import Any
 
+import numpy as np
+
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
 from model.errors import DesignError
-from model.evaluate import Evaluation
+from model.evaluate import POINTS, Evaluation
 from model.profile import fingerprint
 from model.quantity import DIGITS, format_quantity, format_si
 from model.summary import spectrum_rows
@@ -59,7 +61,8 @@ def spectra(data: Any, services: Services) -> dict[str, Any]:
         result = services.evaluate(design_of(request))
     except DesignError as problem:
         return error_answer(request.number, problem)
-    return {"csv": "\n".join([*spectrum_rows(result.design, result.frequency), ""])}
+    frequency = np.geomspace(result.frequency[0], result.frequency[-1], POINTS)
+    return {"csv": "\n".join([*spectrum_rows(result.design, frequency), ""])}
 
 
 def state_answer(number: int, result: Evaluation) -> dict[str, Any]:

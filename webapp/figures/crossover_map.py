@@ -40,7 +40,10 @@ def crossover_figure(result: Evaluation, theme: Theme) -> Figure:
     """
     design = result.design
     maps = [crossover_map(particle, design.liquid) for particle in design.particles]
-    data = [_band(found, theme, index) for index, found in enumerate(maps)]
+    data = [
+        _band(found, particle, theme, index)
+        for index, (found, particle) in enumerate(zip(maps, design.particles, strict=True))
+    ]
     for index, (found, particle) in enumerate(zip(maps, design.particles, strict=True)):
         data += _branches(found, particle, theme, index)
     data.append(mark(theme, design.liquid.conductivity, design.drive.frequency, showlegend=False))
@@ -77,6 +80,7 @@ def _branches(
             "x": numbers(line[0]),
             "y": numbers(line[1]),
             "name": name if curve.rising else f"{name} falls",
+            "meta": "branch",
             "line": {**particle_line(theme, index), "width": 2, "simplify": False},
             "showlegend": curve.rising,
             "hovertemplate": f"{name}<br>{'rises' if curve.rising else 'falls'} at "
@@ -86,7 +90,7 @@ def _branches(
     ]
 
 
-def _band(found: CrossoverMap, theme: Theme, index: int) -> dict[str, Any]:
+def _band(found: CrossoverMap, particle: Particle, theme: Theme, index: int) -> dict[str, Any]:
     """Shade of one standard deviation about both branches, a closed outline for each stretch."""
     pieces = [
         piece for curve in found.curves for piece in _outlines(found.conductivity, curve)
@@ -97,7 +101,8 @@ def _band(found: CrossoverMap, theme: Theme, index: int) -> dict[str, Any]:
         "mode": "lines",
         "x": numbers(x),
         "y": numbers(y),
-        "name": f"spread {index}",
+        "name": f"spread of {plain(particle.name)}",
+        "meta": "spread",
         "line": {"width": 0, "simplify": False},
         "fill": "toself",
         "fillcolor": faded(particle_line(theme, index)["color"], _SHADE),
