@@ -135,6 +135,10 @@ class Particle(Part, ABC):
         Of several membranes the largest at each frequency. None if the kind has no membrane.
         """
 
+    def conductance(self, medium: Medium) -> Real | None:
+        """Surface conductance K_s in this medium, S; None if the kind has no such surface."""
+        return None
+
     def spinning_factor(self, medium: Medium, sample: Sample = MEDIAN) -> Complex:
         """Polarisation factor of which Im K makes it spin in a rotating field."""
         return self.polarisation(medium, sample)

@@ -254,13 +254,14 @@ def spectrum_rows(design: Design, frequency: Real) -> Iterator[str]:
     names = [
         f"{particle.name} {part}" for particle in design.particles for part in ("re_k", "im_k")
     ]
-    yield _csv(["frequency_Hz", *names])
+    yield csv_line(["frequency_Hz", *names])
     for index, value in enumerate(frequency):
         cells = [f"{part:.9g}" for k in spectra for part in (k[index].real, k[index].imag)]
-        yield _csv([f"{value:.9g}", *cells])
+        yield csv_line([f"{value:.9g}", *cells])
 
 
-def _csv(cells: list[str]) -> str:
+def csv_line(cells: list[str]) -> str:
+    """One line of a table of comma-separated values, quoted where needed."""
     line = io.StringIO()
     csv.writer(line, lineterminator="").writerow(cells)
     return line.getvalue()

@@ -4,12 +4,15 @@ import math
 from collections.abc import Callable, Mapping
 from typing import Any
 
+import numpy as np
+
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
 from model.errors import DesignError
-from model.evaluate import Evaluation
+from model.evaluate import POINTS, Evaluation
 from model.profile import fingerprint
 from model.quantity import DIGITS, format_quantity, format_si
+from model.summary import spectrum_rows
 from model.verdict import verdict
 from model.version import VERSION
 from webapp.controls import all_fields, summaries
@@ -43,6 +46,23 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
         "colours": [particle_line(theme, index)["color"] for index in range(len(design.particles))],
         **view(result, theme, request.options),
     }
+
+
+def spectra(data: Any, services: Services) -> dict[str, Any]:
+    """Polarisation spectra as the command line writes them, or which controls cannot be used.
+
+    Raises
+    ------
+    BadRequestError
+        If no page of ours could have sent `data`.
+    """
+    request = read_request(data)
+    try:
+        result = services.evaluate(design_of(request))
+    except DesignError as problem:
+        return error_answer(request.number, problem)
+    frequency = np.geomspace(result.frequency[0], result.frequency[-1], POINTS)
+    return {"csv": "\n".join([*spectrum_rows(result.design, frequency), ""])}
 
 
 def state_answer(number: int, result: Evaluation) -> dict[str, Any]:

@@ -15,7 +15,7 @@ from werkzeug.exceptions import MethodNotAllowed
 from model.files import either
 from model.library import load_library
 from webapp import callbacks
-from webapp.answer import answer
+from webapp.answer import answer, spectra
 from webapp.cache import ChipCache, Solver, default_folder, settings, solve
 from webapp.services import DEMO_PROFILES, Services, files_of, load_profiles
 from webapp.state import BadRequestError
@@ -137,6 +137,12 @@ def _answers(server: Flask, services: Services) -> None:
         if view not in VIEWS:
             raise BadRequestError("no such view")
         return jsonify(answer(_sent(), services, VIEWS[view]))
+
+    @server.route("/spectra", methods=["GET", "POST"])
+    def answer_spectra() -> Any:
+        if request.method != "POST":
+            raise MethodNotAllowed(["POST"])
+        return jsonify(spectra(_sent(), services))
 
 
 def _sent() -> Any:

@@ -20,7 +20,7 @@
     const system = window.matchMedia("(prefers-color-scheme: dark)").matches ? "dark" : "light";
     appearance(wanted || system);
     props("dark", { checked: gate.theme === "dark" });
-    page.section.start();
+    for (const view of Object.values(page.views)) view.start();
     page.tabs.start();
     page.knobs.make((path, text) => props(idOf(path), { value: text }));
     window.addEventListener("popstate", travelled);
@@ -105,7 +105,7 @@
   }
 
   function draw(answer) {
-    if (answer.probe) page.section.answered(answer);
+    if (page.views[gate.view]) page.views[gate.view].answered(answer);
     for (const [name, figure] of Object.entries(answer.figures)) page.draw(name, figure);
     for (const [name, words] of Object.entries(answer.sentences)) text("sentence-" + name, words);
     if (answer.ledger) page.ledger(answer.ledger);
@@ -261,6 +261,8 @@
     return none();
   }
 
+  page.toast = toast;
+
   function toast(words) {
     const place = byId("toast");
     place.textContent = words;
@@ -309,13 +311,11 @@
     const button = event.target.closest && event.target.closest("button.export");
     if (button) page.save(button.dataset.figure, button.dataset.format);
     if (event.target.id === "heed") document.querySelector("#view > footer").scrollIntoView();
-    const figure = event.target.closest && event.target.closest("#figure-corridor");
-    if (figure) {
-      const place = page.valueAt(figure, event);
-      if (place) {
-        page.knobs.set("drive.frequency", place.x);
-        page.knobs.set("drive.voltage", place.y);
-      }
+    const figure = event.target.closest && event.target.closest("[data-sets-x]");
+    const place = figure && page.valueAt(figure, event);
+    if (place) {
+      page.knobs.set(figure.dataset.setsX, place.x);
+      page.knobs.set(figure.dataset.setsY, place.y);
     }
   }
 

@@ -37,7 +37,7 @@ def corridor_view() -> Component:
     )
     return html.Div(
         [
-            card("corridor", "Voltage corridor"),
+            card("corridor", "Voltage corridor", sets=("drive.frequency", "drive.voltage")),
             ledger,
             card("force", "Force on each particle"),
             card("heating", "Temperature rise"),

@@ -9,10 +9,15 @@ from dash.development.base_component import Component
 from model.design import Design
 from webapp.controls import HIDDEN, control_id
 from webapp.views.corridor import corridor_view
+from webapp.views.polarisation import polarisation_view
 from webapp.views.section import section_view
 
 #: Views in the order of their tabs: name in a request, word on the tab, what lays it out.
-TABS = (("corridor", "Corridor", corridor_view), ("section", "Section", section_view))
+TABS = (
+    ("corridor", "Corridor", corridor_view),
+    ("polarisation", "Polarisation", polarisation_view),
+    ("section", "Section", section_view),
+)
 
 #: Accent of the controls, ten shades from light to dark.
 _TEAL = [
