@@ -129,7 +129,7 @@ def real_sentence(result: Evaluation) -> str:
 
     def words(particle: Particle, here: complex) -> str:
         way = "towards strong field" if here.real > 0.0 else "towards weak field"
-        return f"{particle.name} {factor_words(here.real)}, {way}"
+        return f"{factor_words(here.real)} for {particle.name} ({way})"
 
     low, high = float(result.frequency[0]), float(result.frequency[-1])
     crosses = any(
@@ -138,7 +138,7 @@ def real_sentence(result: Evaluation) -> str:
         for one in _crossovers(result, particle)
     )
     marks = "Triangles mark the crossovers" if crosses else "Nothing crosses zero on this axis"
-    return f"Re K at {_here(result)}: {_each(result, words)}. {marks}."
+    return f"Re K at {_here(result)} is {_each(result, words)}. {marks}."
 
 
 def imaginary_sentence(result: Evaluation) -> str:
@@ -148,9 +148,9 @@ def imaginary_sentence(result: Evaluation) -> str:
         features = behaviour(particle, result.design.liquid).features
         number, peak = factor_words(here.imag), factor_words(features.peak)
         where = format_si(features.peak_frequency, "Hz")
-        return f"{particle.name} {number} (largest, {peak}, at {where})"
+        return f"{number} for {particle.name} (largest, {peak}, at {where})"
 
-    return f"Im K at {_here(result)}: {_each(result, words)}."
+    return f"Im K at {_here(result)} is {_each(result, words)}."
 
 
 def _here(result: Evaluation) -> str:

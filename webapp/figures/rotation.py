@@ -89,24 +89,24 @@ def rotation_sentence(found: Rotation, result: Evaluation) -> str:
         f"{frequency}: "
     )
     pieces = [
-        f"{particle.name} {_spin_words(rate)}"
+        _spin_words(rate, particle.name)
         for particle, rate in zip(result.design.particles, found.here, strict=True)
     ]
     return f"{start}{listed(pieces)}. Far from walls; positive is with the field."
 
 
-def _spin_words(rate: float) -> str:
+def _spin_words(rate: float, name: str) -> str:
     """Rate with its sense, and the time of one turn.
 
-    >>> _spin_words(-0.5), _spin_words(0.0)
-    ('500 mrad/s against it, a turn in 12.6 s', 'at rest')
+    >>> _spin_words(-0.5, "bead"), _spin_words(0.0, "bead")
+    ('500 mrad/s against it for bead (a turn in 12.6 s)', '0 rad/s for bead')
     """
     if rate == 0.0:
-        return "at rest"
+        return f"0 rad/s for {name}"
     sense = "with it" if rate > 0.0 else "against it"
     turn = 2.0 * np.pi / abs(rate)
     time = format_si(turn, "s") if turn < 100.0 else format_quantity(turn, "min", 3)
-    return f"{format_si(abs(rate), 'rad/s')} {sense}, a turn in {time}"
+    return f"{format_si(abs(rate), 'rad/s')} {sense} for {name} (a turn in {time})"
 
 
 def travel_of(result: Evaluation) -> tuple[Real, ...] | None:
@@ -134,10 +134,10 @@ def travel_sentence(result: Evaluation) -> str:
     for particle in result.design.particles:
         found = travelling_speed(result.point, particle)
         speed = 0.0 if found is None else float(found[0]) * result.rms_voltage**2
-        way = "along the flow" if speed > 0.0 else "against it"
-        pieces.append(f"{particle.name} {format_si(abs(speed), 'm/s')} {way if speed else ''}")
+        way = " along the flow" if speed > 0.0 else " against it" if speed else ""
+        pieces.append(f"{format_si(abs(speed), 'm/s')}{way} for {particle.name}")
     height = format_quantity(result.design.task.force_height, "um", 3)
     return (
-        f"At {height} the travelling field alone carries, on the mean over a period of the "
-        f"electrodes, {listed([piece.strip() for piece in pieces])}; the flow comes on top."
+        f"The travelling field alone carries along at {height}, on the mean over a period of the "
+        f"electrodes: {listed(pieces)}. The flow comes on top."
     )
