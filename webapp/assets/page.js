@@ -22,6 +22,7 @@
     props("dark", { checked: gate.theme === "dark" });
     for (const view of Object.values(page.views)) view.start();
     page.tabs.start();
+    page.edits.start();
     page.knobs.make((path, text) => props(idOf(path), { value: text }));
     window.addEventListener("popstate", travelled);
     document.addEventListener("click", clicked);
@@ -34,6 +35,7 @@
     clearTimeout(addressTimer);
     travelling = true;
     visits += 1;
+    page.edits.remember(null);
     props("address", { data: { link: window.location.hash, visit: visits } });
   }
 
@@ -55,6 +57,7 @@
       gate.sent = "";
       marked.clear();
       notice(opened.problems);
+      page.edits.opened(opened.edit);
     }
     ids.forEach((id, index) => {
       if (values[index] !== undefined) gate.values[pathOf(id.field)] = values[index] ?? "";
@@ -270,12 +273,6 @@
     setTimeout(() => place.classList.remove("shown"), 4000);
   }
 
-  /* Another electrode layout: the server keeps what both have and opens the design anew. */
-  function layout(wanted) {
-    if (!wanted || !gate.profile || wanted === gate.profile.chip.layout) return none();
-    return { ...gate.body(), layout: wanted };
-  }
-
   function save(clicks) {
     return clicks ? gate.body() : none();
   }
@@ -304,7 +301,8 @@
     if (!place || !place.closest("#inputs")) return;
     const words = place.querySelector(".mantine-InputWrapper-description, .mantine-Switch-description");
     const label = place.querySelector("label, .mantine-Switch-label");
-    if (words) byId("help").textContent = (label ? label.textContent + ": " : "") + words.textContent;
+    const name = label ? label.firstChild.textContent + ": " : ""; // a switch's help is within it
+    if (words) byId("help").textContent = name + words.textContent;
   }
 
   function clicked(event) {
@@ -323,7 +321,7 @@
     slackwater: {
       start,
       controls,
-      layout,
+      turn: page.edits.turn,
       save,
       share,
       dark,

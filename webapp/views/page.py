@@ -35,7 +35,7 @@ _SLATE = [
 def page(profiles: dict[str, Design]) -> Component:
     """The whole page, empty of results; the browser then asks for what its address holds."""
     stores = [
-        dcc.Store(id=name) for name in ("address", "document", "save-request", "layout-request")
+        dcc.Store(id=name) for name in ("address", "document", "save-request", "edit-request")
     ]
     return dmc.MantineProvider(
         id="appearance",
