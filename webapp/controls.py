@@ -59,11 +59,13 @@ class Field:
 def fields(part: BaseModel, path: str) -> Iterator[Field]:
     """Declared fields of one part, not of the parts within it; its name before all others.
 
-    A layout's own fields stand before those that it shares.
+    A layout's own fields stand before those that it shares, a particle's behind them.
     """
     found = sorted(declarations(type(part)), key=lambda item: item[0] != "name")
     if isinstance(part, Layout):
         found.sort(key=lambda item: item[0] in FlatChannel.model_fields)
+    if isinstance(part, Particle):
+        found.sort(key=lambda item: item[0] not in Particle.model_fields)
     for key, declared in found:
         place = _join(path, key)
         if place not in ELSEWHERE:

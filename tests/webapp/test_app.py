@@ -218,8 +218,9 @@ def test_another_layout_keeps_what_both_have(client, good):
     opening, _ = callbacks_of(client)
 
     def ask(layout):
-        values = [None, None, None, {**good, "layout": layout}]
-        return client.post(CALLBACK, json=call_of(opening, values, ["layout-request.data"]))
+        wish = {"do": "turn", "at": "chip", "word": layout}
+        values = [None, None, None, {**good, "wish": wish}]
+        return client.post(CALLBACK, json=call_of(opening, values, ["edit-request.data"]))
 
     document = ask("facing-bars").json["response"]["document"]["data"]
     before, after = good["document"]["chip"], document["profile"]["chip"]

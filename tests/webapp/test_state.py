@@ -6,6 +6,7 @@ from hypothesis import strategies as st
 
 from model.errors import DesignError
 from model.profile import document, fingerprint, profile_text
+from tests.wishes import request_of
 from webapp.controls import all_fields
 from webapp.state import (
     BadRequestError,
@@ -15,16 +16,6 @@ from webapp.state import (
     put,
     read_request,
 )
-
-
-def request_of(design, values=None, **more):
-    return {
-        "number": 1,
-        "document": document(design),
-        "values": values or {},
-        "theme": "light",
-        **more,
-    }
 
 
 def design_with(design, **values):
@@ -92,7 +83,7 @@ BAD_REQUESTS = {
     "a table for a value": {"values": {"drive.voltage": {"a": 1}}},
     "a long value": {"values": {"drive.voltage": "3" * 401}},
     "a long path": {"values": {"a" * 121: "3"}},
-    "many values": {"values": {f"a{index}": "" for index in range(1001)}},
+    "many values": {"values": {f"a{index}": "" for index in range(4001)}},
     "no theme": {"theme": None},
     "another theme": {"theme": "pink"},
     "a list for a theme": {"theme": ["light"]},
