@@ -114,7 +114,7 @@ class Particle(Part, ABC):
         Text(
             "Source",
             "Where its numbers come from.",
-            longest=200,
+            longest=240,
             optional=True,
             empty="not told",
             detail=True,

@@ -19,6 +19,7 @@ from webapp.state import Opened, design_of, open_file, open_link, read_request
 
 def register(app: Dash, services: Services) -> None:
     """Register the page's callbacks."""
+    starts = {key: entry.particle_document() for key, entry in services.library.items()}
 
     @app.callback(
         Output("inputs", "children"),
@@ -40,7 +41,7 @@ def register(app: Dash, services: Services) -> None:
         if (source == "upload" and not upload) or (source == "profile" and not profile):
             raise PreventUpdate  # only emptied, so that the same one can be picked again
         if source == "edit-request":
-            return (*hydrated(*open_edit(edit, services.first, {})), None, None)
+            return (*hydrated(*open_edit(edit, services.first, starts)), None, None)
         opened = opened_from(services, source, address, upload, profile)
         return (*hydrated(opened), None, None)
 

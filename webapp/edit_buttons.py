@@ -28,13 +28,25 @@ def item_buttons(path: str, count: int) -> Component:
 
 
 def add_buttons(path: str, count: int) -> Component:
-    """Add an item to the list at a path."""
+    """Add an item to the list at a path; particles also from the library."""
     known = listed(path)
+    shelf = [_library_button(full(known, count))] if path == "particle" else []
     buttons = [
         _button("add", path, f"Add {_article(word)}", full(known, count), word)
         for word in known.starts
     ]
-    return html.Div(buttons, className="add-buttons")
+    return html.Div([*shelf, *buttons], className="add-buttons")
+
+
+def _library_button(reason: str) -> Component:
+    """Open the dialog of published particles."""
+    data: dict[str, Any] = {
+        "data-library": "open",
+        "aria-disabled": "true" if reason else "false",
+        "aria-haspopup": "dialog",
+    }
+    words = reason or "Published particles, each with its source"
+    return html.Button("From the library…", className="edit edit-library", title=words, **data)
 
 
 def kind_choice(path: str, label: str, words: str, value: str) -> Component:

@@ -68,9 +68,9 @@ HEADERS = ("Content-Security-Policy", "X-Content-Type-Options", "Referrer-Policy
 
 @pytest.mark.parametrize(
     ("path", "status"),
-    [("/", 200), ("/health", 200), ("/_dash-layout", 200), ("/_dash-dependencies", 200),
-     ("/assets/page.js", 200), ("/assets/none.js", 404), ("/answer/corridor", 405),
-     ("/spectra", 405)],
+    [("/", 200), ("/health", 200), ("/library", 200), ("/_dash-layout", 200),
+     ("/_dash-dependencies", 200), ("/assets/page.js", 200), ("/assets/none.js", 404),
+     ("/answer/corridor", 405), ("/spectra", 405)],
 )  # fmt: skip
 def test_every_answer_carries_the_security_headers(client, path, status):
     with client.get(path) as found:

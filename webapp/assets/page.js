@@ -23,6 +23,7 @@
     for (const view of Object.values(page.views)) view.start();
     page.tabs.start();
     page.edits.start();
+    page.library.start();
     page.knobs.make((path, text) => props(idOf(path), { value: text }));
     window.addEventListener("popstate", travelled);
     document.addEventListener("click", clicked);

@@ -9,6 +9,7 @@ from dash.development.base_component import Component
 from model.design import Design
 from webapp.controls import HIDDEN, control_id
 from webapp.views.corridor import corridor_view
+from webapp.views.library import library_dialog
 from webapp.views.polarisation import polarisation_view
 from webapp.views.section import section_view
 
@@ -60,6 +61,7 @@ def page(profiles: dict[str, Design]) -> Component:
                     hidden=True,
                 ),
                 html.Div(id="toast", role="status"),
+                library_dialog(),
                 _header(profiles),
                 _strip(),
                 _tabs(),
