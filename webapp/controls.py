@@ -23,8 +23,10 @@ from model.design import Design
 from model.layout import FlatChannel, Layout
 from model.particle import Particle
 from model.quantity import format_quantity
-from webapp.edit_buttons import add_buttons, item_buttons, kind_choice
+from webapp.edit_buttons import add_buttons, item_buttons, kind_choice, part_button
+from webapp.edits import OPTIONAL
 from webapp.figures.theme import DASHES
+from webapp.recipe_card import recipe_place
 
 #: Fields that live in the operating strip and the header instead; the amount of salt is the
 #: conductivity in other words.
@@ -104,7 +106,7 @@ def inputs_panel(design: Design) -> list[Component]:
             "Chip",
             [_layout(design), html.Div(id="chip-drawing"), *part_controls(design.chip, "chip")],
         ),
-        ("liquid", "Liquid", part_controls(design.liquid, "liquid")),
+        ("liquid", "Liquid", [*part_controls(design.liquid, "liquid"), recipe_place()]),
         ("particles", "Particles", _particles(design)),
         ("drive", "Drive", part_controls(design.drive, "drive")),
         ("electrode", "Electrodes", part_controls(design.electrode, "electrode")),
@@ -125,11 +127,12 @@ def summaries(design: Design) -> dict[str, str]:
         for key in type(design.limits).model_fields
     )
     liquid, drive, electrode = design.liquid, design.drive, design.electrode
+    recipe = "" if liquid.recipe is None else f", with {liquid.recipe.salt}"
     film = "" if electrode.film_thickness is None else ", film"
     return {
         "task": design.task.label,
         "chip": design.chip.layout.replace("-", " "),
-        "liquid": format_quantity(liquid.temperature, "degC"),
+        "liquid": format_quantity(liquid.temperature, "degC") + recipe,
         "particles": str(len(design.particles)),
         "drive": f"{format_quantity(drive.source_resistance, 'ohm')} source",
         "electrode": electrode.interface.replace("-", " ") + film,
@@ -156,10 +159,21 @@ def part_controls(part: BaseModel, path: str) -> list[Component]:
         count = counts.get(inner_path.rpartition(".")[0])
         if count is not None:
             head.append(item_buttons(inner_path, count))
+        if inner_path in OPTIONAL:
+            head.append(part_button(inner_path, there=True))
         inside = [html.Div(head, className="inner-head"), *part_controls(inner, inner_path)]
         content.append(html.Div(inside, className="inner", **_part(inner_path)))
     content += [add_buttons(items, count) for items, count in counts.items()]
+    content += [part_button(missing, there=False) for missing in _missing(part, path)]
     return content
+
+
+def _missing(part: BaseModel, path: str) -> Iterator[str]:
+    """Paths of those parts that a part may have and has not."""
+    for inner in OPTIONAL:
+        parent, _, key = inner.rpartition(".")
+        if parent == path and getattr(part, key) is None:
+            yield inner
 
 
 def _lists(part: BaseModel) -> Iterator[tuple[str, tuple[Any, ...]]]:

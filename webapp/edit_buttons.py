@@ -35,7 +35,22 @@ def add_buttons(path: str, count: int) -> Component:
         _button("add", path, f"Add {_article(word)}", full(known, count), word)
         for word in known.starts
     ]
-    return html.Div([*shelf, *buttons], className="add-buttons")
+    return _adders(path, [*shelf, *buttons])
+
+
+def _adders(path: str, buttons: list[Component]) -> Component:
+    """Buttons that add something at a path, which the page finds by it."""
+    place: dict[str, Any] = {"data-part": path}
+    return html.Div(buttons, className="add-buttons", **place)
+
+
+def part_button(path: str, *, there: bool) -> Component:
+    """Take out the part at a path, that a design may have or not, or add it."""
+    name = path.rpartition(".")[2]
+    if there:
+        return html.Div(_button("remove", path, f"Remove the {name}", ""), className="item-buttons")
+    button = _button("add", path, f"Add {_article(name)}", "", name)
+    return _adders(path, [button])
 
 
 def _library_button(reason: str) -> Component:

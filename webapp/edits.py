@@ -17,6 +17,7 @@ from model.declare import FROM_PERSON
 from model.design import MOST_PARTICLES, Design
 from model.layers import MOST_LAYERS, NEW_LAYERS
 from model.layouts import LAYOUTS
+from model.liquid.recipe import MOST_INGREDIENTS, NEW_INGREDIENT
 from model.particles import PARTICLES
 from webapp.state import BadRequestError, Opened, filled, open_document, read_request
 
@@ -59,7 +60,12 @@ LISTS = {
         {kind: {**entry.usual, "kind": kind} for kind, entry in PARTICLES.items()},
     ),
     "particle.*.layers": Listed("layer", 1, MOST_LAYERS, NEW_LAYERS, "Move inward", "Move outward"),
+    "liquid.recipe.ingredients": Listed(
+        "ingredient", 0, MOST_INGREDIENTS, {"ingredient": NEW_INGREDIENT}
+    ),
 }
+#: Parts that a design may have or not, and what a new one starts with.
+OPTIONAL: Tables = {"liquid.recipe": {"salt": "KCl"}}
 #: Parts of which there are several kinds: the key that tells them apart, and the kinds.
 KINDS: dict[str, tuple[str, Mapping[str, Any]]] = {
     "chip": ("layout", LAYOUTS),
@@ -121,6 +127,8 @@ def edited(document: Mapping[str, Any], wish: Any, library: Tables) -> Edited:
     data = copy.deepcopy(dict(document))
     if do == "turn":
         return _turned(data, at, word)
+    if at in OPTIONAL:
+        return _optional(data, do, at)
     if do == "add":
         return _added(data, at, word, library)
     return _arranged(data, do, at)
@@ -173,6 +181,19 @@ def _start_of(part: Mapping[str, Any], kind: Any) -> dict[str, Any]:
         return dict(kind.usual)
     radius = float(f"{before.equivalent_radius:.4g}")  # as it would be typed
     return {**kind.usual, **kind.sized(radius)}
+
+
+def _optional(data: dict[str, Any], do: str, at: str) -> Edited:
+    """With or without a part that may be there."""
+    parent, _, key = at.rpartition(".")
+    place = _at(data, parent)
+    if not isinstance(place, dict) or (do, key in place) not in (("add", False), ("remove", True)):
+        raise BadRequestError("no such edit")
+    if do == "add":
+        place[key] = dict(OPTIONAL[at])
+        return Edited(data, at)
+    del place[key]
+    return Edited(data, at)
 
 
 def _added(data: dict[str, Any], at: str, word: str, library: Tables) -> Edited:

@@ -17,6 +17,8 @@ from webapp.link import LinkError, decode
 #: Most controls in a request and most characters in one; more is no browser of ours.
 MOST_VALUES, LONGEST_VALUE = 4000, 400
 THEMES = ("light", "dark")
+#: Controls that are typed instead of another one, which then follows from them.
+INSTEAD = {"liquid.recipe.amount": "liquid.conductivity"}
 #: No place of a chip is further from its middle, m.
 FARTHEST = 1.0
 
@@ -123,6 +125,9 @@ def filled(request: Request) -> dict[str, Any]:
     data = copy.deepcopy(dict(request.document))
     for path, value in request.values.items():
         put(data, path, value)
+    for path, follows in INSTEAD.items():
+        if request.values.get(path):
+            put(data, follows, "")
     return data
 
 

@@ -157,6 +157,36 @@ def test_an_impossible_particle_can_be_removed_again(yeast):
     assert opened.design.chip.gap == 70e-6
 
 
+def test_a_recipe_comes_and_goes_with_its_ingredients(yeast):
+    opened, found = wished(yeast, "add", "liquid.recipe")
+    assert opened.problems == ()
+    assert opened.design.liquid.conductivity == yeast.liquid.conductivity
+    assert opened.design.liquid.recipe.ingredients == ()
+    assert found.place == "liquid.recipe"
+    for count in (1, 2):
+        opened, found = wished(opened.design, "add", "liquid.recipe.ingredients", "ingredient")
+        assert opened.problems == ()
+        assert found.place == f"liquid.recipe.ingredients.{count - 1}"
+    salty = {"liquid.recipe.ingredients.0.concentration": "2 mM"}
+    opened, _ = wished(opened.design, "later", "liquid.recipe.ingredients.0", **salty)
+    amounts = [item.concentration for item in opened.design.liquid.recipe.ingredients]
+    assert amounts == [10.0, 2.0]
+    for _ in range(2):
+        opened, found = wished(opened.design, "remove", "liquid.recipe.ingredients.0")
+    assert found.place == "liquid.recipe.ingredients"
+    opened, _ = wished(opened.design, "remove", "liquid.recipe")
+    assert opened.design == yeast
+
+
+def test_a_recipe_that_cannot_be_had_is_told(yeast):
+    """All that is in it conducts more than the liquid is to."""
+    opened, _ = wished(yeast, "add", "liquid.recipe")
+    opened, _ = wished(opened.design, "add", "liquid.recipe.ingredients", "ingredient")
+    much = {"liquid.recipe.ingredients.0.solute": "NaCl"}
+    opened, _ = wished(opened.design, "copy", "particle.1", **much)
+    assert opened.problems[0].startswith("liquid.conductivity: must be at least")
+
+
 def full(items, most):
     return [{**items[0], "name": f"{index}"} for index in range(most)]
 
@@ -212,6 +242,9 @@ WRONG = [
     {"do": "add", "at": "particle.0.layers", "word": "bead-216"},
     {"do": "add", "at": "particle.7.layers", "word": "membrane"},
     {"do": "add", "at": "limits", "word": "membrane"},
+    {"do": "remove", "at": "liquid.recipe", "word": ""},
+    {"do": "add", "at": "liquid.recipe.ingredients", "word": "ingredient"},
+    {"do": "copy", "at": "liquid.recipe", "word": ""},
     {"do": "turn", "at": "particle.0", "word": "coplanar-bars"},
     {"do": "turn", "at": "particle.5", "word": "ellipsoid"},
     {"do": "turn", "at": "chip", "word": "cube"},
@@ -245,10 +278,17 @@ WISHES = [
     *((do, f"particle.{index}.layers.{layer}", "")
       for do in ("copy", "remove", "earlier", "later") for index in range(2) for layer in range(2)),
     *(("turn", f"particle.{index}", kind) for index in range(3) for kind in PARTICLES),
+    ("add", "liquid.recipe", ""),
+    ("remove", "liquid.recipe", ""),
+    ("add", "liquid.recipe.ingredients", "ingredient"),
+    ("copy", "liquid.recipe.ingredients.0", ""),
+    ("remove", "liquid.recipe.ingredients.0", ""),
     ("turn", "chip", "facing-bars"),
     ("turn", "chip", "four-pole"),
     ("turn", "chip", "coplanar-bars"),
 ]  # fmt: skip
+
+PLACES = r"chip|particle\.\d+(\.layers\.\d+)?|liquid\.recipe(\.ingredients(\.\d+)?)?"
 
 
 @settings(max_examples=60, deadline=None)
@@ -262,7 +302,7 @@ def test_any_sequence_of_edits_leaves_a_design_or_a_told_error(yeast, wishes):
             continue
         if not opened.problems:
             assert parse_design(found.document) == opened.design
-        assert re.fullmatch(r"chip|particle\.\d+(\.layers\.\d+)?", found.place)
+        assert re.fullmatch(PLACES, found.place)
         assert any(particle.role == "collect" for particle in opened.design.particles)
         design = opened.design
     assert parse_design(document(design)) == design

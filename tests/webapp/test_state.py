@@ -49,6 +49,29 @@ def test_an_emptied_control_that_is_needed_is_missing(yeast):
     }
 
 
+def test_an_amount_of_salt_sets_the_conductivity(yeast):
+    """KCl of 0.01 mol/L conducts 0.1413 S/m at 25 °C: CRC Handbook, from memory."""
+    base = {"liquid.conductivity": "20 mS/m", "liquid.temperature": "25 °C"}
+    data = document(design_with(yeast, **base))
+    data["liquid"]["recipe"] = {"salt": "KCl"}
+    values = {**base, "liquid.recipe.amount": "10 mM"}
+    made = design_of(read_request(request_of(yeast, values, document=data)))
+    assert made.liquid.conductivity == pytest.approx(0.1413, rel=0.01)
+    assert made.liquid.recipe.amount is None
+    without = {**base, "liquid.recipe.amount": ""}
+    assert (
+        design_of(read_request(request_of(yeast, without, document=data))).liquid.conductivity
+        == 0.02
+    )
+    with pytest.raises(DesignError) as caught:
+        design_of(
+            read_request(
+                request_of(yeast, {**values, "liquid.recipe.amount": "9 M"}, document=data)
+            )
+        )
+    assert {error.path for error in caught.value.errors} == {"liquid.recipe.amount"}
+
+
 @settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 @given(st.data())
 def test_every_control_shows_its_value_exactly(designs, data):

@@ -33,8 +33,11 @@
       return window.dash_clientside.no_update;
     },
 
+    /* Whether an edit is sent and not opened yet; its answer would undo a second one. */
+    underway: () => performance.now() - sent < PATIENCE,
+
     send(wish) {
-      if (performance.now() - sent < PATIENCE) return;
+      if (page.edits.underway()) return;
       sent = performance.now();
       page.edits.remember(wish);
       document.activeElement.blur(); // what is being typed counts
@@ -60,9 +63,25 @@
         const was = edit ? formerly(fold.dataset.fold, edit) : fold.dataset.fold;
         fold.open = was !== null && kept.has(was);
       }
+      page.redraw();
       inputs().scrollTop = scrolled;
       if (edit && wish) turnTo(edit.place, wish);
     },
+  };
+
+  /* What is wrong with a list or a part as a whole is told beside it. */
+  page.edits.blame = function (path, words) {
+    const place = partAt(path);
+    if (!place) return false;
+    const told = Object.assign(document.createElement("p"), { className: "part-error", textContent: words });
+    told.setAttribute("role", "alert");
+    place.append(told);
+    show(place);
+    return true;
+  };
+
+  page.edits.forgive = function () {
+    for (const told of document.querySelectorAll(".part-error")) told.remove();
   };
 
   function clicked(button) {
@@ -79,6 +98,13 @@
     return source === null || source === undefined ? null : [items, source, ...rest].join(".");
   }
 
+  /* Unfold what a place is folded into. */
+  function show(place) {
+    for (let outer = place; outer; outer = outer.parentElement) {
+      if (outer.tagName === "DETAILS") outer.open = true;
+    }
+  }
+
   /* Move the focus to what the edit was about. */
   function turnTo(path, wish) {
     const place = partAt(path);
@@ -86,11 +112,10 @@
     const fresh = wish.do === "add" || wish.do === "copy";
     const fold = place.querySelector('details[data-fold="' + path + '"]');
     if (fresh && fold) fold.open = true;
-    const again = place.querySelector('button[data-do="' + wish.do + '"]');
-    const target = fresh ? place.querySelector('input[id^=\'{"field"\']') : again;
-    for (let outer = place; outer; outer = outer.parentElement) {
-      if (outer.tagName === "DETAILS") outer.open = true;
-    }
+    const again = wish.do === "turn" ? '[id*=\'"turn"\']' : 'button[data-do="' + wish.do + '"]';
+    const nearest = place.querySelector(again) || place.querySelector("button");
+    const target = fresh ? place.querySelector('input[id^=\'{"field"\']') : nearest;
+    show(place);
     if (target) target.focus({ preventScroll: true });
     if (fresh && target) target.select();
     place.scrollIntoView({ block: "nearest" });

@@ -12,6 +12,7 @@
   let travelling = false;
   let leaving = false; // whether the next address is another design's, opened over this one
   let visits = 0;
+  let last = null; // the last good answer
 
   /* ---- opening ---- */
 
@@ -53,10 +54,10 @@
       }
       profile = opened;
       travelling = false;
+      mark({}); // what stays on the page keeps no mark
       gate.profile = opened.profile;
       gate.values = {};
       gate.sent = "";
-      marked.clear();
       notice(opened.problems);
       page.edits.opened(opened.edit);
     }
@@ -115,7 +116,15 @@
     if (answer.ledger) page.ledger(answer.ledger);
   }
 
+  /* What stands among the inputs, in new ones: as it was, until the next answer. */
+  page.redraw = function () {
+    if (!last) return;
+    page.drawing(last.drawing);
+    page.recipe(last.liquid);
+  };
+
   function show(answer) {
+    last = answer;
     byId("fingerprint").textContent = answer.fingerprint;
     text("verdict-headline", answer.verdict.headline);
     text("verdict-sentence", answer.verdict.sentence);
@@ -129,6 +138,7 @@
       if (label) label.previousElementSibling.style.color = answer.colours[index];
     });
     page.drawing(answer.drawing);
+    page.recipe(answer.liquid);
     tidy(answer.texts);
     items("notes", answer.notes);
     items("cautions", answer.cautions);
@@ -153,17 +163,18 @@
   function mark(errors) {
     for (const path of [...marked]) {
       if (!(path in errors)) {
-        props(idOf(path), { error: null });
+        if (byId(JSON.stringify(idOf(path)))) props(idOf(path), { error: null });
         marked.delete(path);
       }
     }
     const homeless = [];
+    page.edits.forgive();
     for (const [path, words] of Object.entries(errors)) {
       if (path in gate.values) {
         props(idOf(path), { error: words });
         marked.add(path);
         unfold(path);
-      } else {
+      } else if (!page.edits.blame(path, words)) {
         homeless.push(path + ": " + words);
       }
     }
