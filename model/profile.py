@@ -146,10 +146,12 @@ def profile_text(design: Design) -> str:
 def fingerprint(design: Design) -> str:
     """Give eight hexadecimal digits that tell designs apart by what is computed from them.
 
-    Title and question do not count.
+    Title, question and sources do not count.
     """
     data = document(design)
     del data["title"], data["question"]
+    for particle in data["particle"]:
+        particle.pop("source", None)
     text = json.dumps(data, sort_keys=True, separators=(",", ":"), ensure_ascii=True)
     digest = hashlib.sha256(text.encode()).hexdigest()
     return f"{digest[:4]}-{digest[4:8]}"

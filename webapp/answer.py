@@ -19,6 +19,7 @@ from webapp.controls import all_fields, summaries
 from webapp.figures.chip import chip_drawing
 from webapp.figures.theme import THEMES, Theme, particle_line
 from webapp.link import encode
+from webapp.recipe_card import recipe_card
 from webapp.services import Services
 from webapp.state import Options, design_of, read_request
 
@@ -79,6 +80,7 @@ def state_answer(number: int, result: Evaluation) -> dict[str, Any]:
         "knobs": knobs(design),
         "summaries": summaries(design),
         "drawing": chip_drawing(design.chip),
+        "liquid": recipe_card(design.liquid),
         "names": [particle.name for particle in design.particles],
         "cautions": list(cautions(result)),
         "notes": list(notes(result)),

@@ -21,6 +21,7 @@ from webapp.services import DEMO_PROFILES, Services, files_of, load_profiles
 from webapp.state import BadRequestError
 from webapp.uploads import Uploads, take_uploads
 from webapp.views import VIEWS
+from webapp.views.library import library_list
 from webapp.views.page import page
 
 #: Largest request that is read; a profile is far smaller.
@@ -123,7 +124,7 @@ _INDEX = """<!DOCTYPE html>
 
 
 def _answers(server: Flask, services: Services) -> None:
-    """Answer the page's requests for the visible view.
+    """Answer the page's requests for the visible view, and for the library of particles.
 
     A plain route and no framework callback: the page asks many times a second while a knob moves,
     and the framework's bookkeeping in the browser costs more than the answer (see DEVELOPERS.md).
@@ -143,6 +144,12 @@ def _answers(server: Flask, services: Services) -> None:
         if request.method != "POST":
             raise MethodNotAllowed(["POST"])
         return jsonify(spectra(_sent(), services))
+
+    listed = library_list(services.library.values())
+
+    @server.get("/library")
+    def library() -> Any:
+        return jsonify(listed)
 
 
 def _sent() -> Any:

@@ -102,8 +102,9 @@ class Entry(Part):
 
     @cached_property
     def particle(self) -> Particle:
-        """The particle, with the variation of single ones from the published spreads."""
-        return self.given.model_copy(update=dict(_variation(self.given, self.values)))
+        """The particle, with its source and the variation of single ones from the spreads."""
+        told = {"source": self.source, **dict(_variation(self.given, self.values))}
+        return self.given.model_copy(update=told)
 
     def particle_document(self) -> dict[str, Any]:
         """What goes into a profile's ``[[particle]]``, without role and whether it must live."""

@@ -10,6 +10,8 @@ from model.quantity import QuantityError, parse_quantity
 
 #: Most fixed ingredients in one recipe.
 MOST_INGREDIENTS = 12
+#: What a new one starts with, as in a profile; it conducts nothing, so that it always fits.
+NEW_INGREDIENT = {"solute": "dextrose", "concentration": "10 mmol/L"}
 
 
 class Ingredient(Part):
@@ -72,14 +74,13 @@ class Recipe(Part):
         float | None,
         Quantity(
             "Amount of the salt",
-            "Instead of the liquid's conductivity, which follows from it when a profile is read. "
-            "Of saline 1 x is one strength.",
+            "Typed instead of the liquid's conductivity, which follows from it. Of saline 1 x is "
+            "one strength.",
             unit="mmol/L",
             low="0 mmol/L",
             high="5000 mmol/L",
             optional=True,
             empty="from the conductivity",
-            detail=True,
         ),
     ] = None
     sugar: Annotated[

@@ -174,7 +174,7 @@ def test_the_drawing_follows_the_typed_lengths(page):
 
 def test_labels_of_the_drawing_keep_apart(page):
     for layout in ("facing bars", "bars under plate", "four phase bars"):
-        page.locator("#layout").click()
+        page.get_by_label("Layout", exact=True).first.click()
         page.get_by_role("option", name=layout).click()
         until(page, f"() => document.getElementById('summary-chip').textContent === '{layout}'")
         settled(page)

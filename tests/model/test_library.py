@@ -109,7 +109,7 @@ def test_demos_agree_with_the_library(demos):
         ("beads-at-an-opening", "bead, 6 µm"): "latex-6um",
         ("beads-at-an-opening", "bead, 1 µm"): "latex-1um",
     }
-    own = {"name", "role", "must_live", "radius_cv", "membrane_cv"}
+    own = {"name", "role", "must_live", "source", "radius_cv", "membrane_cv"}
     for (demo, name), entry in twins.items():
         (used,) = (one for one in demos[demo].particles if one.name == name)
         listed = LIBRARY[entry].particle

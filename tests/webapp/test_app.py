@@ -68,9 +68,9 @@ HEADERS = ("Content-Security-Policy", "X-Content-Type-Options", "Referrer-Policy
 
 @pytest.mark.parametrize(
     ("path", "status"),
-    [("/", 200), ("/health", 200), ("/_dash-layout", 200), ("/_dash-dependencies", 200),
-     ("/assets/page.js", 200), ("/assets/none.js", 404), ("/answer/corridor", 405),
-     ("/spectra", 405)],
+    [("/", 200), ("/health", 200), ("/library", 200), ("/_dash-layout", 200),
+     ("/_dash-dependencies", 200), ("/assets/page.js", 200), ("/assets/none.js", 404),
+     ("/answer/corridor", 405), ("/spectra", 405)],
 )  # fmt: skip
 def test_every_answer_carries_the_security_headers(client, path, status):
     with client.get(path) as found:
@@ -218,8 +218,9 @@ def test_another_layout_keeps_what_both_have(client, good):
     opening, _ = callbacks_of(client)
 
     def ask(layout):
-        values = [None, None, None, {**good, "layout": layout}]
-        return client.post(CALLBACK, json=call_of(opening, values, ["layout-request.data"]))
+        wish = {"do": "turn", "at": "chip", "word": layout}
+        values = [None, None, None, {**good, "wish": wish}]
+        return client.post(CALLBACK, json=call_of(opening, values, ["edit-request.data"]))
 
     document = ask("facing-bars").json["response"]["document"]["data"]
     before, after = good["document"]["chip"], document["profile"]["chip"]

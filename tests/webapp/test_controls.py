@@ -55,7 +55,7 @@ def test_every_declared_field_has_one_control(demos):
         for path in shown:
             flagged = str(control_id(path, flag=True)) in found
             assert flagged or str(control_id(path)) in found, path
-        controls = [name for name in found if name.startswith("{")]
+        controls = [name for name in found if name.startswith("{") and "turn" not in name]
         assert len(controls) == len(shown)
 
 
