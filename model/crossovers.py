@@ -6,6 +6,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from model.arrays import Real
+from model.liquid.liquid import Liquid
+from model.particle import Particle
 
 #: Band that is searched, Hz.
 LOWEST_FREQUENCY, HIGHEST_FREQUENCY = 1.0, 1e10
@@ -72,6 +74,15 @@ def find_crossovers(
         Crossover(float(f"{frequency:.12g}"), bool(rising))
         for frequency, rising in zip(np.exp(roots), values[change] < 0.0, strict=True)
     )
+
+
+def particle_crossovers(particle: Particle, liquid: Liquid) -> tuple[Crossover, ...]:
+    """Find every crossover of a particle in a liquid, in order of frequency."""
+
+    def real_part(frequency: Real) -> Real:
+        return np.asarray(particle.polarisation(liquid.medium(2.0 * np.pi * frequency)).real)
+
+    return find_crossovers(real_part)
 
 
 def _refined(

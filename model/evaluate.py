@@ -9,7 +9,7 @@ import numpy as np
 from model.arrays import Real
 from model.conditions import Conditions
 from model.corridor import Corridor, Rule, corridor, rules
-from model.crossovers import Crossover, find_crossovers
+from model.crossovers import Crossover, particle_crossovers
 from model.design import Design
 from model.errors import DesignError, FieldError
 from model.fields.patterns import ChipPatterns
@@ -194,12 +194,7 @@ class Evaluation:
 
     def crossovers(self, particle: Particle) -> tuple[Crossover, ...]:
         """Every crossover of a particle in this liquid, in order of frequency."""
-
-        def real_part(frequency: Real) -> Real:
-            at = Conditions(self.design, self.patterns, frequency, self._conductivity)
-            return at.polarisation(particle).real
-
-        return find_crossovers(real_part)
+        return particle_crossovers(particle, self.design.liquid)
 
     @property
     def temperature_rise(self) -> float | None:

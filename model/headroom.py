@@ -99,7 +99,9 @@ def remembered_map(result: Evaluation, frequency: Real, conductivity: Real) -> H
     """:func:`headroom_map` of a result, kept with its chip while only the operating point moves."""
     design = result.design
     drive = design.drive.model_copy(update={"voltage": 1.0, "frequency": 1e6})
-    liquid = design.liquid.model_copy(update={"conductivity": 1.0})
+    liquid = design.liquid
+    if liquid.recipe is None:  # else the salt that makes the conductivity changes the liquid too
+        liquid = liquid.model_copy(update={"conductivity": 1.0})
     resting = design.model_copy(
         update={"title": "", "question": "", "drive": drive, "liquid": liquid}
     )

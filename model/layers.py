@@ -13,6 +13,16 @@ from model.polarisation import complex_permittivity
 
 #: Most layers around one core.
 MOST_LAYERS = 32
+#: What a new layer starts with, as in a profile: round numbers, common practice, no source.
+NEW_LAYERS: dict[str, dict[str, Any]] = {
+    "membrane": {"name": "membrane", "capacitance": "10 mF/m^2", "conductance": "100 S/m^2"},
+    "layer": {
+        "name": "wall",
+        "thickness": "100 nm",
+        "relative_permittivity": 60.0,
+        "conductivity": "10 mS/m",
+    },
+}
 #: A layer up to this thickness counts as a membrane whose voltage matters: bilayers have 4 to
 #: 10 nm, envelopes of two bilayers up to about 25 nm; cell walls and coats are thicker.
 MEMBRANE_THICKNESS = 25e-9

@@ -1,8 +1,9 @@
 """What every particle kind provides; the kinds themselves stand in ``model/particles/``."""
 
 from abc import ABC, abstractmethod
+from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Annotated, Literal
+from typing import Annotated, Any, ClassVar, Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -10,12 +11,18 @@ from numpy.typing import ArrayLike, NDArray
 from model.arrays import Complex, Real
 from model.declare import Choice, Flag, Part, Quantity, Text
 from model.medium import Medium
+from model.quantity import plain_text
 
 Role = Literal["collect", "pass", "watch"]
 Radius = Annotated[
     float,
     Quantity("Radius", "Outer, of the median particle.", unit="um", low="5 nm", high="500 um"),
 ]
+
+
+def radius_field(radius: float) -> dict[str, Any]:
+    """The radius, m, as it stands in a profile."""
+    return {"radius": plain_text(radius, "um")}
 
 
 @dataclass(frozen=True)
@@ -65,6 +72,9 @@ class Particle(Part, ABC):
     against one another with frequency as the last axis, e.g. sizes ``(n_sample, 1)``.
     """
 
+    #: What a new one starts with, as in a profile: round numbers, common practice, no source.
+    usual: ClassVar[Mapping[str, Any]]
+
     name: Annotated[str, Text("Name", "How this population is called.", longest=40, needed=True)]
     kind: str
     role: Annotated[
@@ -99,6 +109,22 @@ class Particle(Part, ABC):
             high="0.5",
         ),
     ] = 0.0
+    source: Annotated[
+        str | None,
+        Text(
+            "Source",
+            "Where its numbers come from.",
+            longest=240,
+            optional=True,
+            empty="not told",
+            detail=True,
+        ),
+    ] = None
+
+    @classmethod
+    @abstractmethod
+    def sized(cls, radius: float) -> dict[str, Any]:
+        """Fields, as in a profile, that give it an equivalent radius, m."""
 
     @property
     @abstractmethod
@@ -134,6 +160,10 @@ class Particle(Part, ABC):
 
         Of several membranes the largest at each frequency. None if the kind has no membrane.
         """
+
+    def conductance(self, medium: Medium) -> Real | None:
+        """Surface conductance K_s in this medium, S; None if the kind has no such surface."""
+        return None
 
     def spinning_factor(self, medium: Medium, sample: Sample = MEDIAN) -> Complex:
         """Polarisation factor of which Im K makes it spin in a rotating field."""

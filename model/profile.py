@@ -4,10 +4,10 @@ import difflib
 import hashlib
 import json
 import tomllib
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from functools import lru_cache
 from pathlib import Path
-from typing import Any
+from typing import Any, TypeVar, get_args
 
 import tomli_w
 from pydantic import BaseModel, ValidationError
@@ -16,7 +16,6 @@ from model.declare import FROM_PERSON, declarations, matters
 from model.design import Design
 from model.errors import DesignError, FieldError
 from model.files import Files, Folder
-from model.layers import Layer, Membrane
 from model.layouts import LAYOUTS
 from model.particles import PARTICLES
 from model.tasks import TASKS
@@ -31,6 +30,7 @@ MOST_LEVELS, MOST_POINTS = 20, 400
 #: Most errors that are told one by one.
 MOST_ERRORS = 100
 _TAGS = {*LAYOUTS, *PARTICLES, *TASKS, "layer", "membrane"}
+T = TypeVar("T", bound=BaseModel)
 
 
 def load_profile(path: str | Path) -> Design:
@@ -41,13 +41,17 @@ def load_profile(path: str | Path) -> Design:
     DesignError
         With every field that is wrong, or the reason why the file cannot be read at all.
     """
+    return settled(read_profile(read_file(path)), Folder(Path(path).parent))
+
+
+def read_file(path: str | Path) -> bytes:
+    """Read the bytes of a file, no more than tell that it is too large; errors in words."""
     try:
         with Path(path).open("rb") as file:
-            content = file.read(MAX_BYTES + 1)
+            return file.read(MAX_BYTES + 1)
     except OSError as problem:
         reason = problem.strerror or "unknown reason"
         raise DesignError([FieldError("", str(path), f"cannot be opened: {reason}")]) from None
-    return settled(read_profile(content), Folder(Path(path).parent))
 
 
 def settled(design: Design, files: Files) -> Design:
@@ -65,13 +69,13 @@ def read_document(content: bytes) -> dict[str, Any]:
     """Read TOML into nested plain data without looking at the fields."""
     if len(content) > MAX_BYTES:
         size = f"{MAX_BYTES // 1024} kB"
-        raise DesignError([FieldError("", "", f"is larger than {size}, the most a profile may be")])
+        raise DesignError([FieldError("", "", f"is larger than {size}, the most that is read")])
     try:
         text = content.decode("utf-8-sig")  # some editors put a mark before the first letter
     except UnicodeDecodeError:
         raise DesignError([FieldError("", "", "is no UTF-8 text file")]) from None
     if any(line.count(".") > MOST_POINTS for line in text.splitlines()):
-        problem = f"has a line with more than {MOST_POINTS} points, which no profile needs"
+        problem = f"has a line with more than {MOST_POINTS} points, which none needs"
         raise DesignError([FieldError("", "", problem)])
     try:
         return tomllib.loads(text)
@@ -96,11 +100,22 @@ def parse_design(document: Mapping[str, Any]) -> Design:
     if schema != SCHEMA or isinstance(schema, bool):
         problem = f"must be {SCHEMA}; this program reads no other version"
         raise DesignError([FieldError("schema", _shown(schema), problem)])
+    return validated(Design, data)
+
+
+def validated(whole: type[T], data: Mapping[str, Any]) -> T:
+    """Turn nested plain data, as people write it, into what it describes.
+
+    Raises
+    ------
+    DesignError
+        With one entry for every field that is wrong.
+    """
     try:
-        # by the profile's own keys alone: names within the program are unknown keys here
-        return Design.model_validate(data, context=FROM_PERSON, by_alias=True, by_name=False)
+        # by the file's own keys alone: names within the program are unknown keys here
+        return whole.model_validate(data, context=FROM_PERSON, by_alias=True, by_name=False)
     except ValidationError as problem:
-        raise DesignError(_field_errors(problem, data)) from None
+        raise DesignError(_field_errors(problem, data, whole)) from None
 
 
 def too_deep(data: Any) -> bool:
@@ -120,7 +135,7 @@ def too_deep(data: Any) -> bool:
 
 def document(design: Design) -> dict[str, Any]:
     """Write a design as nested plain data that :func:`parse_design` reads back exactly."""
-    return {"schema": SCHEMA, **_part_document(design)}
+    return {"schema": SCHEMA, **part_document(design)}
 
 
 def profile_text(design: Design) -> str:
@@ -131,16 +146,19 @@ def profile_text(design: Design) -> str:
 def fingerprint(design: Design) -> str:
     """Give eight hexadecimal digits that tell designs apart by what is computed from them.
 
-    Title and question do not count.
+    Title, question and sources do not count.
     """
     data = document(design)
     del data["title"], data["question"]
+    for particle in data["particle"]:
+        particle.pop("source", None)
     text = json.dumps(data, sort_keys=True, separators=(",", ":"), ensure_ascii=True)
     digest = hashlib.sha256(text.encode()).hexdigest()
     return f"{digest[:4]}-{digest[4:8]}"
 
 
-def _part_document(part: BaseModel) -> dict[str, Any]:
+def part_document(part: BaseModel) -> dict[str, Any]:
+    """Write a part of a design as nested plain data."""
     known = dict(declarations(type(part)))
     data = {}
     for name, info in type(part).model_fields.items():
@@ -150,16 +168,18 @@ def _part_document(part: BaseModel) -> dict[str, Any]:
                 continue
             value = known[key].text(value)
         elif isinstance(value, BaseModel):
-            value = _part_document(value)
+            value = part_document(value)
         elif isinstance(value, tuple):
-            value = [_part_document(item) for item in value]
+            value = [part_document(item) for item in value]
         if value is not None:
             data[key] = value
     return data
 
 
-def _field_errors(problem: ValidationError, data: Mapping[str, Any]) -> list[FieldError]:
-    """Reword the validator's findings, each with the path as the profile has it."""
+def _field_errors(
+    problem: ValidationError, data: Mapping[str, Any], whole: type[BaseModel]
+) -> list[FieldError]:
+    """Reword the validator's findings, each with the path as the file has it."""
     errors: dict[FieldError, None] = {}
     told = problem.errors(include_url=False)
     for found in told[:MOST_ERRORS]:
@@ -170,7 +190,7 @@ def _field_errors(problem: ValidationError, data: Mapping[str, Any]) -> list[Fie
             errors[FieldError(place, _shown(_at(data, place)), reason)] = None
         if "misfits" not in context:
             shown = "" if found["type"] == "missing" else _shown(value)
-            problem_text = _problem(found["type"], found["msg"], context, keys)
+            problem_text = _problem(found["type"], found["msg"], context, keys, whole)
             errors[FieldError(path, shown, problem_text)] = None
     if len(told) > MOST_ERRORS:
         errors[FieldError("", "", f"has {len(told) - MOST_ERRORS} more errors")] = None
@@ -202,7 +222,13 @@ def _step(data: Any, key: int | str) -> Any:
     return None
 
 
-def _problem(kind: str, message: str, context: Mapping[str, Any], keys: list[int | str]) -> str:
+def _problem(
+    kind: str,
+    message: str,
+    context: Mapping[str, Any],
+    keys: list[int | str],
+    whole: type[BaseModel],
+) -> str:
     """Say what is wrong as one plain sentence."""
     match kind:
         case "declared":
@@ -210,8 +236,8 @@ def _problem(kind: str, message: str, context: Mapping[str, Any], keys: list[int
         case "missing":
             return "is missing"
         case "extra_forbidden":
-            near = difflib.get_close_matches(str(keys[-1]), _known_keys(), 1)
-            return "is no key of a profile" + (f"; is {near[0]} meant?" if near else "")
+            near = difflib.get_close_matches(str(keys[-1]), _known_keys(whole), 1)
+            return "is no key that is known" + (f"; is {near[0]} meant?" if near else "")
         case "union_tag_invalid":
             key, allowed = (
                 str(context[name]).strip("'") for name in ("discriminator", "expected_tags")
@@ -225,21 +251,21 @@ def _problem(kind: str, message: str, context: Mapping[str, Any], keys: list[int
             return message
 
 
-@lru_cache(maxsize=1)  # declarations never change
-def _known_keys() -> frozenset[str]:
-    """Every key that a profile may have, for the suggestion beside a misspelt one."""
+@lru_cache(maxsize=4)  # declarations never change
+def _known_keys(whole: type[BaseModel]) -> frozenset[str]:
+    """Every key that a file may have, for the suggestion beside a misspelt one."""
+    chosen = [*LAYOUTS.values(), *PARTICLES.values(), *TASKS.values()]
+    return frozenset({"schema"}.union(*map(_keys, [whole, *chosen])))
 
-    def keys(part: type[BaseModel]) -> set[str]:
-        found = set()
-        for name, info in part.model_fields.items():
-            found.add(info.alias or name)
-            if isinstance(info.annotation, type) and issubclass(info.annotation, BaseModel):
-                found |= keys(info.annotation)
-        return found
 
-    parts: list[type[BaseModel]] = [Design, type(Design.model_fields["limits"].default)]
-    parts += [*LAYOUTS.values(), *PARTICLES.values(), *TASKS.values(), Layer, Membrane]
-    return frozenset({"schema"}.union(*(keys(part) for part in parts)))
+def _keys(annotation: Any) -> Iterator[str]:
+    """Keys of all parts in a type, however deep."""
+    if isinstance(annotation, type) and issubclass(annotation, BaseModel):
+        for name, info in annotation.model_fields.items():
+            yield info.alias or name
+            yield from _keys(info.annotation)
+    for inner in get_args(annotation):
+        yield from _keys(inner)
 
 
 def _shown(value: Any) -> str:

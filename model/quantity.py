@@ -13,6 +13,10 @@ from typing import Any
 import pint
 
 _UNITS: Any = pint.UnitRegistry(cache_folder=None)
+# Moles of dissolved particles, and the strength of a solution that is made up as a whole: of one
+# that is "1 x" a litre holds one formula unit.
+_UNITS.define("osmole = mole = Osm = osmol")
+_UNITS.define("strength = mole / liter = x")
 
 #: Longest text that is read at all; nothing longer is handed to the unit library.
 MAX_LENGTH = 40
@@ -23,7 +27,7 @@ _SPELLINGS = {
     "µ": "u", "μ": "u", "Ω": "ohm", "\N{OHM SIGN}": "ohm", "°C": "degC", "℃": "degC", "°F": "degF",
     "·": "*", "⋅": "*", "⁻¹": "^-1", "⁻²": "^-2", "⁻³": "^-3", "²": "^2", "³": "^3", "−": "-",
 }  # fmt: skip
-_PRETTY = {"um": "µm", "uL": "µL", "uS": "µS", "us": "µs", "ohm": "Ω", "degC": "°C"}
+_PRETTY = {"uM": "µM", "um": "µm", "uL": "µL", "uS": "µS", "us": "µs", "ohm": "Ω", "degC": "°C"}
 #: Significant digits that a typed value keeps; finer than any laboratory number, and coarse
 #: enough that value → text → value is exact, so that a link gives the same fingerprint.
 DIGITS = 10

@@ -53,6 +53,18 @@ def rotating_amplitude(at: "Conditions") -> float | None:
     return float(np.sqrt(np.trapezoid(turning, line.x) / np.ptp(line.x)))
 
 
+def chip_rotation_rate(at: "Conditions", particle: Particle) -> Real | None:
+    """Rate of spinning in the chip's own rotating field, rad/s per V², mean over the duty.
+
+    None where the field does not rotate; see :func:`rotating_amplitude` for the place.
+    """
+    amplitude = rotating_amplitude(at)
+    if amplitude is None:
+        return None
+    drive = at.design.drive.duty * np.abs(at.share) ** 2
+    return np.asarray(rotation_rate(particle, at.medium, amplitude) * drive)
+
+
 def travelling_speed(at: "Conditions", particle: Particle) -> Real | None:
     """Mean speed along the wave at the force height, m/s per V², positive along the flow.
 

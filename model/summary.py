@@ -14,8 +14,10 @@ from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
 from model.evaluate import Evaluation, LedgerRow, ParticleResult
 from model.fields.patterns import UNKNOWN_HEAT
+from model.liquid.mixed import mixed
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
+from model.recipe_words import liquid_object, mixed_words, portion_cells
 from model.verdict import format_value, format_volts, row_headroom, row_value, verdict
 from model.version import VERSION
 
@@ -39,6 +41,7 @@ def check_object(result: Evaluation) -> dict[str, Any]:
         **_heat_numbers(result),
         **_electro_osmosis(result.electro_osmotic_speed),
         "dep_speed_um_s": result.dielectrophoretic_speed * 1e6,
+        "liquid": liquid_object(result.design.liquid),
         "chip": {
             "liquid_resistance_ohm": load.resistance,
             "liquid_capacitance_pF": load.capacitance * 1e12,
@@ -141,6 +144,7 @@ def check_text(result: Evaluation) -> str:
         f"  chip: {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
         f"  generator: {generator_words(result)}",
         *_heat(result),
+        *_recipe(design),
         "",
         *_table(
             ("limit", "value", "allowed", "headroom"),
@@ -168,6 +172,17 @@ def check_text(result: Evaluation) -> str:
     ]
     lines += ["", *(f"Note: {note}" for note in notes(result))] if notes(result) else []
     return "\n".join([*lines, "", *cautions(result)])
+
+
+def _recipe(design: Design) -> list[str]:
+    """What to mix, and what it gives; nothing for a liquid without a recipe."""
+    found = mixed(design.liquid)
+    if found is None:
+        return []
+    head = ("in a litre at 25 °C", "amount", "mass", "or stock", "why")
+    rows = [portion_cells(portion) for portion in found.portions]
+    words = [mixed_words(found), *found.notes, *([found.caution] if found.caution else [])]
+    return ["", *_table(head, rows), *(f"  {line}" for line in words)]
 
 
 def _heat(result: Evaluation) -> list[str]:
@@ -239,13 +254,14 @@ def spectrum_rows(design: Design, frequency: Real) -> Iterator[str]:
     names = [
         f"{particle.name} {part}" for particle in design.particles for part in ("re_k", "im_k")
     ]
-    yield _csv(["frequency_Hz", *names])
+    yield csv_line(["frequency_Hz", *names])
     for index, value in enumerate(frequency):
         cells = [f"{part:.9g}" for k in spectra for part in (k[index].real, k[index].imag)]
-        yield _csv([f"{value:.9g}", *cells])
+        yield csv_line([f"{value:.9g}", *cells])
 
 
-def _csv(cells: list[str]) -> str:
+def csv_line(cells: list[str]) -> str:
+    """One line of a table of comma-separated values, quoted where needed."""
     line = io.StringIO()
     csv.writer(line, lineterminator="").writerow(cells)
     return line.getvalue()

@@ -4,18 +4,22 @@ import math
 from collections.abc import Callable, Mapping
 from typing import Any
 
+import numpy as np
+
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
 from model.errors import DesignError
-from model.evaluate import Evaluation
+from model.evaluate import POINTS, Evaluation
 from model.profile import fingerprint
 from model.quantity import DIGITS, format_quantity, format_si
+from model.summary import spectrum_rows
 from model.verdict import verdict
 from model.version import VERSION
 from webapp.controls import all_fields, summaries
 from webapp.figures.chip import chip_drawing
 from webapp.figures.theme import THEMES, Theme, particle_line
 from webapp.link import encode
+from webapp.recipe_card import recipe_card
 from webapp.services import Services
 from webapp.state import Options, design_of, read_request
 
@@ -45,6 +49,23 @@ def answer(data: Any, services: Services, view: ViewPart) -> dict[str, Any]:
     }
 
 
+def spectra(data: Any, services: Services) -> dict[str, Any]:
+    """Polarisation spectra as the command line writes them, or which controls cannot be used.
+
+    Raises
+    ------
+    BadRequestError
+        If no page of ours could have sent `data`.
+    """
+    request = read_request(data)
+    try:
+        result = services.evaluate(design_of(request))
+    except DesignError as problem:
+        return error_answer(request.number, problem)
+    frequency = np.geomspace(result.frequency[0], result.frequency[-1], POINTS)
+    return {"csv": "\n".join([*spectrum_rows(result.design, frequency), ""])}
+
+
 def state_answer(number: int, result: Evaluation) -> dict[str, Any]:
     """Fingerprint, link, verdict and the knobs' positions of a good design."""
     design = result.design
@@ -59,6 +80,7 @@ def state_answer(number: int, result: Evaluation) -> dict[str, Any]:
         "knobs": knobs(design),
         "summaries": summaries(design),
         "drawing": chip_drawing(design.chip),
+        "liquid": recipe_card(design.liquid),
         "names": [particle.name for particle in design.particles],
         "cautions": list(cautions(result)),
         "notes": list(notes(result)),

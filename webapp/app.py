@@ -13,13 +13,15 @@ from flask_compress import Compress
 from werkzeug.exceptions import MethodNotAllowed
 
 from model.files import either
+from model.library import load_library
 from webapp import callbacks
-from webapp.answer import answer
+from webapp.answer import answer, spectra
 from webapp.cache import ChipCache, Solver, default_folder, settings, solve
 from webapp.services import DEMO_PROFILES, Services, files_of, load_profiles
 from webapp.state import BadRequestError
 from webapp.uploads import Uploads, take_uploads
 from webapp.views import VIEWS
+from webapp.views.library import library_list
 from webapp.views.page import page
 
 #: Largest request that is read; a profile is far smaller.
@@ -36,6 +38,8 @@ class Settings:
         Folder of profiles offered under "Open a demo".
     first
         Profile shown to a visitor without a link, instead of the folder's first.
+    library
+        File of particles that are offered beside the published ones.
     cache_folder
         Private folder for solved chips; by default one of this user's.
     solver
@@ -44,6 +48,7 @@ class Settings:
 
     profiles: Path = DEMO_PROFILES
     first: Path | None = None
+    library: Path | None = None
     cache_folder: Path | None = None
     solver: Solver | None = None
 
@@ -54,7 +59,7 @@ def make_app(chosen: Settings | None = None) -> Dash:
     Raises
     ------
     DesignError, FileNotFoundError
-        If a profile of the folder is bad, or there is none.
+        If a profile of the folder is bad, or there is none, or the file of particles is bad.
     """
     chosen = chosen or Settings()
     folder = chosen.cache_folder or default_folder()
@@ -67,7 +72,7 @@ def make_app(chosen: Settings | None = None) -> Dash:
     files = either(files_of(profiles, folders), uploads)
     solver = chosen.solver or partial(solve, files=files)
     chips = ChipCache(Cache(server, config=settings(folder)), folder, solver)
-    services = Services(chips, profiles)
+    services = Services(chips, profiles, load_library(chosen.library))
 
     app = Dash(
         "slackwater",
@@ -119,7 +124,7 @@ _INDEX = """<!DOCTYPE html>
 
 
 def _answers(server: Flask, services: Services) -> None:
-    """Answer the page's requests for the visible view.
+    """Answer the page's requests for the visible view, and for the library of particles.
 
     A plain route and no framework callback: the page asks many times a second while a knob moves,
     and the framework's bookkeeping in the browser costs more than the answer (see DEVELOPERS.md).
@@ -133,6 +138,18 @@ def _answers(server: Flask, services: Services) -> None:
         if view not in VIEWS:
             raise BadRequestError("no such view")
         return jsonify(answer(_sent(), services, VIEWS[view]))
+
+    @server.route("/spectra", methods=["GET", "POST"])
+    def answer_spectra() -> Any:
+        if request.method != "POST":
+            raise MethodNotAllowed(["POST"])
+        return jsonify(spectra(_sent(), services))
+
+    listed = library_list(services.library.values())
+
+    @server.get("/library")
+    def library() -> Any:
+        return jsonify(listed)
 
 
 def _sent() -> Any:

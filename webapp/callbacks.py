@@ -12,19 +12,14 @@ from model.errors import DesignError
 from model.profile import document, profile_text
 from webapp.answer import knobs
 from webapp.controls import control_id, inputs_panel
+from webapp.edits import Edited, open_edit
 from webapp.services import Services
-from webapp.state import (
-    Opened,
-    design_of,
-    open_file,
-    open_layout,
-    open_link,
-    read_request,
-)
+from webapp.state import Opened, design_of, open_file, open_link, read_request
 
 
 def register(app: Dash, services: Services) -> None:
     """Register the page's callbacks."""
+    starts = {key: entry.particle_document() for key, entry in services.library.items()}
 
     @app.callback(
         Output("inputs", "children"),
@@ -38,17 +33,16 @@ def register(app: Dash, services: Services) -> None:
         Input("address", "data"),
         Input("upload", "contents"),
         Input("profile", "value"),
-        Input("layout-request", "data"),
+        Input("edit-request", "data"),
         prevent_initial_call=True,
     )
-    def open_design(address: Any, upload: Any, profile: Any, layout: Any) -> tuple[Any, ...]:
+    def open_design(address: Any, upload: Any, profile: Any, edit: Any) -> tuple[Any, ...]:
         source = str(ctx.triggered_id)
         if (source == "upload" and not upload) or (source == "profile" and not profile):
             raise PreventUpdate  # only emptied, so that the same one can be picked again
-        if source == "layout-request":
-            opened = open_layout(layout, services.first)
-        else:
-            opened = opened_from(services, source, address, upload, profile)
+        if source == "edit-request":
+            return (*hydrated(*open_edit(edit, services.first, starts)), None, None)
+        opened = opened_from(services, source, address, upload, profile)
         return (*hydrated(opened), None, None)
 
     @app.callback(
@@ -82,7 +76,8 @@ def _browser_side(app: Dash) -> None:
         State({"flag": ALL}, "id"),
     )
     wire("save", Output("save-request", "data"), Input("save", "n_clicks"))
-    wire("layout", Output("layout-request", "data"), Input("layout", "value"))
+    turned = Input({"turn": ALL}, "value"), State({"turn": ALL}, "id")
+    wire("turn", *turned, State("document", "data"))
     wire("map", Input("map-upload", "contents"), State("map-upload", "filename"))
     wire("share", Input("share", "n_clicks"))
     wire("dark", Input("dark", "checked"))
@@ -105,10 +100,14 @@ def opened_from(services: Services, source: str, address: Any, upload: Any, prof
     return Opened(first)
 
 
-def hydrated(opened: Opened) -> tuple[Any, ...]:
-    """Controls and document of a design that was opened."""
+def hydrated(opened: Opened, edit: Edited | None = None) -> tuple[Any, ...]:
+    """Controls and document of a design that was opened, by an edit if there is one."""
     found = knobs(opened.design)  # exact texts, so that opening a design changes nothing in it
-    data = {"profile": document(opened.design), "problems": list(opened.problems)}
+    data: dict[str, Any] = {
+        "profile": document(opened.design),
+        "problems": list(opened.problems),
+        "edit": edit and {"place": edit.place, "items": edit.items, "order": edit.order},
+    }
     return (
         inputs_panel(opened.design),
         data,

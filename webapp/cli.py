@@ -86,7 +86,8 @@ def _serve(options: argparse.Namespace) -> int:
     if first is not None:
         load_profile(first)  # a bad profile is told before anything is set up
     folder = Path(options.profiles) if options.profiles else DEMO_PROFILES
-    app = make_app(Settings(profiles=folder, first=first))
+    library = Path(options.library) if options.library else None
+    app = make_app(Settings(profiles=folder, first=first, library=library))
     shown = "127.0.0.1" if options.host in ("0.0.0.0", "::") else options.host
     address = f"http://{shown}:{options.port}/"
     print(f"Slackwater {VERSION} is at {address} (stop with Ctrl-C)", flush=True)
@@ -130,6 +131,9 @@ def _parser() -> argparse.ArgumentParser:
     serve.add_argument("--host", default="127.0.0.1")
     serve.add_argument("--port", type=_port, default=8050)
     serve.add_argument("--profiles", metavar="DIR", help="folder of profiles to offer")
+    serve.add_argument(
+        "--library", metavar="FILE", help="particles of your own, offered beside the published ones"
+    )
     serve.add_argument("--open", action="store_true", help="open the browser too")
     serve.set_defaults(run=_serve)
     return parser

@@ -21,12 +21,22 @@ from model.declare import (
 )
 from model.design import Design
 from model.layout import FlatChannel, Layout
-from model.layouts import LAYOUTS
+from model.particle import Particle
 from model.quantity import format_quantity
+from webapp.edit_buttons import add_buttons, item_buttons, kind_choice, part_button
+from webapp.edits import OPTIONAL
 from webapp.figures.theme import DASHES
+from webapp.recipe_card import recipe_place
 
-#: Fields that live in the operating strip and the header instead.
-ELSEWHERE = {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
+#: Fields that live in the operating strip and the header instead; the amount of salt is the
+#: conductivity in other words.
+ELSEWHERE = {
+    "drive.frequency",
+    "drive.voltage",
+    "liquid.conductivity",
+    "liquid.recipe.amount",
+    "title",
+}
 
 #: Longest option, in letters, that a control of half the width shows whole.
 _FITS = 12
@@ -49,10 +59,15 @@ class Field:
 
 
 def fields(part: BaseModel, path: str) -> Iterator[Field]:
-    """Declared fields of one part, not of the parts within it; a layout's own before the shared."""
-    found = list(declarations(type(part)))
+    """Declared fields of one part, not of the parts within it; its name before all others.
+
+    A layout's own fields stand before those that it shares, a particle's behind them.
+    """
+    found = sorted(declarations(type(part)), key=lambda item: item[0] != "name")
     if isinstance(part, Layout):
         found.sort(key=lambda item: item[0] in FlatChannel.model_fields)
+    if isinstance(part, Particle):
+        found.sort(key=lambda item: item[0] not in Particle.model_fields)
     for key, declared in found:
         place = _join(path, key)
         if place not in ELSEWHERE:
@@ -61,14 +76,14 @@ def fields(part: BaseModel, path: str) -> Iterator[Field]:
 
 def inner_parts(part: BaseModel, path: str) -> Iterator[tuple[str, str, BaseModel]]:
     """Path, heading and part of everything within a part, e.g. a cell's layers."""
+    lists = dict(_lists(part))
     for name, info in type(part).model_fields.items():
         value, key = getattr(part, name), info.alias or name
         if isinstance(value, BaseModel):
             yield _join(path, key), key.replace("_", " ").capitalize(), value
-        elif isinstance(value, tuple):
-            for index, item in enumerate(value):
-                heading = f"{key.removesuffix('s').capitalize()} {index + 1}"
-                yield f"{_join(path, key)}.{index}", heading, item
+        for index, item in enumerate(lists.get(key, ())):
+            heading = f"{key.removesuffix('s').capitalize()} {index + 1}"
+            yield f"{_join(path, key)}.{index}", heading, item
 
 
 def _join(path: str, key: str) -> str:
@@ -91,7 +106,7 @@ def inputs_panel(design: Design) -> list[Component]:
             "Chip",
             [_layout(design), html.Div(id="chip-drawing"), *part_controls(design.chip, "chip")],
         ),
-        ("liquid", "Liquid", part_controls(design.liquid, "liquid")),
+        ("liquid", "Liquid", [*part_controls(design.liquid, "liquid"), recipe_place()]),
         ("particles", "Particles", _particles(design)),
         ("drive", "Drive", part_controls(design.drive, "drive")),
         ("electrode", "Electrodes", part_controls(design.electrode, "electrode")),
@@ -112,11 +127,12 @@ def summaries(design: Design) -> dict[str, str]:
         for key in type(design.limits).model_fields
     )
     liquid, drive, electrode = design.liquid, design.drive, design.electrode
+    recipe = "" if liquid.recipe is None else f", with {liquid.recipe.salt}"
     film = "" if electrode.film_thickness is None else ", film"
     return {
         "task": design.task.label,
         "chip": design.chip.layout.replace("-", " "),
-        "liquid": format_quantity(liquid.temperature, "degC"),
+        "liquid": format_quantity(liquid.temperature, "degC") + recipe,
         "particles": str(len(design.particles)),
         "drive": f"{format_quantity(drive.source_resistance, 'ohm')} source",
         "electrode": electrode.interface.replace("-", " ") + film,
@@ -135,11 +151,48 @@ def part_controls(part: BaseModel, path: str) -> list[Component]:
     details = [control(field) for field in found if field.declared.detail]
     if details:
         folded = html.Div(details, className="fields")
-        content.append(html.Details([html.Summary("More"), folded], className="more"))
+        more = [html.Summary("More"), folded]
+        content.append(html.Details(more, className="more", **_fold(f"{path}.more")))
+    counts = {_join(path, key): len(items) for key, items in _lists(part)}
     for inner_path, heading, inner in inner_parts(part, path):
-        head = html.H4(heading, className="inner-heading")
-        content.append(html.Div([head, *part_controls(inner, inner_path)], className="inner"))
+        head: list[Component] = [html.H4(heading, className="inner-heading")]
+        count = counts.get(inner_path.rpartition(".")[0])
+        if count is not None:
+            head.append(item_buttons(inner_path, count))
+        if inner_path in OPTIONAL:
+            head.append(part_button(inner_path, there=True))
+        inside = [html.Div(head, className="inner-head"), *part_controls(inner, inner_path)]
+        content.append(html.Div(inside, className="inner", **_part(inner_path)))
+    content += [add_buttons(items, count) for items, count in counts.items()]
+    content += [part_button(missing, there=False) for missing in _missing(part, path)]
     return content
+
+
+def _missing(part: BaseModel, path: str) -> Iterator[str]:
+    """Paths of those parts that a part may have and has not."""
+    for inner in OPTIONAL:
+        parent, _, key = inner.rpartition(".")
+        if parent == path and getattr(part, key) is None:
+            yield inner
+
+
+def _lists(part: BaseModel) -> Iterator[tuple[str, tuple[Any, ...]]]:
+    """Key and items of every list of parts within a part."""
+    known = dict(declarations(type(part)))
+    for name, info in type(part).model_fields.items():
+        value, key = getattr(part, name), info.alias or name
+        if isinstance(value, tuple) and key not in known:
+            yield key, value
+
+
+def _fold(name: str) -> dict[str, Any]:
+    """Name of a fold, so that it stays open where the inputs are made anew."""
+    return {"data-fold": name}
+
+
+def _part(path: str) -> dict[str, Any]:
+    """Path of a part, so that the page finds it."""
+    return {"data-part": path}
 
 
 def control(field: Field) -> Component:
@@ -226,43 +279,37 @@ def _question(design: Design) -> list[Component]:
 
 
 def _layout(design: Design) -> Component:
-    """Choice of the electrode layout; another one has other fields, so it opens anew."""
-    options = [{"value": name, "label": name.replace("-", " ")} for name in LAYOUTS]
-    return html.Div(
-        dmc.Select(
-            id="layout",
-            label="Layout",
-            description="How the electrodes lie. Fields that both layouts have keep their values.",
-            data=options,
-            value=design.chip.layout,
-            allowDeselect=False,
-            size="sm",
-            className="wide",
-        ),
-        className="fields",
-    )
+    """Choice of the electrode layout."""
+    words = "How the electrodes lie. Fields that both layouts have keep their values."
+    return html.Div(kind_choice("chip", "Layout", words, design.chip.layout), className="fields")
 
 
 def _particles(design: Design) -> list[Component]:
-    found: list[Component] = []
-    for index, particle in enumerate(design.particles):
-        swatch = html.Span(className=f"swatch dash-{DASHES[index % len(DASHES)]}", **HIDDEN)
-        name = html.Span(particle.name, id=f"particle-name-{index}")
-        kind = html.Span(particle.kind.replace("-", " "), className="section-note")
-        found.append(
-            html.Details(
-                [
-                    html.Summary([swatch, name, kind]),
-                    *part_controls(particle, f"particle.{index}"),
-                ],
-                className="particle",
-            )
-        )
-    return found
+    count = len(design.particles)
+    found = [_particle(particle, index, count) for index, particle in enumerate(design.particles)]
+    return [*found, add_buttons("particle", count)]
+
+
+def _particle(particle: Particle, index: int, count: int) -> Component:
+    """One particle, folded; its buttons stand in its head, and before its content for the tab key.
+
+    They are beside the fold and not in its summary, which is a button itself.
+    """
+    path = f"particle.{index}"
+    swatch = html.Span(className=f"swatch dash-{DASHES[index % len(DASHES)]}", **HIDDEN)
+    name = html.Span(particle.name, id=f"particle-name-{index}")
+    kind = html.Span(particle.kind.replace("-", " "), className="section-note")
+    words = "How it is built. Fields that both kinds have keep their values."
+    choice = kind_choice(path, "Kind", words, particle.kind)
+    content = [html.Div(choice, className="fields"), *part_controls(particle, path)]
+    fold = html.Details([html.Summary([swatch, name, kind]), *content], **_fold(path))
+    return html.Div([item_buttons(path, count), fold], className="particle", **_part(path))
 
 
 def _section(key: str, heading: str, content: list[Component], opened: bool) -> Component:
     summary = html.Summary(
         [html.H3(heading), html.Span(id=f"summary-{key}", className="section-note")]
     )
-    return html.Details([summary, *content], className="section", open=opened, id=f"section-{key}")
+    return html.Details(
+        [summary, *content], className="section", open=opened, id=f"section-{key}", **_fold(key)
+    )

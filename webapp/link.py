@@ -19,7 +19,7 @@ from model.profile import MOST_LEVELS, document
 
 VERSION = "1"
 #: Longest address part that is read, characters, and most text it may unpack to, bytes.
-MAX_CHARACTERS, MAX_BYTES = 16_000, 64_000
+MAX_CHARACTERS, MAX_BYTES = 64_000, 256_000
 #: What stands behind a link in running text; no link made here ends with it.
 _PUNCTUATION = ".,;:!?)>]}'\""
 _LETTERS = re.compile("[A-Za-z0-9_-]*")

@@ -1,4 +1,4 @@
-"""What the callbacks share: the chip cache and the demo profiles."""
+"""What the callbacks share: the chip cache, the demo profiles and the library of particles."""
 
 from collections.abc import Iterable
 from dataclasses import dataclass
@@ -8,6 +8,7 @@ from model.design import Design
 from model.errors import DesignError, FieldError
 from model.evaluate import Evaluation, evaluate
 from model.files import FileError, Folder, Held, digest_of, either
+from model.library import Entry
 from model.profile import load_profile
 from webapp.cache import ChipCache
 
@@ -29,10 +30,13 @@ class Services:
         Solves each chip once.
     profiles
         Designs that can be opened by name; the first is shown to a visitor without a link.
+    library
+        Published particles by id, and behind them the deployment's own.
     """
 
     chips: ChipCache
     profiles: dict[str, Design]
+    library: dict[str, Entry]
 
     @property
     def first(self) -> Design:

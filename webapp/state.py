@@ -11,13 +11,14 @@ from typing import Any
 
 from model.design import Design
 from model.errors import DesignError, FieldError
-from model.layouts import LAYOUTS
 from model.profile import document, parse_design, read_document, too_deep
 from webapp.link import LinkError, decode
 
 #: Most controls in a request and most characters in one; more is no browser of ours.
-MOST_VALUES, LONGEST_VALUE = 1000, 400
+MOST_VALUES, LONGEST_VALUE = 4000, 400
 THEMES = ("light", "dark")
+#: Controls that are typed instead of another one, which then follows from them.
+INSTEAD = {"liquid.recipe.amount": "liquid.conductivity"}
 #: No place of a chip is further from its middle, m.
 FARTHEST = 1.0
 
@@ -122,14 +123,17 @@ def _place(data: Any) -> tuple[float, float] | None:
 
 def design_of(request: Request) -> Design:
     """Put the controls' values into the document and read it; raises :class:`DesignError`."""
-    return parse_design(_filled(request))
+    return parse_design(filled(request))
 
 
-def _filled(request: Request) -> dict[str, Any]:
+def filled(request: Request) -> dict[str, Any]:
     """The document with the controls' values in it."""
     data = copy.deepcopy(dict(request.document))
     for path, value in request.values.items():
         put(data, path, value)
+    for path, follows in INSTEAD.items():
+        if request.values.get(path):
+            put(data, follows, "")
     return data
 
 
@@ -177,23 +181,6 @@ def open_link(address: str, fallback: Design) -> Opened:
         "inputs before you trust the result."
     )
     return Opened(opened.design, (warning, *opened.problems))
-
-
-def open_layout(data: Any, fallback: Design) -> Opened:
-    """Turn the page's design to another electrode layout, keeping every key that both have.
-
-    Raises
-    ------
-    BadRequestError
-        If no page of ours could have sent `data`.
-    """
-    document = _filled(read_request(data))
-    chip, layout = document.get("chip"), data.get("layout")
-    if not (isinstance(chip, dict) and isinstance(layout, str) and layout in LAYOUTS):
-        raise BadRequestError("no such layout")
-    known = LAYOUTS[layout].model_fields
-    kept = {key: value for key, value in chip.items() if key in known}
-    return open_document({**document, "chip": {**kept, "layout": layout}}, fallback)
 
 
 def open_file(content: bytes, fallback: Design) -> Opened:

@@ -1,33 +1,42 @@
 """The liquid of a design: what a person enters, and its properties at the stage temperature."""
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
 from functools import cached_property
-from typing import Annotated
+from typing import Annotated, Any, Self
 
 import numpy as np
+from pydantic import ModelWrapValidatorHandler, model_validator
 from scipy.constants import epsilon_0
 
 from model.arrays import Real
-from model.declare import Part, Quantity
+from model.declare import Part, Quantity, misfit
 from model.liquid import water
 from model.liquid.electrolyte import Electrolyte, simple_salt
+from model.liquid.feasible import amount_misfits, fixed_misfits, made_by, misfits
+from model.liquid.mixing import Blend
+from model.liquid.reaching import blended, reach
+from model.liquid.recipe import Recipe
+from model.liquid.solution import PURE
 from model.medium import Medium
+from model.quantity import plain_text
+
+#: Relative rise of conductivity with temperature where nothing tells it, 1/K.
+USUAL_SLOPE = 0.02
+_CONDUCTIVITY = Quantity(
+    "Conductivity",
+    "Of the liquid at the stage temperature, as a bench meter shows it without temperature "
+    "correction.",
+    unit="mS/m",
+    low="0.01 mS/m",
+    high="10 S/m",
+)
 
 
 class Liquid(Part):
-    """Conductivity and temperature; everything else is water's unless given."""
+    """Conductivity and temperature; everything else is the recipe's or water's unless given."""
 
-    conductivity: Annotated[
-        float,
-        Quantity(
-            "Conductivity",
-            "Of the liquid at the stage temperature, as a bench meter shows it without "
-            "temperature correction.",
-            unit="mS/m",
-            low="0.01 mS/m",
-            high="10 S/m",
-        ),
-    ]
+    conductivity: Annotated[float, _CONDUCTIVITY]
     temperature: Annotated[
         float,
         Quantity(
@@ -35,22 +44,24 @@ class Liquid(Part):
         ),
     ] = 298.15
     conductivity_per_kelvin: Annotated[
-        float,
+        float | None,
         Quantity(
             "Conductivity rise per kelvin",
-            "Relative rise of conductivity with temperature.",
+            "Relative rise of conductivity with temperature. Without it that of the recipe, or "
+            "2 %/K.",
             unit="%/K",
             low="0 %/K",
             high="10 %/K",
+            optional=True,
             source="1.9 to 2.0 %/K for KCl and NaCl, handbook tables; 2 is their round value",
             detail=True,
         ),
-    ] = 0.02
+    ] = None
     relative_permittivity: Annotated[
         float | None,
         Quantity(
             "Relative permittivity",
-            "Instead of water's at this temperature.",
+            "Instead of water's or the recipe's at this temperature.",
             unit="",
             low="2",
             high="200",
@@ -62,7 +73,7 @@ class Liquid(Part):
         float | None,
         Quantity(
             "Viscosity",
-            "Instead of water's at this temperature.",
+            "Instead of water's or the recipe's at this temperature.",
             unit="mPa s",
             low="0.1 mPa s",
             high="1000 mPa s",
@@ -74,7 +85,7 @@ class Liquid(Part):
         float | None,
         Quantity(
             "Density",
-            "Instead of water's at this temperature.",
+            "Instead of water's or the recipe's at this temperature.",
             unit="kg/m^3",
             low="500 kg/m^3",
             high="3000 kg/m^3",
@@ -95,6 +106,37 @@ class Liquid(Part):
         ),
     ] = None
 
+    recipe: Recipe | None = None
+
+    @model_validator(mode="wrap")
+    @classmethod
+    def _mixed(cls, data: Any, handler: ModelWrapValidatorHandler[Self]) -> Self:
+        """Turn an amount of salt into the conductivity, and check that the recipe can be had."""
+        alone = isinstance(data, Mapping) and "conductivity" not in data
+        if alone and _has_amount(data.get("recipe")):
+            # in place of what follows from the amount as soon as the rest is known
+            liquid = handler({**data, "conductivity": "1 S/m"})
+        else:
+            alone, liquid = False, handler(data)
+        recipe = liquid.recipe
+        if recipe is None:
+            return liquid
+        found = list(fixed_misfits(recipe, liquid.temperature))
+        if not found and recipe.amount is not None:
+            stated = None if alone else liquid.conductivity
+            found = list(amount_misfits(recipe, liquid.temperature, stated, _CONDUCTIVITY))
+            if not found:
+                made = made_by(recipe, liquid.temperature) if stated is None else stated
+                recipe = recipe.model_copy(update={"amount": None})
+                liquid = handler(
+                    {**data, "conductivity": plain_text(made, "mS/m"), "recipe": recipe}
+                )
+        if not found:
+            found = list(misfits(recipe, liquid.conductivity, liquid.temperature))
+        if found:
+            raise misfit(*found)
+        return liquid
+
     @property
     def heat_conductivity(self) -> float:
         """Thermal conductivity for the chip solve, W/(m K).
@@ -107,26 +149,62 @@ class Liquid(Part):
         return float(water.thermal_conductivity(298.15))
 
     @cached_property
+    def blend(self) -> Blend | None:
+        """Amounts and solution of its recipe at its own conductivity; None without a recipe."""
+        if self.recipe is None:
+            return None
+        return blended(self.recipe, self.temperature, self.conductivity)
+
+    @cached_property
     def state(self) -> "LiquidState":
         """Properties at the stage temperature, SI."""
         warm = self.temperature
+        solution = PURE if self.blend is None else self.blend.solution
 
-        def given(value: float | None, of_water: float) -> float:
-            return of_water if value is None else value
+        def given(value: float | None, usual: float) -> float:
+            return usual if value is None else value
 
         return LiquidState(
-            permittivity=epsilon_0
-            * given(self.relative_permittivity, float(water.relative_permittivity(warm))),
-            viscosity=given(self.viscosity, float(water.viscosity(warm))),
-            density=given(self.density, float(water.density(warm))),
+            permittivity=float(solution.permittivity(warm))
+            if self.relative_permittivity is None
+            else epsilon_0 * self.relative_permittivity,
+            viscosity=given(self.viscosity, float(solution.viscosity(warm))),
+            density=given(self.density, float(solution.density(warm))),
             heat_capacity=float(water.heat_capacity(warm)),
             permittivity_slope=float(water.permittivity_slope(warm)),
-            conductivity_slope=self.conductivity_per_kelvin,
+            conductivity_slope=given(self.conductivity_per_kelvin, self._own_slope),
         )
 
+    @property
+    def _own_slope(self) -> float:
+        """Relative slope d ln σ/dT of the recipe as mixed, 1/K; without one the round value."""
+        if self.blend is None:
+            return USUAL_SLOPE
+        around = [self.blend.solution.conductivity(self.temperature + step) for step in (0.5, -0.5)]
+        return float(np.log(around[0] / around[1]))
+
+    @property
+    def ions(self) -> Electrolyte:
+        """Its ions at its own conductivity."""
+        return self.electrolyte(np.asarray(self.conductivity))
+
     def electrolyte(self, conductivity: Real) -> Electrolyte:
-        """Its ions at other conductivities, S/m, of any shape."""
-        return simple_salt(conductivity, self.temperature)
+        """Its ions at other conductivities, S/m, of any shape.
+
+        With a recipe it is the moving salt that makes them; below what the rest conducts all is
+        diluted in proportion, above what is modelled the salt goes on in proportion. The ions move
+        as in the liquid's own amount of sugar, each as if alone: what they do to one another shows
+        in the conductivity. Without a recipe they are those of a simple salt.
+        """
+        if self.recipe is None or self.blend is None:
+            return simple_salt(conductivity, self.temperature)
+        within = reach(self.recipe, self.temperature)
+        ions = within.mixing.blend(within.salt(np.ravel(conductivity))).solution.electrolyte(
+            self.temperature, float(self.blend.solution.thickness)
+        )
+        diluted = np.minimum(np.ravel(conductivity) / max(within.least, np.finfo(float).tiny), 1.0)
+        shape = (len(ions.valences), *np.shape(conductivity))
+        return replace(ions, concentrations=(ions.concentrations * diluted).reshape(shape))
 
     def medium(self, omega: Real, conductivity: Real | None = None) -> Medium:
         """The liquid as particles meet it, at its own conductivity unless others are given."""
@@ -160,3 +238,11 @@ class LiquidState:
     def heat_storage(self) -> float:
         """Heat capacity per volume, J/(m³ K)."""
         return self.density * self.heat_capacity
+
+
+def _has_amount(recipe: Any) -> bool:
+    """Whether a recipe, as a table or read already, tells the amount of its salt."""
+    amount = (
+        recipe.get("amount") if isinstance(recipe, Mapping) else getattr(recipe, "amount", None)
+    )
+    return amount not in (None, "")

@@ -1,7 +1,7 @@
 """Particle kind: an ellipsoid in confocal layers, e.g. a rod or a red cell."""
 
 from functools import lru_cache
-from typing import Annotated, Literal, TypeVar
+from typing import Annotated, Any, ClassVar, Literal, TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,9 +11,11 @@ from model import outlines
 from model.arrays import Complex, Real
 from model.declare import Choice, Quantities
 from model.layered import LayeredParticle
+from model.layers import NEW_LAYERS
 from model.medium import Medium
 from model.outlines import Outline
 from model.particle import MEDIAN, Alignment, Sample
+from model.quantity import plain_text
 
 Number = TypeVar("Number", np.float64, np.complex128)
 #: Semi-axes that differ by less count as equal.
@@ -29,6 +31,13 @@ class Ellipsoid(LayeredParticle):
     Source: C. F. Bohren and D. R. Huffman, *Absorption and Scattering of Light by Small
     Particles* (1983), section 5.3; T. B. Jones, *Electromechanics of Particles* (1995), chapter 5.
     """
+
+    usual: ClassVar[dict[str, Any]] = {
+        "name": "rod",
+        "semi_axes": ["1.5 um", "0.5 um", "0.5 um"],
+        "core": {"relative_permittivity": 60.0, "conductivity": "0.3 S/m"},
+        "layers": [NEW_LAYERS["membrane"]],
+    }
 
     kind: Literal["ellipsoid"] = "ellipsoid"
     semi_axes: Annotated[
@@ -51,6 +60,11 @@ class Ellipsoid(LayeredParticle):
             options={"aligned": "aligned by the field", "random": "random"},
         ),
     ] = "aligned"
+
+    @classmethod
+    def sized(cls, radius: float) -> dict[str, Any]:
+        """Semi-axes of a sphere."""
+        return {"semi_axes": [plain_text(radius, "um")] * 3}
 
     @property
     def equivalent_radius(self) -> float:

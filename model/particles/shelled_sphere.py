@@ -1,19 +1,32 @@
 """Particle kind: a sphere in any number of concentric layers, e.g. a cell with its wall."""
 
-from typing import Literal
+from typing import Any, ClassVar, Literal
 
 from model.arrays import Complex, Real
 from model.layered import LayeredParticle
+from model.layers import NEW_LAYERS
 from model.medium import Medium
 from model.outlines import LEAST_CORE, Outline, sphere
-from model.particle import MEDIAN, Radius, Sample
+from model.particle import MEDIAN, Radius, Sample, radius_field
 
 
 class ShelledSphere(LayeredParticle):
     """A spherical core in concentric layers."""
 
+    usual: ClassVar[dict[str, Any]] = {
+        "name": "cell",
+        "radius": "5 um",
+        "core": {"relative_permittivity": 60.0, "conductivity": "0.5 S/m"},
+        "layers": [NEW_LAYERS["membrane"]],
+    }
+
     kind: Literal["shelled-sphere"] = "shelled-sphere"
     radius: Radius
+
+    @classmethod
+    def sized(cls, radius: float) -> dict[str, Any]:
+        """Its radius."""
+        return radius_field(radius)
 
     @property
     def equivalent_radius(self) -> float:

@@ -1,6 +1,6 @@
 """Particle kind: a homogeneous sphere with a conducting surface, e.g. a latex bead."""
 
-from typing import Annotated, Literal
+from typing import Annotated, Any, ClassVar, Literal
 
 import numpy as np
 from numpy.typing import ArrayLike
@@ -9,7 +9,7 @@ from model.arrays import Complex, Real
 from model.declare import Choice, Quantity
 from model.layers import Material
 from model.medium import Medium
-from model.particle import MEDIAN, Particle, Radius, Sample
+from model.particle import MEDIAN, Particle, Radius, Sample, radius_field
 from model.polarisation import clausius_mossotti
 from model.surface_conduction import diffuse_conductance
 
@@ -20,6 +20,14 @@ class SolidSphere(Particle, Material):
     Source: C. T. O'Konski 1960 J. Phys. Chem. 64:605, for the surface conductance. It takes the
     surface as thin: the diffuse layer a small part of the radius.
     """
+
+    usual: ClassVar[dict[str, Any]] = {
+        "name": "bead",
+        "radius": "3 um",
+        "relative_permittivity": 2.55,
+        "conductivity": "0 S/m",
+        "surface_conductance": "1 nS",
+    }
 
     kind: Literal["solid-sphere"] = "solid-sphere"
     radius: Radius
@@ -68,6 +76,11 @@ class SolidSphere(Particle, Material):
             only_with=("surface", "zeta-potential"),
         ),
     ] = 0.0
+
+    @classmethod
+    def sized(cls, radius: float) -> dict[str, Any]:
+        """Its radius."""
+        return radius_field(radius)
 
     @property
     def equivalent_radius(self) -> float:

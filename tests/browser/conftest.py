@@ -16,6 +16,21 @@ _NAMES = ("chromium", "chromium-browser", "google-chrome", "google-chrome-stable
 _FLAGS = ["--no-sandbox", "--disable-gpu", "--disable-background-networking", "--disable-quic"]
 SIZE = {"width": 1440, "height": 1400}
 
+#: Edges of what each trace of a figure shows, in pixels; −1 where it shows nothing.
+EDGES = """(name) => {
+  const place = document.getElementById("figure-" + name);
+  return place._fullData.map((trace) => {
+    const group = place.querySelector(".trace" + trace.uid);
+    const parts = "path.js-line, path.js-fill, path.point, text";
+    const found = group ? [...group.querySelectorAll(parts)]
+      .map((part) => part.getBoundingClientRect()).filter((box) => box.width + box.height > 0)
+      : [];
+    const edge = (pick, side) => pick(...found.map((box) => box[side]));
+    return [edge(Math.min, "left"), edge(Math.max, "right"), edge(Math.min, "top"),
+      edge(Math.max, "bottom")].map((value) => Number.isFinite(value) ? value : -1);
+  });
+}"""
+
 
 @pytest.fixture(scope="session")
 def address(tmp_path_factory) -> Iterator[str]:

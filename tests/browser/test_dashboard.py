@@ -213,7 +213,7 @@ def test_another_layout_keeps_what_both_have(page):
     settled(page)
     before = shown_fingerprint(page)
     for layout in ("facing bars", "bars under plate", "coplanar bars"):
-        page.locator("#layout").click()
+        page.get_by_label("Layout", exact=True).first.click()
         page.get_by_role("option", name=layout).click()
         until(page, f"() => document.getElementById('summary-chip').textContent === '{layout}'")
         settled(page)

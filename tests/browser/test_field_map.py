@@ -15,7 +15,7 @@ def choose(page, name: str, content: bytes) -> None:
 
 
 def test_a_field_map_is_chosen_and_used(page):
-    page.locator("#layout").click()
+    page.get_by_label("Layout", exact=True).first.click()
     page.get_by_role("option", name="field map").click()
     until(page, "() => document.body.textContent.includes('Choose a field map: a CSV file')")
     assert page.locator("#stale-label").is_visible()

@@ -3,7 +3,7 @@
 import pytest
 from axe_playwright_python.sync_playwright import Axe
 
-from tests.browser.conftest import settled, until
+from tests.browser.conftest import EDGES, settled, until
 from tests.browser.test_dashboard import drag, shown_fingerprint, slider, type_into
 
 pytestmark = pytest.mark.browser
@@ -39,6 +39,8 @@ def test_tabs_move_with_the_arrow_keys(page):
     corridor, section = (page.get_by_role("tab", name=name) for name in ("Corridor", "Section"))
     assert corridor.get_attribute("aria-selected") == "true"
     corridor.focus()
+    page.keyboard.press("ArrowRight")
+    assert page.locator("#view-polarisation").is_visible()
     page.keyboard.press("ArrowRight")
     settled(page)
     assert section.get_attribute("aria-selected") == "true"
@@ -136,27 +138,15 @@ def test_panels_are_drawn_to_scale(section):
 
 
 def test_sketched_panels_are_the_picture_that_the_full_drawing_gives(section):
-    boxes = """(name) => {
-      const place = document.getElementById("figure-" + name);
-      return place._fullData.map((trace) => {
-        const group = place.querySelector(".trace" + trace.uid);
-        const found = group ? [...group.querySelectorAll("path.js-line, path.point, text")]
-          .map((part) => part.getBoundingClientRect()).filter((box) => box.width + box.height > 0)
-          : [];
-        const edge = (pick, side) => pick(...found.map((box) => box[side]));
-        return [edge(Math.min, "left"), edge(Math.max, "right"), edge(Math.min, "top"),
-          edge(Math.max, "bottom")].map((value) => Number.isFinite(value) ? value : -1);
-      });
-    }"""
     slider(section, "drive.frequency").focus()
     for _ in range(6):
         section.keyboard.press("ArrowRight")
     until(section, "() => Object.values(window.slackwater.figures).some((f) => f.sketched)")
     until(section, "() => window.slackwater.shown === window.slackwater.gate.number")
-    sketched = {name: section.evaluate(boxes, name) for name in PANELS}
+    sketched = {name: section.evaluate(EDGES, name) for name in PANELS}
     settled(section)
     for name in PANELS:
-        full = section.evaluate(boxes, name)
+        full = section.evaluate(EDGES, name)
         for here, there in zip(full, sketched[name], strict=True):
             assert here == pytest.approx(there, abs=1.5), name
 
@@ -184,7 +174,7 @@ def test_the_drawing_follows_the_typed_lengths(page):
 
 def test_labels_of_the_drawing_keep_apart(page):
     for layout in ("facing bars", "bars under plate", "four phase bars"):
-        page.locator("#layout").click()
+        page.get_by_label("Layout", exact=True).first.click()
         page.get_by_role("option", name=layout).click()
         until(page, f"() => document.getElementById('summary-chip').textContent === '{layout}'")
         settled(page)

@@ -12,7 +12,7 @@ from model.layouts.four_pole import FourPole
 from model.layouts.insulating_constriction import InsulatingConstriction
 from model.planar import around
 from model.profile import document, parse_design
-from webapp.state import open_layout
+from tests.wishes import wished
 
 UM = 1e-6
 PLANS = [name for name, kind in LAYOUTS.items() if kind.view == "plan"]
@@ -61,8 +61,7 @@ def test_electrodes_are_remote(yeast):
 @pytest.mark.parametrize("name", PLANS)
 def test_a_layout_in_plan_can_be_chosen_on_screen(yeast, name):
     """Every field of its own has a value to begin with, which fits the rest."""
-    request = {"number": 1, "document": document(yeast), "values": {}, "theme": "light"}
-    opened = open_layout({**request, "layout": name}, yeast)
+    opened, _ = wished(yeast, "turn", "chip", name)
     assert opened.problems == ()
     assert opened.design.chip.layout == name
     assert opened.design.chip.channel_width == yeast.chip.channel_width

@@ -112,10 +112,12 @@ def test_a_part_says_what_it_is(part):
 def all_declared():
     from model.design import Design, Drive, Flow
     from model.liquid.liquid import Liquid
+    from model.liquid.recipe import Ingredient, Recipe
     from model.walls import Wall
 
     limits = Design.model_fields["limits"].annotation
-    for part in (*PARTS.values(), Design, Drive, Flow, Liquid, Wall, limits):
+    parts = (*PARTS.values(), Design, Drive, Flow, Ingredient, Liquid, Recipe, Wall, limits)
+    for part in parts:
         for key, found in declarations(part):
             info = next(
                 item for name, item in part.model_fields.items() if (item.alias or name) == key

@@ -29,6 +29,7 @@ KEYS = {
     "flow_outlet_rise_K",
     "electrothermal_speed_um_s",
     "dep_speed_um_s",
+    "liquid",
     "chip",
     "particles",
     "limits",
@@ -184,3 +185,20 @@ def test_numbers_in_the_text_can_be_read_back(yeast, patterns):
     result = evaluate(yeast, patterns)
     assert parse_quantity(low.strip(), "V") == pytest.approx(result.floor_pp, rel=1e-2)
     assert parse_quantity(high.strip(), "V") == pytest.approx(result.ceiling_pp, rel=1e-2)
+
+
+def test_what_to_mix_is_told(results, yeast, patterns):
+    result = results["tumour-cells-sugar-buffer"]
+    told = check_object(result)["liquid"]
+    finite_or_told(told)
+    assert told["conductivity_mS_m"] == pytest.approx(30.0)
+    assert told["recipe"]["osmolality_mOsm_kg"] == pytest.approx(300.0, rel=1e-4)
+    assert told["viscosity_mPa_s"] == pytest.approx(1e3 * result.design.liquid.state.viscosity)
+    portions = {item["solute"]: item for item in told["recipe"]["per_litre"]}
+    assert portions["dextrose"]["g"] == pytest.approx(3.0)
+    assert portions["HEPES"]["stock_mL"] == pytest.approx(2.0)
+    text = check_text(result)
+    for words in ("potassium chloride", "sucrose", "300 mOsm/kg", "2 mL of 1 M", "pH 7.4"):
+        assert words in text
+    assert check_object(evaluate(yeast, patterns))["liquid"]["recipe"] is None
+    assert "mOsm/kg" not in check_text(evaluate(yeast, patterns))

@@ -7,6 +7,7 @@ from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
 from model.evaluate import evaluate
+from model.library import load_library
 from model.profile import document, fingerprint, parse_design
 from model.quantity import parse_quantity
 from model.version import VERSION
@@ -27,7 +28,7 @@ class Chips:
 
 @pytest.fixture
 def services(demos, solved):
-    return Services(Chips(solved), demos)
+    return Services(Chips(solved), demos, load_library())
 
 
 def request_of(design, values=None, theme="light"):

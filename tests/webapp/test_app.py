@@ -5,6 +5,7 @@ import logging
 import re
 from pathlib import Path
 
+import numpy as np
 import pytest
 from flask import Flask
 from hypothesis import HealthCheck, given, settings
@@ -12,6 +13,7 @@ from hypothesis import strategies as st
 
 from model.errors import DesignError
 from model.profile import document, profile_text
+from model.summary import spectrum_rows
 from webapp.app import MAX_REQUEST, Settings, make_app
 from webapp.services import load_profiles
 
@@ -53,13 +55,22 @@ def test_wrong_entries_are_an_answer(client, good):
     assert found.json["errors"].keys() == {"drive.voltage"}
 
 
+def test_spectra_are_those_of_the_command_line(client, good, yeast):
+    frequency = np.geomspace(1e3, 1e8, 400)
+    found = client.post("/spectra", json=good).json["csv"]
+    assert found.splitlines() == list(spectrum_rows(yeast, frequency))
+    wrong = client.post("/spectra", json={**good, "values": {"drive.voltage": "x"}})
+    assert wrong.json["errors"].keys() == {"drive.voltage"}
+
+
 HEADERS = ("Content-Security-Policy", "X-Content-Type-Options", "Referrer-Policy")
 
 
 @pytest.mark.parametrize(
     ("path", "status"),
-    [("/", 200), ("/health", 200), ("/_dash-layout", 200), ("/_dash-dependencies", 200),
-     ("/assets/page.js", 200), ("/assets/none.js", 404), ("/answer/corridor", 405)],
+    [("/", 200), ("/health", 200), ("/library", 200), ("/_dash-layout", 200),
+     ("/_dash-dependencies", 200), ("/assets/page.js", 200), ("/assets/none.js", 404),
+     ("/answer/corridor", 405), ("/spectra", 405)],
 )  # fmt: skip
 def test_every_answer_carries_the_security_headers(client, path, status):
     with client.get(path) as found:
@@ -109,7 +120,7 @@ BODIES = {
 
 
 @pytest.mark.parametrize("name", BODIES)
-@pytest.mark.parametrize("path", ["/answer/corridor", CALLBACK])
+@pytest.mark.parametrize("path", ["/answer/corridor", "/spectra", CALLBACK])
 def test_bodies_that_no_page_sends(client, name, path):
     found = post(client, BODIES[name], path)
     assert found.status_code == 400
@@ -207,8 +218,9 @@ def test_another_layout_keeps_what_both_have(client, good):
     opening, _ = callbacks_of(client)
 
     def ask(layout):
-        values = [None, None, None, {**good, "layout": layout}]
-        return client.post(CALLBACK, json=call_of(opening, values, ["layout-request.data"]))
+        wish = {"do": "turn", "at": "chip", "word": layout}
+        values = [None, None, None, {**good, "wish": wish}]
+        return client.post(CALLBACK, json=call_of(opening, values, ["edit-request.data"]))
 
     document = ask("facing-bars").json["response"]["document"]["data"]
     before, after = good["document"]["chip"], document["profile"]["chip"]

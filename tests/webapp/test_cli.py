@@ -11,7 +11,7 @@ import pytest
 
 from model.profile import fingerprint, profile_text
 from model.version import VERSION
-from webapp import cli
+from webapp import app, cli
 
 GOOD, OUTSIDE, BAD = 0, 1, 2
 
@@ -145,6 +145,23 @@ def test_a_bad_first_profile_is_told(capsys, tmp_path):
     code, _, err = run(capsys, "serve", str(path))
     assert code == BAD
     assert "schema" in err
+
+
+def test_a_bad_file_of_particles_is_told(capsys, tmp_path, monkeypatch):
+    monkeypatch.setenv("SLACKWATER_CACHE", str(tmp_path / "cache"))
+    path = tmp_path / "mine.toml"
+    path.write_text('[[entry]]\nid = "mine"', encoding="utf-8")
+    code, _, err = run(capsys, "serve", "--library", str(path))
+    assert code == BAD
+    assert "mine.toml" in err
+    assert "entry.0.particle" in err
+
+
+def test_particles_of_ones_own_reach_the_page(tmp_path, monkeypatch):
+    given = []
+    monkeypatch.setattr(app, "load_library", lambda path: given.append(path) or {})
+    app.make_app(app.Settings(library=tmp_path / "mine.toml", cache_folder=tmp_path))
+    assert given == [tmp_path / "mine.toml"]
 
 
 def test_version(capsys):

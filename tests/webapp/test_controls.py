@@ -55,7 +55,7 @@ def test_every_declared_field_has_one_control(demos):
         for path in shown:
             flagged = str(control_id(path, flag=True)) in found
             assert flagged or str(control_id(path)) in found, path
-        controls = [name for name in found if name.startswith("{")]
+        controls = [name for name in found if name.startswith("{") and "turn" not in name]
         assert len(controls) == len(shown)
 
 
@@ -107,7 +107,9 @@ def test_summaries_follow_the_design(yeast, vary):
 
 
 def test_the_strip_holds_what_the_panel_leaves_out():
-    assert set(ELSEWHERE) == {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
+    strip = {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
+    # the amount of salt says the same as the conductivity
+    assert set(ELSEWHERE) == {*strip, "liquid.recipe.amount"}
     assert {key for key, _ in declarations(Design)} >= {"title", "question"}
 
 

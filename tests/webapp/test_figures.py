@@ -91,7 +91,8 @@ def check_numbers(name, trace):
         assert unpacked(trace["z"]).size == shape[0] * shape[1]
         assert all(np.isfinite(trace[key]) for key in ("x0", "dx", "y0", "dy"))
         return
-    broken = trace.get("name") in ("force", "streamlines", "sense", "force key", "particle")
+    lines = ("force", "streamlines", "sense", "force key", "particle", "spread", "branch")
+    broken = trace.get("meta", trace.get("name")) in lines
     for key in ("x", "y"):
         values = unpacked(trace[key])
         gaps = broken or (key == "y" and trace.get("name", "").startswith("binding "))
@@ -114,6 +115,8 @@ def test_no_text_shows_what_is_no_number(extreme, theme):
         words += [str(value) for row in part.get("ledger", []) for value in row.values()]
         probed = part.get("probe", {"readings": []})["readings"]
         words += [value for reading in probed for value in reading.values()]
+        rows = part.get("table", {"rows": []})["rows"]
+        words += [text for row in rows for text in (row["note"], *row["cells"])]
         for text in words:
             assert not {"nan", "inf", "None"} & set(text.replace("°", " ").split()), text
 
@@ -126,7 +129,7 @@ def test_axes_carry_units(result, theme):
             unit_in_ticks = any(
                 text.endswith(("Hz", "S/m", "Ω")) for text in map(str, axis.get("ticktext", []))
             )
-            pure = axis["title"]["text"] == "Electrothermal / DEP speed"
+            pure = axis["title"]["text"] in ("Electrothermal / DEP speed", "Re K", "Im K")
             assert unit_in_ticks or pure or axis["title"]["text"].endswith(")"), axis["title"]
 
 
@@ -191,7 +194,8 @@ def test_names_do_not_cover_one_another_nor_leave_the_figure(result):
 def test_names_keep_apart_while_knobs_move(name, results, vary):
     result = results[name]
     for conductivity in ("1 mS/m", "10 mS/m", "60 mS/m", "0.3 S/m", "1.5 S/m"):
-        design = vary(result.design, {"liquid.conductivity": conductivity})
+        # of any conductivity, which no recipe has
+        design = vary(result.design, {"liquid": {"conductivity": conductivity}})
         moved = evaluate(design, result.patterns, points=120)
         assert overlaps(label_boxes(corridor_figure(moved, THEMES["dark"]))) == [], conductivity
 

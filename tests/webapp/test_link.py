@@ -8,8 +8,11 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
+from model.design import MOST_PARTICLES
+from model.layers import MOST_LAYERS
+from model.library import load_library
 from model.profile import document, fingerprint, parse_design
-from webapp.link import _DICTIONARY, LinkError, decode, encode, flatten, unflatten
+from webapp.link import _DICTIONARY, MAX_CHARACTERS, LinkError, decode, encode, flatten, unflatten
 from webapp.state import open_link
 
 PATIENT = settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.too_slow])
@@ -54,6 +57,29 @@ def test_twelve_particles_fit_into_a_link(yeast, vary):
     design = vary(yeast, {"particle": many})
     assert len(encode(design)) < LONGEST
     assert open_link(encode(design), yeast).design == design
+
+
+def test_the_largest_design_of_the_page_fits_into_a_link(yeast, vary):
+    """Twelve particles of the library with all layers that a particle may have."""
+    entries = sorted(load_library().values(), key=lambda entry: -len(entry.rows()))[:MOST_PARTICLES]
+    many = [{**entry.particle_document(), "name": entry.id[:40]} for entry in entries]
+    design = vary(yeast, {"particle": many, "task.working_height": "30 um"})
+    assert open_link(encode(design), yeast).design == design
+    for index, particle in enumerate(many):
+        particle["layers"] = [
+            {
+                "name": f"{index} {layer} {particle['name']}"[:40],
+                "capacitance": f"{10 + layer / 7:.9g} mF/m^2",
+                "conductance": f"{100 / (layer + 1):.9g} S/m^2",
+                "dispersion_strength": f"{1 + index / 9:.9g} mF/m^2",
+            }
+            for layer in range(MOST_LAYERS)
+        ]
+    layered = [particle for particle in many if "core" in particle]
+    design = vary(yeast, {"particle": layered, "task.working_height": "30 um"})
+    opened = open_link(encode(design), yeast)
+    assert opened.problems == ()
+    assert opened.design == design
 
 
 @pytest.mark.parametrize("end", [".", ",", ")", ">", "?!", '"'])
@@ -146,7 +172,7 @@ def test_a_bomb_is_not_unpacked(yeast):
         found = attempt(packed(lines))
         assert found is None or len(str(found)) < 200_000
     with pytest.raises(LinkError, match="longer"):
-        decode("1.a." + "A" * 20_000)
+        decode("1.a." + "A" * MAX_CHARACTERS)
 
 
 def test_reasons_are_plain(yeast):

@@ -11,16 +11,16 @@ from model.bars import Bars
 from model.evaluate import evaluate
 from model.layouts import LAYOUTS
 from model.maps import section_maps
-from model.profile import document
 from model.quantity import parse_quantity
 from tests.field_maps import SOLVED
 from tests.webapp.test_figures import luminance
+from tests.wishes import wished
 from webapp.figures.chip import chip_drawing
 from webapp.figures.panel import frame
 from webapp.figures.section import longest_force
 from webapp.figures.share import share_band
 from webapp.figures.theme import THEMES
-from webapp.state import BadRequestError, Options, open_layout, read_options
+from webapp.state import BadRequestError, Options, read_options
 from webapp.views.section import PANELS, section_part
 
 LIGHT = THEMES["light"]
@@ -29,8 +29,7 @@ BARS = sorted(name for name, layout in LAYOUTS.items() if issubclass(layout, Bar
 
 def turned(design, layout):
     """The design on another layout, as the page turns it."""
-    request = {"number": 1, "document": document(design), "values": {}, "theme": "light"}
-    return open_layout({**request, "layout": layout}, design).design
+    return wished(design, "turn", "chip", layout)[0].design
 
 
 @pytest.fixture(params=BARS)

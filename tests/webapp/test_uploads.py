@@ -11,10 +11,10 @@ from model.files import FileError, digest_of
 from model.layouts.field_map import FieldMap
 from model.profile import document, load_profile, profile_text
 from tests import field_maps
+from tests.wishes import wished
 from webapp import uploads
 from webapp.app import Settings, make_app
 from webapp.cli import main
-from webapp.state import open_layout
 from webapp.uploads import Uploads
 from webapp.views import VIEWS
 
@@ -50,8 +50,7 @@ def asked(client, design, values, view="corridor"):
 @pytest.fixture(scope="module")
 def bare(yeast):
     """The page's design once it is turned to a field map: no file is chosen yet."""
-    data = {"number": 1, "document": document(yeast), "values": {}, "theme": "light"}
-    opened = open_layout({**data, "layout": "field-map"}, yeast)
+    opened, _ = wished(yeast, "turn", "chip", "field-map")
     assert not opened.problems
     assert opened.design.chip.channel_height == yeast.chip.channel_height
     return opened.design

@@ -130,6 +130,10 @@
     const height = Math.max(420, place.clientHeight) + 84;
     const layout = layoutOf(kept);
     const margin = layout.margin;
+    if (layout.legend && !layout.showlegend) {
+      layout.showlegend = true; // on the page a key names the lines
+      if (layout.legend.orientation === "h") margin.t += 20;
+    }
     layout.title = {
       text: place.getAttribute("aria-label"),
       x: 0.01,

@@ -12,6 +12,7 @@
   let travelling = false;
   let leaving = false; // whether the next address is another design's, opened over this one
   let visits = 0;
+  let last = null; // the last good answer
 
   /* ---- opening ---- */
 
@@ -20,8 +21,10 @@
     const system = window.matchMedia("(prefers-color-scheme: dark)").matches ? "dark" : "light";
     appearance(wanted || system);
     props("dark", { checked: gate.theme === "dark" });
-    page.section.start();
+    for (const view of Object.values(page.views)) view.start();
     page.tabs.start();
+    page.edits.start();
+    page.library.start();
     page.knobs.make((path, text) => props(idOf(path), { value: text }));
     window.addEventListener("popstate", travelled);
     document.addEventListener("click", clicked);
@@ -34,6 +37,7 @@
     clearTimeout(addressTimer);
     travelling = true;
     visits += 1;
+    page.edits.remember(null);
     props("address", { data: { link: window.location.hash, visit: visits } });
   }
 
@@ -50,11 +54,12 @@
       }
       profile = opened;
       travelling = false;
+      mark({}); // what stays on the page keeps no mark
       gate.profile = opened.profile;
       gate.values = {};
       gate.sent = "";
-      marked.clear();
       notice(opened.problems);
+      page.edits.opened(opened.edit);
     }
     ids.forEach((id, index) => {
       if (values[index] !== undefined) gate.values[pathOf(id.field)] = values[index] ?? "";
@@ -105,7 +110,7 @@
   }
 
   function draw(answer) {
-    if (answer.probe) page.section.answered(answer);
+    if (page.views[gate.view]) page.views[gate.view].answered(answer);
     for (const [name, figure] of Object.entries(answer.figures)) page.draw(name, figure);
     for (const [name, words] of Object.entries(answer.sentences)) text("sentence-" + name, words);
     if (answer.ledger) page.ledger(answer.ledger);
@@ -121,7 +126,15 @@
     page.best = found;
   }
 
+  /* What stands among the inputs, in new ones: as it was, until the next answer. */
+  page.redraw = function () {
+    if (!last) return;
+    page.drawing(last.drawing);
+    page.recipe(last.liquid);
+  };
+
   function show(answer) {
+    last = answer;
     byId("fingerprint").textContent = answer.fingerprint;
     text("verdict-headline", answer.verdict.headline);
     text("verdict-sentence", answer.verdict.sentence);
@@ -135,6 +148,7 @@
       if (label) label.previousElementSibling.style.color = answer.colours[index];
     });
     page.drawing(answer.drawing);
+    page.recipe(answer.liquid);
     tidy(answer.texts);
     items("notes", answer.notes);
     items("cautions", answer.cautions);
@@ -159,17 +173,18 @@
   function mark(errors) {
     for (const path of [...marked]) {
       if (!(path in errors)) {
-        props(idOf(path), { error: null });
+        if (byId(JSON.stringify(idOf(path)))) props(idOf(path), { error: null });
         marked.delete(path);
       }
     }
     const homeless = [];
+    page.edits.forgive();
     for (const [path, words] of Object.entries(errors)) {
       if (path in gate.values) {
         props(idOf(path), { error: words });
         marked.add(path);
         unfold(path);
-      } else {
+      } else if (!page.edits.blame(path, words)) {
         homeless.push(path + ": " + words);
       }
     }
@@ -271,17 +286,13 @@
     return none();
   }
 
+  page.toast = toast;
+
   function toast(words) {
     const place = byId("toast");
     place.textContent = words;
     place.classList.add("shown");
     setTimeout(() => place.classList.remove("shown"), 4000);
-  }
-
-  /* Another electrode layout: the server keeps what both have and opens the design anew. */
-  function layout(wanted) {
-    if (!wanted || !gate.profile || wanted === gate.profile.chip.layout) return none();
-    return { ...gate.body(), layout: wanted };
   }
 
   function save(clicks) {
@@ -312,7 +323,8 @@
     if (!place || !place.closest("#inputs")) return;
     const words = place.querySelector(".mantine-InputWrapper-description, .mantine-Switch-description");
     const label = place.querySelector("label, .mantine-Switch-label");
-    if (words) byId("help").textContent = (label ? label.textContent + ": " : "") + words.textContent;
+    const name = label ? label.firstChild.textContent + ": " : ""; // a switch's help is within it
+    if (words) byId("help").textContent = name + words.textContent;
   }
 
   function clicked(event) {
@@ -323,13 +335,11 @@
       page.knobs.set("drive.frequency", page.best.frequency);
       page.knobs.set("drive.voltage", page.best.voltage);
     }
-    for (const [name, path] of [["corridor", "drive.voltage"], ["headroom", "liquid.conductivity"]]) {
-      const figure = event.target.closest && event.target.closest("#figure-" + name);
-      const place = figure && page.valueAt(figure, event);
-      if (place) {
-        page.knobs.set("drive.frequency", place.x);
-        page.knobs.set(path, place.y);
-      }
+    const figure = event.target.closest && event.target.closest("[data-sets-x]");
+    const place = figure && page.valueAt(figure, event);
+    if (place) {
+      page.knobs.set(figure.dataset.setsX, place.x);
+      page.knobs.set(figure.dataset.setsY, place.y);
     }
   }
 
@@ -337,7 +347,7 @@
     slackwater: {
       start,
       controls,
-      layout,
+      turn: page.edits.turn,
       save,
       share,
       dark,

@@ -10,7 +10,8 @@
   let names = "";
   let hand = null; // the figure over which a hand moves the probe
 
-  page.section = {
+  page.views = page.views || {};
+  page.views.section = {
     start() {
       gate.options = { show: "four", particle: 0, probe: null };
       choices(byId("section-show"));

@@ -45,6 +45,7 @@
       if (trace.fill === "tonexty") {
         parts[index - 1].fills[0].setAttribute("d", pathOf(x, y) + "L" + pathBack(before.x, before.y) + "Z");
       }
+      if (trace.fill === "toself") part.fills.forEach((fill) => fill.setAttribute("d", pathOf(x, y)));
       part.points.forEach((point, k) =>
         point.setAttribute("transform", `translate(${x[k]},${y[k]})`)
       );
@@ -66,6 +67,7 @@
       return !trace.y.some(Number.isFinite); // nothing was drawn: fine if nothing is to be
     }
     if (trace.fill === "tonexty" && !before.fills.length) return false;
+    if (trace.fill === "toself" && !part.fills.length) return !trace.y.some(Number.isFinite);
     if (has(trace, "markers") && part.points.length !== trace.x.length) return false;
     return !has(trace, "text") || part.texts.length === trace.text.length;
   }

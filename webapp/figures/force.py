@@ -7,6 +7,7 @@ import numpy as np
 from model.evaluate import Evaluation
 from model.quantity import format_quantity, format_si
 from model.verdict import format_value
+from webapp.figures.curves import legend, operating_line, particle_curves, prefixed
 from webapp.figures.theme import (
     Figure,
     Theme,
@@ -14,7 +15,6 @@ from webapp.figures.theme import (
     layout,
     log_axis,
     nice_ceiling,
-    numbers,
     particle_line,
     plain,
 )
@@ -23,39 +23,14 @@ from webapp.figures.theme import (
 def force_figure(result: Evaluation, theme: Theme) -> Figure:
     """Draw the largest force along the flow, positive towards strong field."""
     at, scale = result.spectrum, result.rms_voltage**2
-    x = numbers(at.frequency)
     forces = [scale * at.force_along_flow(particle) for particle in result.design.particles]
     most = nice_ceiling(max(float(np.abs(force).max()) for force in forces) * 1e12) * 1e-12
-    size, unit = next(item for item in _UNITS if most >= 0.999 * item[0] or item is _UNITS[-1])
+    size, unit = prefixed(most, "N")
     curves, top = [force / size for force in forces], most / size
-    few = len(curves) <= _MOST_IN_A_ROW
-    data: list[dict[str, Any]] = [
-        {
-            "type": "scatter",
-            "mode": "lines",
-            "x": x,
-            "y": numbers(curve),
-            "name": plain(particle.name if few else _short(particle.name)),
-            "line": {**particle_line(theme, index), "simplify": False},
-            "hovertemplate": f"{plain(particle.name)}<br>"
-            f"%{{y:.3~g}} {unit} at %{{x:.3~s}}Hz<extra></extra>",
-        }
-        for index, (particle, curve) in enumerate(zip(result.design.particles, curves, strict=True))
-    ]
+    reads = f"%{{y:.3~g}} {unit} at %{{x:.3~s}}Hz"
+    data = particle_curves(result.design, theme, at.frequency, curves, reads)
     data += _needs(result, theme, size)
-    frequency = result.design.drive.frequency
-    data.append(
-        {
-            "type": "scatter",
-            "mode": "lines",
-            "x": [frequency, frequency],
-            "y": [-top, top],
-            "line": {"color": theme.text, "width": 1.2, "dash": "dot"},
-            "hoverinfo": "skip",
-            "name": "operating frequency",
-            "showlegend": False,
-        }
-    )
+    data.append(operating_line(result.design, theme, (-top, top)))
     height = format_quantity(result.design.task.force_height, "um", 3)
     x_axis = log_axis(theme, "Frequency", float(at.frequency[0]), float(at.frequency[-1]), "Hz")
     y_axis = axis(
@@ -66,34 +41,8 @@ def force_figure(result: Evaluation, theme: Theme) -> Figure:
         zerolinecolor=theme.quiet,
         tickformat="~g",
     )
-    legend: dict[str, Any] = {"x": 1.01, "y": 1.0, "yanchor": "top", "font": {"size": 11}}
-    if few:
-        legend = {"orientation": "h", "x": 0, "y": 1.0, "yanchor": "bottom", "font": {"size": 12}}
-    return {
-        "data": data,
-        "layout": layout(
-            theme,
-            xaxis=x_axis,
-            yaxis=y_axis,
-            showlegend=True,
-            legend=legend,
-            margin={"l": 64, "r": 36, "t": 30 if few else 10, "b": 48},
-        ),
-    }
-
-
-#: Names of more particles than these stand beside the figure, shortened, instead of above it.
-_MOST_IN_A_ROW = 4
-_LONGEST_BESIDE = 18
-
-
-def _short(name: str) -> str:
-    """Name for a legend beside the figure; hover text has it in full."""
-    return name if len(name) <= _LONGEST_BESIDE else name[: _LONGEST_BESIDE - 1].rstrip() + "…"
-
-
-#: Units of force, the largest first, each with its size in N.
-_UNITS = ((1e-6, "µN"), (1e-9, "nN"), (1e-12, "pN"), (1e-15, "fN"))
+    names = legend(len(curves))
+    return {"data": data, "layout": layout(theme, xaxis=x_axis, yaxis=y_axis, **names)}
 
 
 def _needs(result: Evaluation, theme: Theme, size: float) -> list[dict[str, Any]]:

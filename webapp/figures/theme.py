@@ -6,6 +6,7 @@ survives grey print and colour blindness. Every limit keeps one colour in every 
 
 import base64
 import html
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -106,6 +107,16 @@ def particle_line(theme: Theme, index: int) -> dict[str, Any]:
     """Line of the particle at `index` in the design."""
     colour = theme.particles[index % len(theme.particles)]
     return {"color": colour, "dash": DASHES[index % len(DASHES)], "width": 2.5}
+
+
+def faded(colour: str, share: float) -> str:
+    """Write a colour so that it covers only a share of what lies below.
+
+    >>> faded("#0072B2", 0.16)
+    'rgba(0,114,178,0.16)'
+    """
+    parts = ",".join(str(int(colour[index : index + 2], 16)) for index in (1, 3, 5))
+    return f"rgba({parts},{share:g})"
 
 
 def plain(text: str) -> str:
@@ -237,8 +248,8 @@ def mark(theme: Theme, x: float, y: float, **more: Any) -> dict[str, Any]:
     }
 
 
-def nice_ceiling(value: float) -> float:
-    """Round up to 1, 2 or 5 times a power of ten, so that an axis rests while knobs move.
+def nice_ceiling(value: float, steps: Sequence[float] = (1.0, 2.0, 5.0)) -> float:
+    """Round up to one of `steps` times a power of ten, so that an axis rests while knobs move.
 
     >>> nice_ceiling(3.2), nice_ceiling(0.0)
     (5.0, 1.0)
@@ -246,4 +257,4 @@ def nice_ceiling(value: float) -> float:
     if value <= 0 or not np.isfinite(value):
         return 1.0
     power = 10.0 ** np.floor(np.log10(value))
-    return float(next(step * power for step in (1.0, 2.0, 5.0, 10.0) if value <= step * power))
+    return float(next(step * power for step in (*steps, 10.0) if value <= step * power))

@@ -2,7 +2,12 @@
 
 from webapp.answer import ViewPart
 from webapp.views.corridor import corridor_part
+from webapp.views.polarisation import polarisation_part
 from webapp.views.section import section_part
 
 #: What fills each view, by its name in a request.
-VIEWS: dict[str, ViewPart] = {"corridor": corridor_part, "section": section_part}
+VIEWS: dict[str, ViewPart] = {
+    "corridor": corridor_part,
+    "polarisation": polarisation_part,
+    "section": section_part,
+}

@@ -6,9 +6,15 @@ from dash import html
 from dash.development.base_component import Component
 
 
-def card(name: str, heading: str, *more: Component) -> Component:
-    """Place for the figure `name`; the browser draws into it. `more` stands beside the heading."""
+def card(
+    name: str, heading: str, *more: Component, sets: tuple[str, str] | None = None
+) -> Component:
+    """Place for the figure `name`; the browser draws into it. `more` stands beside the heading.
+
+    `sets` are the knobs that a click into the figure moves, along and up.
+    """
     place: dict[str, Any] = {
+        **({"data-sets-x": sets[0], "data-sets-y": sets[1]} if sets else {}),
         "role": "img",
         "aria-label": heading,
         "aria-describedby": f"sentence-{name}",

@@ -42,9 +42,18 @@ def corridor_view() -> Component:
     )
     return html.Div(
         [
-            card("corridor", "Voltage corridor", html.Button("Best point here", id="best-point")),
+            card(
+                "corridor",
+                "Voltage corridor",
+                html.Button("Best point here", id="best-point"),
+                sets=("drive.frequency", "drive.voltage"),
+            ),
             ledger,
-            card("headroom", "Headroom over frequency and conductivity"),
+            card(
+                "headroom",
+                "Headroom over frequency and conductivity",
+                sets=("drive.frequency", "liquid.conductivity"),
+            ),
             card("force", "Force on each particle"),
             _sensitivity(),
             card("heating", "Temperature rise"),

@@ -9,10 +9,16 @@ from dash.development.base_component import Component
 from model.design import Design
 from webapp.controls import HIDDEN, control_id
 from webapp.views.corridor import corridor_view
+from webapp.views.library import library_dialog
+from webapp.views.polarisation import polarisation_view
 from webapp.views.section import section_view
 
 #: Views in the order of their tabs: name in a request, word on the tab, what lays it out.
-TABS = (("corridor", "Corridor", corridor_view), ("section", "Section", section_view))
+TABS = (
+    ("corridor", "Corridor", corridor_view),
+    ("polarisation", "Polarisation", polarisation_view),
+    ("section", "Section", section_view),
+)
 
 #: Accent of the controls, ten shades from light to dark.
 _TEAL = [
@@ -30,7 +36,7 @@ _SLATE = [
 def page(profiles: dict[str, Design]) -> Component:
     """The whole page, empty of results; the browser then asks for what its address holds."""
     stores = [
-        dcc.Store(id=name) for name in ("address", "document", "save-request", "layout-request")
+        dcc.Store(id=name) for name in ("address", "document", "save-request", "edit-request")
     ]
     return dmc.MantineProvider(
         id="appearance",
@@ -55,6 +61,7 @@ def page(profiles: dict[str, Design]) -> Component:
                     hidden=True,
                 ),
                 html.Div(id="toast", role="status"),
+                library_dialog(),
                 _header(profiles),
                 _strip(),
                 _tabs(),
