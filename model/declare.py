@@ -349,7 +349,7 @@ def matters(part: BaseModel, declared: Declared) -> bool:
     return held == word if word else held not in (None, "")
 
 
-def counted(one: str, most: int, form: str) -> Callable[[Any], Any]:
+def counted(one: str, most: int, form: str, *, least: int = 1) -> Callable[[Any], Any]:
     """Make a check that refuses what is no list, or of a wrong length, before its items are read.
 
     Parameters
@@ -360,12 +360,14 @@ def counted(one: str, most: int, form: str) -> Callable[[Any], Any]:
         Most items.
     form
         How the list is to be written.
+    least
+        1, or 0 where the list may be empty.
     """
 
     def check(value: Any) -> Any:
         if not isinstance(value, list | tuple):
             problem = f"must be a list of {form}"
-        elif not value:
+        elif len(value) < least:
             problem = f"needs at least one {one}"
         elif len(value) > most:
             problem = f"has {len(value)} {one}s; at most {most} {one}s can be used"
