@@ -40,7 +40,10 @@ class Rule:
 
 @dataclass(frozen=True)
 class Bound:
-    """One floor or ceiling: V_rms against frequency, shape ``(..., n_frequency)``."""
+    """One floor or ceiling: V_rms against frequency, shape ``(..., n_frequency)``.
+
+    That of a condition that no voltage changes is 0 or infinite everywhere.
+    """
 
     id: str
     subject: str
@@ -48,6 +51,7 @@ class Bound:
     label: str
     sense: Sense
     rms_voltage: Real
+    condition: bool = False
 
 
 @dataclass(frozen=True)
@@ -117,6 +121,7 @@ def corridor(at: Conditions) -> Corridor:
             rule.label,
             rule.law.sense,
             np.broadcast_to(rule.law.bound(), shape),
+            rule.law.power == 0,
         )
         for rule in rules(at)
     )

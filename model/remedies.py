@@ -43,10 +43,11 @@ def remedies(result: Evaluation, row: LedgerRow) -> tuple[str, ...]:
     wanted = TIGHT if row.kept else 1.0
     aim = f"gives {TIGHT}× headroom" if row.kept else "helps"
     end = f" for {TIGHT}× headroom." if row.kept else "."
+    spectrum, liquids = result.frequency, _conductivities()
     found = (
         ("voltage", _voltage(row, wanted)),
-        ("frequency", _frequency(result, row, wanted)),
-        ("conductivity", _conductivity(result, row, wanted)),
+        (f"frequency {_ends(spectrum, 'Hz')}", _frequency(result, row, wanted)),
+        (f"conductivity {_ends(liquids, 'S/m')}", _conductivity(result, row, wanted)),
     )
     told = (f"{words}{end}" if words else f"No {knob} {aim}." for knob, words in found)
     return (*told, row.rule.words.remedy)
@@ -104,10 +105,14 @@ def _conductivity(result: Evaluation, row: LedgerRow, wanted: float) -> str:
         at = Conditions(result.design, result.patterns, frequency, conductivity[:, np.newaxis])
         return _headroom(at, row.rule, result.rms_voltage)
 
-    tried = np.geomspace(*_range(Liquid, "conductivity"), _CONDUCTIVITIES)
+    tried = _conductivities()
     own = result.design.liquid.conductivity
     kept = headroom(tried) >= wanted
     return _knob("conductivity", "S/m", own, tried, kept, headroom, wanted)
+
+
+def _conductivities() -> Real:
+    return np.geomspace(*_range(Liquid, "conductivity"), _CONDUCTIVITIES)
 
 
 def _headroom(at: Conditions, rule: Rule, rms_voltage: float) -> Real:
@@ -168,6 +173,11 @@ def _words(band: _Band, up: bool, unit: str) -> str:
         return _beyond(near, up, unit)
     far = _outward(band.far, not up, near)
     return f"to between {_shown(near, unit)} and {_shown(far, unit)}"
+
+
+def _ends(tried: Real, unit: str) -> str:
+    low, high = (format_si(float(end), unit) for end in (tried[0], tried[-1]))
+    return f"from {low} to {high}"
 
 
 def _beyond(value: float, up: bool, unit: str) -> str:

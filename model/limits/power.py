@@ -14,7 +14,7 @@ class Power(Limit):
     """P = duty · V_rms² · Re Y, Y the admittance of all phases together."""
 
     id = "power"
-    label = "power"
+    label = "electrical power"
     why = "All of it becomes heat that the holder of the chip has to take away."
     source = "Joule's law; threshold: common practice, no source"
     remedy = "Use fewer or shorter bars, or a shorter duty."

@@ -49,8 +49,10 @@ def corridor_figure(result: Evaluation, theme: Theme) -> Figure:
     ]
     binding = result.corridor.binding_ceiling()
     ceilings = result.corridor.ceilings
-    data += [_ceiling(x, shown(bound.rms_voltage), bound, theme) for bound in ceilings]
-    for index, bound in enumerate(ceilings):
+    # a condition has no curve: where it is broken nothing is shaded
+    drawn = [(index, bound) for index, bound in enumerate(ceilings) if not bound.condition]
+    data += [_ceiling(x, shown(bound.rms_voltage), bound, theme) for _, bound in drawn]
+    for index, bound in drawn:
         binds = np.where(binding == index, shown(bound.rms_voltage), np.nan)
         data.append(_binding(frequency, binds, low / _BEYOND, bound, theme))
     data.append(_floor(x, floor, result, theme))
