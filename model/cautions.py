@@ -17,11 +17,6 @@ DIPOLE_RATIO = 0.3
 NOTABLE_GROWTH = 0.1
 #: A share of the voltage lost to the double layers that is worth a note.
 NOTABLE_LOSS = 0.05
-#: Admittance of the walls over that of the liquid above which they are not negligible.
-NOTABLE_WALLS = 0.1
-#: Debye length over radius up to which a charged surface counts as thin; common practice, no
-#: source.
-THIN_LAYER = 0.1
 #: Electro-osmotic over dielectrophoretic speed that is worth a note.
 NOTABLE_SLIP = 0.1
 #: Peak voltage over the diffuse layer up to which its linear theory is a guide: some kT/e.
@@ -47,6 +42,12 @@ def cautions(result: Evaluation) -> tuple[str, ...]:
             f"The drive can reach {format_si(peak, 'V')} peak; above 42.4 V peak (30 V rms) a "
             f"voltage is commonly treated as hazardous to touch. {DEFER}"
         )
+    found += [
+        f"The limit {off.limit.label} is switched off ({off.reason}). What it keeps away can hurt "
+        f"people: {off.limit.hazard}. {DEFER}"
+        for off in result.switched_off
+        if off.limit.hazard
+    ]
     if not result.patterns.has_heat:
         return (*found, GENERAL)
     rise = result.self_consistent_rise
@@ -75,19 +76,12 @@ def notes(result: Evaluation) -> tuple[str, ...]:
                 f"{particle.name}: its radius is {radius / length:.2f} of the length over which "
                 f"E² changes; above {DIPOLE_RATIO} the point-dipole force is only a guide."
             )
-        if 2.0 * radius > design.chip.narrowest:
-            found.append(f"{particle.name} is wider than the narrowest gap between electrodes.")
-        layer = particle.diffuse_layer(result.point.medium)
-        if layer is not None and layer > THIN_LAYER * radius:
-            found.append(
-                f"{particle.name}: the diffuse layer reaches {layer / radius:.0%} of its radius; "
-                f"above {THIN_LAYER:.0%} a surface conductance no longer tells all that it does."
-            )
         if particle.must_live and result.point.membrane_gain(particle) is None:
             found.append(
                 f"{particle.name} must live but has no membrane; no membrane voltage is checked."
             )
-    return (*found, *_electrical(result), *_heat(result), *_passing(result))
+    passing = () if design.task.separates else _passing(result)
+    return (*found, *_electrical(result), *_heat(result), *passing)
 
 
 def _heat(result: Evaluation) -> Iterator[str]:
@@ -129,19 +123,13 @@ def _electrical(result: Evaluation) -> Iterator[str]:
     speed, wanted = result.electro_osmotic_speed, result.dielectrophoretic_speed
     if speed is not None and speed > NOTABLE_SLIP * wanted:
         diffuse = float(result.point.circuit.diffuse_voltage.reshape(-1)[0])
-        over = PEAK * result.rms_voltage * diffuse > LINEAR_LAYER
-        yield (
-            f"Electro-osmosis stirs the liquid at {format_si(speed, 'm/s')}, against "
-            f"{format_si(wanted, 'm/s')} of dielectrophoresis"
-            + (", which overstates it: the double layers are past their linear range." * over)
-            + "." * (not over)
-        )
-    walls = float(result.point.circuit.wall_ratio.reshape(-1)[0])
-    if walls > NOTABLE_WALLS:
-        yield (
-            f"Floor and lid carry {walls:.0%} of the liquid's current here, which is not "
-            "negligible: they draw the field aside, and its pattern leaves that out."
-        )
+        over = PEAK * result.rms_voltage * diffuse
+        if over > LINEAR_LAYER:
+            yield (
+                f"The electro-osmotic flow is overstated: {format_si(over, 'V')} peak over the "
+                f"diffuse layers is past {format_si(LINEAR_LAYER, 'V')}, up to where its linear "
+                "theory is a guide."
+            )
 
 
 def _passing(result: Evaluation) -> Iterator[str]:
@@ -150,11 +138,12 @@ def _passing(result: Evaluation) -> Iterator[str]:
         if particle.role == "pass":
             held = result.design.task.catch(result.point, particle)
             volts = float(held.bound().reshape(-1)[0]) * PEAK_TO_PEAK
+            word = result.design.task.success
             if volts <= result.design.drive.voltage:
-                yield f"{particle.name} is to pass, but is caught from {format_si(volts, 'V')} on."
+                yield f"{particle.name} is to pass, but is {word} from {format_si(volts, 'V')} on."
             elif np.isfinite(volts):
                 yield (
-                    f"{particle.name} passes here; it would be caught from "
+                    f"{particle.name} passes here; it would be {word} from "
                     f"{format_si(volts, 'V')} on. That it passes is no limit of this task."
                 )
 

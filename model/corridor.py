@@ -3,10 +3,12 @@
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from model.arrays import Real
 from model.conditions import Conditions
-from model.law import Law, Sense
+from model.law import Law, Sense, Words
+from model.limit import Limit
 from model.limits import LIMITS
 
 
@@ -14,17 +16,21 @@ from model.limits import LIMITS
 class Rule:
     """A law with the words that belong to it: the task's floor, or a limit.
 
-    `id` is the limit's id or the task's kind; `unit` that in which value and threshold are shown.
+    `id` is the limit's id or the task's kind; `unit` that in which value and threshold are shown;
+    `decisive` whether other conditions that are broken too follow from it.
     """
 
     id: str
-    label: str
-    why: str
-    source: str
-    remedy: str
+    words: Words
     unit: str
     law: Law
     symbol: str = ""
+    decisive: bool = False
+
+    @property
+    def label(self) -> str:
+        """What it is called."""
+        return self.words.label
 
     @property
     def name(self) -> str:
@@ -34,7 +40,10 @@ class Rule:
 
 @dataclass(frozen=True)
 class Bound:
-    """One floor or ceiling: V_rms against frequency, shape ``(..., n_frequency)``."""
+    """One floor or ceiling: V_rms against frequency, shape ``(..., n_frequency)``.
+
+    That of a condition that no voltage changes is 0 or infinite everywhere.
+    """
 
     id: str
     subject: str
@@ -42,6 +51,7 @@ class Bound:
     label: str
     sense: Sense
     rms_voltage: Real
+    condition: bool = False
 
 
 @dataclass(frozen=True)
@@ -56,10 +66,15 @@ class Corridor:
     floor: Real
     ceiling: Real
 
-    def binding_ceiling(self) -> "np.ndarray[tuple[int, ...], np.dtype[np.intp]]":
+    def binding_ceiling(self) -> NDArray[np.intp]:
         """Index into the ceilings (in order of `bounds`) of the lowest one at each frequency."""
-        stack = np.stack([bound.rms_voltage for bound in self.ceilings])
-        return np.asarray(stack.argmin(axis=0))
+        found = [one.rms_voltage for one in self.ceilings]
+        return np.asarray(np.argmin(found or [self.ceiling], axis=0))
+
+    def binding_floor(self) -> NDArray[np.intp]:
+        """Index into the floors of the highest one at each frequency."""
+        found = [one.rms_voltage for one in self.floors]
+        return np.asarray(np.argmax(found or [self.floor], axis=0))
 
     @property
     def ceilings(self) -> tuple[Bound, ...]:
@@ -75,19 +90,24 @@ class Corridor:
 def rules(at: Conditions, only: str = "") -> tuple[Rule, ...]:
     """Every law that the design has to keep: the task's first, then each limit's.
 
-    `only` those of one id, if it is given.
+    Those of one id if `only` is given. Limits that are switched off are left out.
     """
-    task = at.design.task
-    found = []
+    task, off = at.design.task, at.design.limits.reasons
+    found: list[Rule] = []
     if only in ("", task.kind):
-        words = (task.kind, task.label, task.why, task.source, task.remedy, task.unit)
-        found += [Rule(*words, law) for law in task.laws(at)]
+        found += [Rule(task.kind, task.words(law), task.unit, law) for law in task.laws(at)]
     for limit in LIMITS.values():
-        if only not in ("", limit.id):
-            continue
-        words = (limit.id, limit.label, limit.why, limit.source, limit.remedy, limit.unit)
-        found += [Rule(*words, law, limit.symbol) for law in limit.laws(at)]
+        if only in ("", limit.id) and limit.id not in off:
+            found += limit_rules(limit, at)
     return tuple(found)
+
+
+def limit_rules(limit: Limit, at: Conditions) -> list[Rule]:
+    """The laws of one limit, whether it is switched off or not."""
+    return [
+        Rule(limit.id, limit.words, limit.unit, law, limit.symbol, limit.decisive)
+        for law in limit.laws(at)
+    ]
 
 
 def corridor(at: Conditions) -> Corridor:
@@ -101,9 +121,12 @@ def corridor(at: Conditions) -> Corridor:
             rule.label,
             rule.law.sense,
             np.broadcast_to(rule.law.bound(), shape),
+            rule.law.power == 0,
         )
         for rule in rules(at)
     )
     floors = [bound.rms_voltage for bound in bounds if bound.sense == "least"]
     ceilings = [bound.rms_voltage for bound in bounds if bound.sense == "most"]
-    return Corridor(at.frequency, bounds, np.max(floors, axis=0), np.min(ceilings, axis=0))
+    floor = np.max([np.zeros(shape), *floors], axis=0)
+    ceiling = np.min([np.full(shape, np.inf), *ceilings], axis=0)
+    return Corridor(at.frequency, bounds, floor, ceiling)

@@ -349,7 +349,7 @@ def matters(part: BaseModel, declared: Declared) -> bool:
     return held == word if word else held not in (None, "")
 
 
-def counted(one: str, most: int, form: str, least: int = 1) -> Callable[[Any], Any]:
+def counted(one: str, most: int, form: str, *, least: int = 1) -> Callable[[Any], Any]:
     """Make a check that refuses what is no list, or of a wrong length, before its items are read.
 
     Parameters
@@ -361,7 +361,7 @@ def counted(one: str, most: int, form: str, least: int = 1) -> Callable[[Any], A
     form
         How the list is to be written.
     least
-        1, or 0 for a list that may be empty.
+        1, or 0 where the list may be empty.
     """
 
     def check(value: Any) -> Any:

@@ -2,15 +2,14 @@
 
 from collections import Counter
 from collections.abc import Iterable
-from typing import TYPE_CHECKING, Annotated, Any, Literal
+from typing import Annotated, Literal
 
-from pydantic import BeforeValidator, ConfigDict, Field, create_model, model_validator
+from pydantic import BeforeValidator, ConfigDict, Field, model_validator
 
 from model.declare import Choice, Part, Quantity, Text, counted, misfit
 from model.electrode import Electrode
 from model.layout import Layout
 from model.layouts import LAYOUTS
-from model.limits import LIMITS
 from model.liquid.liquid import Liquid
 from model.particle import Particle
 from model.particles import PARTICLES
@@ -18,6 +17,7 @@ from model.quantity import format_quantity
 from model.registry import OneOf
 from model.task import Task
 from model.tasks import TASKS
+from model.thresholds import Limits
 
 #: Most populations in one design.
 MOST_PARTICLES = 12
@@ -112,19 +112,6 @@ class Flow(Part):
     ] = 0.0
 
 
-_thresholds: dict[str, Any] = {
-    name: (Annotated[float, limit.threshold], limit.default)
-    for name, limit in LIMITS.items()
-    if limit.threshold is not None
-}
-if TYPE_CHECKING:
-
-    class Limits(Part):
-        """Thresholds of all limits that have one of their own, keyed by the limit's id."""
-else:
-    Limits = create_model("Limits", __base__=Part, **_thresholds)
-
-
 class Design(Part):
     """A whole design: task, chip, liquid, drive, flow, particles and limits."""
 
@@ -152,6 +139,11 @@ class Design(Part):
         """Particles that the task must succeed for."""
         return tuple(particle for particle in self.particles if particle.role == "collect")
 
+    @property
+    def involved(self) -> tuple[Particle, ...]:
+        """Particles that the task is about: collected, or to pass; not those only watched."""
+        return tuple(particle for particle in self.particles if particle.role != "watch")
+
     def threshold(self, limit: str) -> float:
         """Threshold of a limit in SI."""
         return float(getattr(self.limits, limit))
@@ -172,6 +164,7 @@ def _misfits(design: Design) -> Iterable[tuple[str, str]]:
             yield f"particle.{index}.name", f"“{particle.name}” is the name of two particles"
     if not design.collected:
         yield "particle.0.role", "at least one particle must have the role collect"
+    yield from design.task.misfits(design)
     if design.chip.floor.outside == design.chip.lid.outside == "insulated":
         yield "chip.lid.outside", "must let heat out when the floor is insulated"
     height, channel = design.task.force_height, design.chip.height

@@ -1,20 +1,23 @@
 """Evaluate a design on its chip's patterns: operating point, ledger, verdict, corridor."""
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Literal
 
 import numpy as np
 
 from model.arrays import Real
 from model.conditions import Conditions
-from model.corridor import Corridor, Rule, corridor, rules
+from model.corridor import Corridor, Rule, corridor, limit_rules, rules
 from model.crossovers import Crossover, particle_crossovers
 from model.design import Design
 from model.errors import DesignError, FieldError
 from model.fields.patterns import ChipPatterns
 from model.generator import displayed
 from model.growth import self_consistent
+from model.limit import Limit
+from model.limits import LIMITS
 from model.particle import Particle
 from model.quantity import format_quantity
 from model.voltage import PEAK, PEAK_TO_PEAK
@@ -22,6 +25,8 @@ from model.warming import chip_warm_up
 
 #: Frequencies of a corridor unless others are asked for, Hz; widened to hold the design's own.
 LOWEST, HIGHEST, POINTS = 1e3, 1e8, 400
+#: Headroom below which a rule that is kept counts as tight; common practice, no source.
+TIGHT = 1.2
 
 
 @dataclass(frozen=True)
@@ -44,13 +49,29 @@ class LedgerRow:
         """Whether the rule is kept at the operating point."""
         return self.headroom >= 1.0
 
+    @property
+    def state(self) -> Literal["broken", "tight", "kept"]:
+        """How well the rule is kept."""
+        if not self.kept:
+            return "broken"
+        return "tight" if self.headroom < TIGHT else "kept"
+
+
+@dataclass(frozen=True)
+class SwitchedOffLimit:
+    """A limit that does not count, the reason, and what it would say here, the worst first."""
+
+    limit: Limit
+    reason: str
+    rows: tuple[LedgerRow, ...]
+
 
 @dataclass(frozen=True)
 class ParticleResult:
     """One population at the operating point.
 
-    `force` is the largest along the flow over one period at the force height, N, positive
-    towards strong field; `membrane_voltage` the peak at the strongest field it has to endure,
+    `force` is the one that the task is about (:meth:`model.task.Task.force`), N, with its sign;
+    `membrane_voltage` the peak at the strongest field it has to endure,
     None without a membrane.
     """
 
@@ -134,19 +155,30 @@ class Evaluation:
     def ledger(self) -> tuple[LedgerRow, ...]:
         """Every rule at the operating point, the one with least headroom first.
 
-        Of equal ones a condition that no voltage changes comes first: it is the reason why the
-        others cannot be kept.
+        Of equal ones a condition that no voltage changes comes first, a decisive one before the
+        rest: it is the reason why the others cannot be kept.
         """
-        rows = [self._row(rule) for rule in rules(self.point)]
-        return tuple(sorted(rows, key=lambda row: (row.headroom, row.rule.law.power)))
+        return self._rows(rules(self.point))
+
+    @cached_property
+    def switched_off(self) -> tuple[SwitchedOffLimit, ...]:
+        """Limits that the design switches off; they count nowhere."""
+        found = []
+        for name, reason in self.design.limits.reasons.items():
+            rows = self._rows(limit_rules(LIMITS[name], self.point))
+            found.append(SwitchedOffLimit(LIMITS[name], reason, rows))
+        return tuple(found)
+
+    def _rows(self, found: Iterable[Rule]) -> tuple[LedgerRow, ...]:
+        rows = map(self._row, found)
+        return tuple(
+            sorted(rows, key=lambda row: (row.headroom, row.rule.law.power, not row.rule.decisive))
+        )
 
     def _row(self, rule: Rule) -> LedgerRow:
         voltage, law = self.rms_voltage, rule.law
         bound = float(law.bound().reshape(-1)[0])
-        if law.sense == "most":
-            headroom = bound / voltage
-        else:
-            headroom = voltage / bound if bound > 0 else np.inf
+        headroom = float(law.headroom(voltage).reshape(-1)[0])
         value = float(law.value(voltage).reshape(-1)[0])
         return LedgerRow(rule, value, law.allowed, bound * PEAK_TO_PEAK, headroom)
 
@@ -189,7 +221,7 @@ class Evaluation:
         membrane = None
         if gain is not None:
             membrane = float((gain * at.exposure(particle))[0]) * PEAK * voltage
-        force = float(at.force_along_flow(particle)[0]) * voltage**2
+        force = float(self.design.task.force(at, particle)[0]) * voltage**2
         return ParticleResult(particle, complex(at.polarisation(particle)[0]), force, membrane)
 
     def crossovers(self, particle: Particle) -> tuple[Crossover, ...]:

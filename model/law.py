@@ -13,6 +13,19 @@ Sense = Literal["most", "least"]
 
 
 @dataclass(frozen=True)
+class Words:
+    """What is told of a law: its name, why it matters, where it is from, and what else to change.
+
+    `remedy` is about what is neither frequency, conductivity nor voltage.
+    """
+
+    label: str
+    why: str
+    source: str
+    remedy: str
+
+
+@dataclass(frozen=True)
 class Law:
     """value = offset + coefficient · V_rms^power, to be at most or at least `allowed`.
 
@@ -72,3 +85,15 @@ class Law:
             voltage = (room / slope) ** (1.0 / self.power)
         # 0/0: no slope and no room. Nothing is asked of a floor, nothing is left of a ceiling.
         return np.where(np.isnan(voltage), 0.0, voltage)
+
+    def headroom(self, rms_voltage: ArrayLike) -> Real:
+        """Factor between the voltage and the bound, at least 1 where the law is kept.
+
+        Bound over voltage for ``most``, voltage over bound for ``least``; infinite where no
+        voltage breaks the law.
+        """
+        voltage, bound = np.asarray(rms_voltage, dtype=float), self.bound()
+        if self.sense == "most":
+            return np.asarray(bound / voltage)
+        with np.errstate(divide="ignore"):
+            return np.asarray(voltage / bound)

@@ -174,10 +174,6 @@ class Particle(Part, ABC):
         """Share c in the rate of spinning −c·(ε_m/η)·Im K·E²; ½ for a sphere."""
         return 0.5
 
-    def diffuse_layer(self, medium: Medium) -> float | None:
-        """Debye length, m, of a particle whose surface is told by its charge; None of others."""
-        return None
-
     def alignment(self, medium: Medium, sample: Sample = MEDIAN) -> Alignment | None:
         """How the particle lies in the field; None if it does not matter or is left to chance."""
         return None

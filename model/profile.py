@@ -170,7 +170,7 @@ def part_document(part: BaseModel) -> dict[str, Any]:
         elif isinstance(value, BaseModel):
             value = part_document(value)
         elif isinstance(value, tuple):
-            value = [part_document(item) for item in value]
+            value = [part_document(item) for item in value] or None
         if value is not None:
             data[key] = value
     return data

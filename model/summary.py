@@ -12,13 +12,14 @@ from model.alignment import alignment_energy, alignment_ranges, alignment_words
 from model.arrays import Real
 from model.cautions import cautions, notes, rms_and_peak
 from model.design import Design
-from model.evaluate import Evaluation, LedgerRow, ParticleResult
+from model.evaluate import Evaluation, LedgerRow, ParticleResult, SwitchedOffLimit
 from model.fields.patterns import UNKNOWN_HEAT
 from model.liquid.mixed import mixed
 from model.profile import fingerprint
 from model.quantity import format_quantity, format_si, to_unit
 from model.recipe_words import liquid_object, mixed_words, portion_cells
-from model.verdict import format_value, format_volts, row_headroom, row_value, verdict
+from model.remedies import remedies
+from model.verdict import format_volts, row_allowed, row_headroom, row_value, verdict
 from model.version import VERSION
 
 #: Péclet number below which the flow's share of the heat, about as large, is not worth a number.
@@ -50,8 +51,13 @@ def check_object(result: Evaluation) -> dict[str, Any]:
             "share_of_voltage": abs(result.share),
         },
         "generator_display_Vpp": result.generator_display,
+        "task": {
+            "kind": result.design.task.kind,
+            "statements": list(result.design.task.statements(result.point)),
+        },
         "particles": [_particle(result, found) for found in result.particles],
-        "limits": [_limit(row) for row in result.ledger],
+        "limits": [{**_limit(row), **_remedies(result, row)} for row in result.ledger],
+        "limits_off": [_switched_off(off) for off in result.switched_off],
         "notes": list(notes(result)),
         "cautions": list(cautions(result)),
     }
@@ -96,6 +102,21 @@ def _limit(row: LedgerRow) -> dict[str, Any]:
         "sense": row.rule.law.sense,
         "unit": unit,
         **_finite("headroom", row.headroom, "no voltage breaks it"),
+    }
+
+
+def _remedies(result: Evaluation, row: LedgerRow) -> dict[str, Any]:
+    """What would keep a rule that is broken or tight."""
+    found = remedies(result, row)
+    return {"remedies": list(found)} if found else {}
+
+
+def _switched_off(off: SwitchedOffLimit) -> dict[str, Any]:
+    """A limit that does not count, and what it would say."""
+    return {
+        "id": off.limit.id,
+        "reason": off.reason,
+        "limits": [_limit(row) for row in off.rows],
     }
 
 
@@ -144,22 +165,19 @@ def check_text(result: Evaluation) -> str:
         f"  chip: {format_si(load.rms_current, 'A')} rms, {format_si(load.power, 'W')}",
         f"  generator: {generator_words(result)}",
         *_heat(result),
+        *(f"  {design.task.kind}: {words}" for words in design.task.statements(result.point)),
         *_recipe(design),
         "",
         *_table(
             ("limit", "value", "allowed", "headroom"),
             [
-                (
-                    row.rule.name,
-                    row_value(row),
-                    ("≥ " if row.rule.law.sense == "least" else "≤ ")
-                    + format_value(row.allowed, row.rule.unit),
-                    row_headroom(row),
-                )
+                (row.rule.name, row_value(row), row_allowed(row), row_headroom(row))
                 for row in result.ledger
             ],
         ),
+        *_off(result),
         "",
+        *_advice(result),
         *_table(
             ("particle", "Re K", "force", "membrane, peak", "crossovers"),
             [_particle_row(result, item) for item in result.particles],
@@ -183,6 +201,23 @@ def _recipe(design: Design) -> list[str]:
     rows = [portion_cells(portion) for portion in found.portions]
     words = [mixed_words(found), *found.notes, *([found.caution] if found.caution else [])]
     return ["", *_table(head, rows), *(f"  {line}" for line in words)]
+
+
+def _off(result: Evaluation) -> list[str]:
+    """Limits that are switched off, with what they would say and why they do not count."""
+    lines = []
+    for off in result.switched_off:
+        found = [f"{row_value(row)}, {row_allowed(row)} if it counted" for row in off.rows[:1]]
+        lines.append(f"  off: {off.limit.label}{''.join(f' ({words})' for words in found)}")
+        lines.append(f"    {off.reason}")
+    return lines
+
+
+def _advice(result: Evaluation) -> list[str]:
+    """What would keep each rule that is broken or tight."""
+    found = [(row.rule.name, remedies(result, row)) for row in result.ledger]
+    lines = [f"  {name}: {' '.join(words)}" for name, words in found if words]
+    return ["  to change, one at a time:", *lines, ""] if lines else []
 
 
 def _heat(result: Evaluation) -> list[str]:

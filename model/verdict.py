@@ -1,6 +1,7 @@
 """The verdict in words: inside or outside, what binds, and by how much."""
 
 import math
+import re
 from dataclasses import dataclass
 
 from model.evaluate import Evaluation, LedgerRow
@@ -34,6 +35,12 @@ def verdict(result: Evaluation) -> Verdict:
             False,
             "No voltage does the task",
             f"at {frequency}, because of {culprit.rule.name}",
+        )
+    if binding.rule.law.power == 0:
+        return Verdict(
+            False,
+            "Outside at any voltage",
+            f"at {frequency}, because of {binding.rule.name}",
         )
     if floor is not None and ceiling is not None and floor.bound_pp > ceiling.bound_pp:
         return Verdict(
@@ -69,15 +76,34 @@ def format_headroom(headroom: float) -> str:
 
 
 def format_value(value: float, unit: str) -> str:
-    """Write a ledger value or threshold in its unit to three digits."""
+    """Write a ledger value or threshold in its unit to three digits.
+
+    >>> format_value(2.57e8, ""), format_value(0.3, "V")
+    ('2.57·10⁸', '0.3 V')
+    """
     if value in (float("inf"), float("-inf")):
         return "beyond measure"
-    return format_quantity(value, unit, 3)
+    return _POWER_OF_TEN.sub(_raised, format_quantity(value, unit, 3))
+
+
+_POWER_OF_TEN = re.compile(r"e([+-]\d+)")
+_RAISED = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
+
+
+def _raised(found: re.Match[str]) -> str:
+    """Spell an exponent as people write it."""
+    return "·10" + str(int(found[1])).translate(_RAISED)
 
 
 def row_value(row: LedgerRow) -> str:
     """Write a row's value, with what it is where its label does not say so."""
     return f"{row.rule.symbol} {format_value(row.value, row.rule.unit)}".strip()
+
+
+def row_allowed(row: LedgerRow) -> str:
+    """Write what a row allows, with a sign for at least or at most."""
+    sign = "≥" if row.rule.law.sense == "least" else "≤"
+    return f"{sign} {format_value(row.allowed, row.rule.unit)}"
 
 
 def row_headroom(row: LedgerRow) -> str:

@@ -27,7 +27,8 @@ class DoubleLayerVoltage(Limit):
         "electrolysis of water needs 1.23 V between two electrodes at rest, thermodynamics; a fast "
         "drive reverses before products leave and allows more: common practice, no source"
     )
-    remedy = "Raise the frequency, lower the voltage or the conductivity, or cover the electrodes."
+    remedy = "Cover the electrodes with a film, or use rough, porous metal."
+    hazard = "electrolysis makes gas that can burn, burst a bond and change what the liquid is"
     unit = "V"
     threshold = Quantity(
         "Double-layer voltage, peak",

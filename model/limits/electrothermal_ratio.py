@@ -27,7 +27,7 @@ class ElectrothermalRatio(Limit):
         "Ramos et al. 1998 J. Phys. D 31:2338; Castellanos et al. 2003 J. Phys. D 36:2584; "
         "threshold: common practice, no source"
     )
-    remedy = "Lower the conductivity or the voltage, or work where the polarisation is stronger."
+    remedy = "Work nearer to the electrodes, or with larger particles."
     unit = ""
     threshold = Quantity(
         "Electrothermal ratio",

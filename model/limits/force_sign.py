@@ -17,8 +17,10 @@ class ForceSign(Limit):
     symbol = "Re K"
     why = "With the wrong sign the particle is pushed away from where it should be collected."
     source = "sign of the Clausius–Mossotti factor, Jones 1995, Electromechanics of Particles"
-    remedy = "Move the frequency or the conductivity to the other side of the crossover."
+    remedy = "Give the task the other sign of dielectrophoresis."
     unit = ""
+    condition = True
+    decisive = True
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:
         """One condition for each collected particle that the task needs a sign of."""

@@ -18,7 +18,8 @@ class GeneratorCurrent(Limit):
     label = "generator current"
     why = "An overloaded generator distorts, folds back or shuts down."
     source = "Ohm's law; the limit stands in Drive"
-    remedy = "Use fewer or shorter bars, a lower conductivity, or an amplifier."
+    remedy = "Use fewer or shorter bars, or an amplifier."
+    hazard = "an overloaded generator and its leads can overheat"
     unit = "mA"
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:

@@ -21,7 +21,8 @@ class GeneratorVoltage(Limit):
     label = "generator voltage"
     why = "The generator cannot give more; the chip also divides its voltage with the source."
     source = "Thévenin source; the limit stands in Drive"
-    remedy = "Use fewer or shorter bars, a lower conductivity, or an amplifier."
+    remedy = "Use fewer or shorter bars, or an amplifier."
+    hazard = "an overdriven or stronger generator can bring voltages that are hazardous to touch"
     unit = "V"
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:

@@ -17,7 +17,8 @@ class HighestTemperature(Limit):
     label = "highest temperature"
     why = "Above body temperature mammalian cells are stressed; other samples have their own bound."
     source = "37 °C: common practice for mammalian cells, no source; set your organism's own"
-    remedy = "Cool the stage, or lower the voltage or the conductivity."
+    remedy = "Cool the stage, or the floor better."
+    hazard = "hot liquid burns, boils and bursts bonds"
     unit = "degC"
     threshold = Quantity(
         "Highest temperature",

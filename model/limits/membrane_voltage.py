@@ -26,7 +26,7 @@ class MembraneVoltage(Limit):
         "pores from 0.2 V (long exposure) to 1 V (microseconds): Teissié and Rols 1993 "
         "Biophys. J. 65:409, Weaver and Chizmadzhev 1996, from memory"
     )
-    remedy = "Raise the frequency, lower the voltage, or keep the cells farther from the edges."
+    remedy = "Keep the cells farther from the edges."
     unit = "V"
     threshold = Quantity(
         "Membrane voltage, peak",

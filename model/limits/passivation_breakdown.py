@@ -17,7 +17,7 @@ class PassivationBreakdown(Limit):
     label = "film breakdown"
     why = "A film that breaks down is pierced for good, and bare metal meets the liquid."
     source = "field across a thin film; its strength stands with the electrodes"
-    remedy = "Use a thicker or stronger film, raise the frequency, or lower the voltage."
+    remedy = "Use a thicker or stronger film."
     unit = "V/um"
 
     def laws(self, at: "Conditions") -> tuple[Law, ...]:

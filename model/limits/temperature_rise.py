@@ -24,7 +24,8 @@ class TemperatureRise(Limit):
     source = (
         "Joule heating, Ramos et al. 1998 J. Phys. D 31:2338; threshold: common practice, no source"
     )
-    remedy = "Lower the voltage or the conductivity, or cool the floor better."
+    remedy = "Cool the floor better: held, thinner, or of a material that conducts heat better."
+    hazard = "hot liquid burns, boils and bursts bonds"
     unit = "K"
     threshold = Quantity(
         "Temperature rise",

@@ -96,12 +96,6 @@ class SolidSphere(Particle, Material):
         )
         return np.asarray(diffuse + self.stern_conductance)
 
-    def diffuse_layer(self, medium: Medium) -> float | None:
-        """Debye length of the medium, m, if the surface follows from its zeta potential."""
-        if self.surface == "conductance":
-            return None
-        return float(medium.electrolyte.debye_length(medium.permittivity).max())
-
     def surface_share(self, medium: Medium, size: ArrayLike = 1.0) -> Real:
         """2K_s/a, what the surface adds to the conductivity of the bulk, S/m.
 

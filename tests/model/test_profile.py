@@ -108,7 +108,7 @@ BAD_VALUES = {
     "an unknown key": ("chip.gapp", "40 um", "is gap meant?"),
     "an unknown key of a layer": ("particle.0.layers.0.thicknes", "8 nm", "is thickness meant?"),
     "an unknown key of a membrane": ("particle.0.layers.0.capacitanc", 1, "capacitance meant?"),
-    "an unknown kind": ("task.kind", "juggle", "one of hold"),
+    "an unknown kind": ("task.kind", "juggle", "one of deflect, hold"),
     "an unknown particle": ("particle.0.kind", "cube", "one of"),
     "an unknown layout": ("chip.layout", ["x"], "one of"),
     "no table": ("drive", 3, "table"),

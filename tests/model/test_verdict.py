@@ -1,4 +1,4 @@
-"""The verdict in words, in each of the five places that a design can be in."""
+"""The verdict in words, in each of the places that a design can be in."""
 
 import math
 import re
@@ -80,8 +80,15 @@ def test_a_force_too_small_for_any_voltage(yeast, patterns, vary):
 def test_a_stage_above_the_limit(yeast, patterns, vary):
     changes = {"liquid.temperature": "31 degC", "flow.rate": "0 uL/min"}
     found = verdict_on(yeast, patterns, vary, changes)
-    assert found.headline == "Above the corridor"
-    assert found.sentence == "highest temperature allows at most 0 V"
+    assert found.headline == "No corridor at 1 MHz"
+    assert "but highest temperature allows at most 0 V" in found.sentence
+
+
+def test_a_condition_that_no_voltage_changes(yeast, patterns, vary):
+    found = verdict_on(yeast, patterns, vary, {"limits.wall_admittance": 0.001})
+    assert not found.inside
+    assert found.headline == "Outside at any voltage"
+    assert found.sentence == "at 1 MHz, because of current in the walls"
 
 
 def test_the_verdict_agrees_with_the_evaluation_everywhere(yeast, patterns, vary):
@@ -114,6 +121,11 @@ def test_headroom_at_the_edge():
     assert format_headroom(math.nextafter(1.0, 0.0)) == "0.99×"
     assert format_headroom(1.0) == "1.00×"
     assert format_headroom(math.inf) == "any voltage"
+
+
+def test_large_values_have_words_without_letters():
+    assert format_value(2.57e8, "") == "2.57·10⁸"
+    assert format_value(1e-12, "") == "1·10⁻¹²"
 
 
 def test_values_out_of_all_bounds_have_words():

@@ -42,7 +42,7 @@
     set(row, "b", values.label);
     set(row, ".row-headroom", values.headroom);
     set(row, ".row-value", (values.subject ? values.subject + ": " : "") + values.value + ", " + values.allowed);
-    set(row, ".row-state", { broken: "broken", tight: "tight", kept: "kept" }[values.state]);
+    set(row, ".row-state", values.state);
     set(row, ".row-bound", "Voltage: " + values.bound + ".");
     set(row, ".row-why", values.why);
     set(row, ".row-remedy", values.remedy);

@@ -49,8 +49,10 @@ def corridor_figure(result: Evaluation, theme: Theme) -> Figure:
     ]
     binding = result.corridor.binding_ceiling()
     ceilings = result.corridor.ceilings
-    data += [_ceiling(x, shown(bound.rms_voltage), bound, theme) for bound in ceilings]
-    for index, bound in enumerate(ceilings):
+    # a condition has no curve: where it is broken nothing is shaded
+    drawn = [(index, bound) for index, bound in enumerate(ceilings) if not bound.condition]
+    data += [_ceiling(x, shown(bound.rms_voltage), bound, theme) for _, bound in drawn]
+    for index, bound in drawn:
         binds = np.where(binding == index, shown(bound.rms_voltage), np.nan)
         data.append(_binding(frequency, binds, low / _BEYOND, bound, theme))
     data.append(_floor(x, floor, result, theme))
@@ -180,7 +182,7 @@ def _labels(
     heights = [_fraction(volts, low, high) for volts in (floor, *ceilings)]
     binding, task = corridor.binding_ceiling(), result.design.task
     wishes = [
-        Wish(f"floor: {task.label}", task.kind, x[run], heights[0][run], above=False)
+        Wish(f"floor: {_floor_label(result, run)}", task.kind, x[run], heights[0][run], above=False)
         for run in _longest((heights[0] > 0.0) & (heights[0] < 1.0))
     ]
     binds, idle = [], []
@@ -203,6 +205,13 @@ def _labels(
     ring = _fraction(np.array([drive.frequency]), *span) + _RING[0] / WIDTH
     level = _fraction(np.array([drive.voltage]), low, high) + _RING[1] / HEIGHT
     return place_labels(wishes, [(ring, level), *((x, height) for height in heights)])
+
+
+def _floor_label(result: Evaluation, run: slice) -> str:
+    """What sets the floor over most of a stretch."""
+    corridor = result.corridor
+    counts = np.bincount(corridor.binding_floor()[run])
+    return corridor.floors[int(counts.argmax())].label
 
 
 def _span(wish: Wish) -> float:

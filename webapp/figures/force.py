@@ -21,9 +21,10 @@ from webapp.figures.theme import (
 
 
 def force_figure(result: Evaluation, theme: Theme) -> Figure:
-    """Draw the largest force along the flow, positive towards strong field."""
+    """Draw the force that the task is about, with its sign."""
     at, scale = result.spectrum, result.rms_voltage**2
-    forces = [scale * at.force_along_flow(particle) for particle in result.design.particles]
+    task = result.design.task
+    forces = [scale * task.force(at, particle) for particle in result.design.particles]
     most = nice_ceiling(max(float(np.abs(force).max()) for force in forces) * 1e12) * 1e-12
     size, unit = prefixed(most, "N")
     curves, top = [force / size for force in forces], most / size
@@ -51,7 +52,7 @@ def _needs(result: Evaluation, theme: Theme, size: float) -> list[dict[str, Any]
     needed = {
         row.rule.law.subject: row
         for row in result.ledger
-        if row.rule.id == result.design.task.kind and row.rule.law.power
+        if row.rule.id == result.design.task.kind and row.rule.law.sense == "least"
     }
     found = []
     for index, particle in enumerate(result.design.particles):
@@ -80,9 +81,10 @@ def _needs(result: Evaluation, theme: Theme, size: float) -> list[dict[str, Any]
 
 def force_sentence(result: Evaluation) -> str:
     """Say which way each particle goes at the operating point."""
-    pieces = []
+    pieces, task = [], result.design.task
     for found in result.particles:
-        way = "towards strong field" if found.force > 0 else "towards weak field"
+        way = task.directions[0 if found.force > 0 else 1]
         size = f"{format_si(abs(found.force), 'N')} {way}" if found.force else "no force"
         pieces.append(f"{found.particle.name}: {size}")
-    return "Largest along the flow now, dotted what is needed. " + "; ".join(pieces) + "."
+    name = task.force_name[:1].upper() + task.force_name[1:]
+    return f"{name} now, dotted what is needed. " + "; ".join(pieces) + "."

@@ -2,14 +2,18 @@
 
 from typing import Any
 
-from model.evaluate import Evaluation, LedgerRow
+from model.evaluate import Evaluation, LedgerRow, SwitchedOffLimit
 from model.verdict import MOST_VOLTAGE, format_value, format_volts, row_headroom, row_value
 from webapp.figures.theme import Theme, limit_colour
 
 
 def ledger_rows(result: Evaluation, theme: Theme) -> list[dict[str, Any]]:
-    """Every rule with value, allowed, headroom, why and source, as text to show."""
-    return [_row(row, theme) for row in result.ledger]
+    """Every rule with value, allowed, headroom, why and source, as text to show.
+
+    Limits that are switched off stand at the end.
+    """
+    rows = [_row(row, theme) for row in result.ledger]
+    return [*rows, *(_off(off, theme) for off in result.switched_off)]
 
 
 def _row(row: LedgerRow, theme: Theme) -> dict[str, Any]:
@@ -24,11 +28,37 @@ def _row(row: LedgerRow, theme: Theme) -> dict[str, Any]:
         "bound": _bound(row),
         "headroom": row_headroom(row),
         "fill": _fill(row.headroom),
-        "state": "broken" if not row.kept else ("tight" if row.headroom < 1.2 else "kept"),
+        "state": row.state,
         "colour": limit_colour(theme, row.rule.id),
-        "why": row.rule.why,
-        "remedy": row.rule.remedy,
-        "source": row.rule.source,
+        "why": row.rule.words.why,
+        "remedy": row.rule.words.remedy,
+        "source": row.rule.words.source,
+    }
+
+
+def _off(off: SwitchedOffLimit, theme: Theme) -> dict[str, Any]:
+    """A limit that does not count: what its worst law would say, and the reason."""
+    limit = off.limit
+    row = {
+        "label": limit.label,
+        "subject": "",
+        "value": "nothing to check here",
+        "allowed": "does not count",
+        "bound": "bounds none",
+        "colour": limit_colour(theme, limit.id),
+        "remedy": limit.remedy,
+        "source": limit.source,
+    }
+    if off.rows:
+        row |= _row(off.rows[0], theme)
+        row["allowed"] = f"{row['allowed']} if it counted"
+    row["key"] = f"off/{limit.id}"
+    return {
+        **row,
+        "headroom": "off",
+        "fill": 0.0,
+        "state": "off",
+        "why": f"Switched off: {off.reason}",
     }
 
 

@@ -93,14 +93,21 @@ THEMES = {
         warmth=("#17191f", "#43201a", "#85351a", "#cc6527", "#f2a75c", "#fdebcb"),
     ),
 }
+#: Limits that draw a curve, in the order of their colours.
+_DRAWN = [name for name, limit in LIMITS.items() if not limit.condition]
 DASHES = ("solid", "dash", "dot", "dashdot", "longdash", "longdashdot")
 
 
 def limit_colour(theme: Theme, limit: str) -> str:
-    """Colour of a limit, the same everywhere; the accent for the task's own floor."""
+    """Colour of a limit, the same everywhere; the accent for the task's own floor.
+
+    Conditions that no voltage changes draw no curve and share the quiet colour.
+    """
     if limit not in LIMITS:
         return theme.accent
-    return theme.limits[list(LIMITS).index(limit) % len(theme.limits)]
+    if limit not in _DRAWN:
+        return theme.quiet
+    return theme.limits[_DRAWN.index(limit) % len(theme.limits)]
 
 
 def particle_line(theme: Theme, index: int) -> dict[str, Any]:
