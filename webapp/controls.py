@@ -24,7 +24,7 @@ from model.layout import FlatChannel, Layout
 from model.particle import Particle
 from model.quantity import format_quantity
 from webapp.edit_buttons import add_buttons, item_buttons, kind_choice, part_button
-from webapp.edits import OPTIONAL
+from webapp.edits import OPTIONAL, listed
 from webapp.figures.theme import DASHES
 from webapp.recipe_card import recipe_place
 
@@ -82,8 +82,8 @@ def inner_parts(part: BaseModel, path: str) -> Iterator[tuple[str, str, BaseMode
         if isinstance(value, BaseModel):
             yield _join(path, key), key.replace("_", " ").capitalize(), value
         for index, item in enumerate(lists.get(key, ())):
-            heading = f"{key.removesuffix('s').capitalize()} {index + 1}"
-            yield f"{_join(path, key)}.{index}", heading, item
+            place = _join(path, key)
+            yield f"{place}.{index}", f"{listed(place).one.capitalize()} {index + 1}", item
 
 
 def _join(path: str, key: str) -> str:
@@ -100,7 +100,11 @@ def all_fields(part: BaseModel, path: str = "") -> Iterator[Field]:
 def inputs_panel(design: Design) -> list[Component]:
     """Every section of the inputs, folded by part."""
     sections = [
-        ("task", "Task", [*_question(design), *part_controls(design.task, "task")]),
+        (
+            "task",
+            "Task",
+            [*_question(design), _task(design), *part_controls(design.task, "task")],
+        ),
         (
             "chip",
             "Chip",
@@ -276,6 +280,12 @@ def help_text(declared: Declared) -> str:
 def _question(design: Design) -> list[Component]:
     questions = [field for field in fields(design, "") if field.path == "question"]
     return [html.Div([control(field) for field in questions], className="fields")]
+
+
+def _task(design: Design) -> Component:
+    """Choice of the task."""
+    words = "What the chip is to do; fields that both tasks have keep their values."
+    return html.Div(kind_choice("task", "Task", words, design.task.kind), className="fields")
 
 
 def _layout(design: Design) -> Component:

@@ -10,7 +10,7 @@ import dash_mantine_components as dmc
 from dash import html
 from dash.development.base_component import Component
 
-from webapp.edits import KINDS, Listed, listed
+from webapp.edits import Listed, kinds_of, listed
 
 
 def item_buttons(path: str, count: int) -> Component:
@@ -66,12 +66,11 @@ def _library_button(reason: str) -> Component:
 
 def kind_choice(path: str, label: str, words: str, value: str) -> Component:
     """Choice of the kind of a part; another one has other fields, so that it opens anew."""
-    _, kinds = KINDS["chip" if path == "chip" else "particle.*"]
     return dmc.Select(
         id={"turn": path.replace(".", "/")},
         label=label,
         description=words,
-        data=[{"value": name, "label": name.replace("-", " ")} for name in kinds],
+        data=[{"value": name, "label": name.replace("-", " ")} for name in kinds_of(path)],
         value=value,
         allowDeselect=False,
         checkIconPosition="right",

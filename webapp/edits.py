@@ -17,8 +17,10 @@ from model.declare import FROM_PERSON
 from model.design import MOST_PARTICLES, Design
 from model.layers import MOST_LAYERS, NEW_LAYERS
 from model.layouts import LAYOUTS
+from model.limits import LIMITS
 from model.liquid.recipe import MOST_INGREDIENTS, NEW_INGREDIENT
 from model.particles import PARTICLES
+from model.tasks import TASKS
 from webapp.state import BadRequestError, Opened, filled, open_document, read_request
 
 Tables = Mapping[str, Mapping[str, Any]]
@@ -41,6 +43,9 @@ class Listed:
         What can be added, as in a profile, by its word.
     earlier, later
         Words for moving an item towards the front and the end.
+    once
+        A key that no two items may share, and the values that it may have; an added or copied
+        item takes the first that is free.
     """
 
     one: str
@@ -49,6 +54,7 @@ class Listed:
     starts: Tables
     earlier: str = "Move up"
     later: str = "Move down"
+    once: tuple[str, tuple[str, ...]] | None = None
 
 
 #: Every list that can be edited, by its path with * for each number.
@@ -63,11 +69,19 @@ LISTS = {
     "liquid.recipe.ingredients": Listed(
         "ingredient", 0, MOST_INGREDIENTS, {"ingredient": NEW_INGREDIENT}
     ),
+    "limits.off": Listed(
+        "limit that is off",
+        0,
+        len(LIMITS),
+        {"limit that is off": {"reason": "say here why it does not apply"}},
+        once=("limit", tuple(LIMITS)),
+    ),
 }
 #: Parts that a design may have or not, and what a new one starts with.
 OPTIONAL: Tables = {"liquid.recipe": {"salt": "KCl"}}
 #: Parts of which there are several kinds: the key that tells them apart, and the kinds.
 KINDS: dict[str, tuple[str, Mapping[str, Any]]] = {
+    "task": ("kind", TASKS),
     "chip": ("layout", LAYOUTS),
     "particle.*": ("kind", PARTICLES),
 }
@@ -153,6 +167,11 @@ def listed(path: str) -> Listed:
     return found
 
 
+def kinds_of(path: str) -> Mapping[str, Any]:
+    """Kinds of the part at a path; none if it has but one."""
+    return KINDS.get(_pattern(path), ("", {}))[1]
+
+
 def _pattern(path: str) -> str:
     return re.sub(r"\.\d+(?=\.|$)", ".*", path)
 
@@ -206,13 +225,14 @@ def _added(data: dict[str, Any], at: str, word: str, library: Tables) -> Edited:
     if at == "particle":
         item["role"] = "watch" if any(map(_collects, items)) else "collect"
     order = (*range(len(items)), None)
-    return _placed(data, at, [*items, _named(item, items)], order, len(items))
+    new = _distinct(found, _named(item, items), items)
+    return _placed(data, at, [*items, new], order, len(items))
 
 
 def _arranged(data: dict[str, Any], do: str, at: str) -> Edited:
     """A list with one of its items copied, taken out or moved."""
     path, _, number = at.rpartition(".")
-    _, items = _list(data, path)
+    found, items = _list(data, path)
     if not (number.isdecimal() and len(number) < 4 and int(number) < len(items)):
         raise BadRequestError("no such item")
     index = int(number)
@@ -234,7 +254,7 @@ def _arranged(data: dict[str, Any], do: str, at: str) -> Edited:
         order[index], order[place] = order[place], order[index]
     arranged = [copy.deepcopy(items[source]) for source in order]
     if do == "copy":
-        arranged[place] = _named(arranged[place], items)
+        arranged[place] = _distinct(found, _named(arranged[place], items), items)
     return _placed(data, path, arranged, tuple(order), place)
 
 
@@ -267,6 +287,16 @@ def _named(item: Any, others: list[Any]) -> Any:
         number += 1
         name = f"{stem[: LONGEST_NAME - 1 - len(str(number))]} {number}".strip()
     return {**item, "name": name}
+
+
+def _distinct(known: Listed, item: Any, others: list[Any]) -> Any:
+    """The item with a value of its own where no two items may share one."""
+    if known.once is None or not isinstance(item, dict):
+        return item
+    key, values = known.once
+    taken = {other.get(key) for other in others if isinstance(other, dict)}
+    free = [value for value in values if value not in taken]
+    return {**item, key: free[0]} if free else item
 
 
 def _list(data: dict[str, Any], path: str) -> tuple[Listed, list[Any]]:

@@ -306,3 +306,26 @@ def test_any_sequence_of_edits_leaves_a_design_or_a_told_error(yeast, wishes):
         assert any(particle.role == "collect" for particle in opened.design.particles)
         design = opened.design
     assert parse_design(document(design)) == design
+
+
+def test_another_task_keeps_its_height_and_tells_what_it_lacks(yeast):
+    opened, _ = wished(yeast, "turn", "task", "separate")
+    assert opened.problems == ()
+    assert opened.design.task.kind == "separate"
+    assert opened.design.task.force_height == yeast.task.force_height
+    alone, _ = wished(yeast, "turn", "task", "separate", **{"particle.1.role": "watch"})
+    assert len(alone.problems) > 0  # nothing is there that could pass
+    with pytest.raises(BadRequestError):
+        wished(yeast, "turn", "task", "dance")
+
+
+def test_limits_are_switched_off_one_after_the_other(yeast):
+    opened, _ = wished(yeast, "add", "limits.off", "limit that is off")
+    again, _ = wished(opened.design, "add", "limits.off", "limit that is off")
+    copied, _ = wished(again.design, "copy", "limits.off.0")
+    off = [one.limit for one in copied.design.limits.off]
+    assert len(set(off)) == 3
+    assert copied.problems == ()
+    assert all(one.reason for one in copied.design.limits.off)
+    back, _ = wished(opened.design, "remove", "limits.off.0")
+    assert back.design == yeast

@@ -3,16 +3,22 @@
 from typing import Any
 
 from model.evaluate import Evaluation, LedgerRow, SwitchedOffLimit
+from model.remedies import remedies
 from model.verdict import MOST_VOLTAGE, format_value, format_volts, row_headroom, row_value
 from webapp.figures.theme import Theme, limit_colour
 
 
-def ledger_rows(result: Evaluation, theme: Theme) -> list[dict[str, Any]]:
+def ledger_rows(result: Evaluation, theme: Theme, *, advised: bool = False) -> list[dict[str, Any]]:
     """Every rule with value, allowed, headroom, why and source, as text to show.
 
-    Limits that are switched off stand at the end.
+    Limits that are switched off stand at the end. If `advised`, what is broken or tight has the
+    changes that would mend it.
     """
     rows = [_row(row, theme) for row in result.ledger]
+    if advised:
+        for row, shown in zip(result.ledger, rows, strict=True):
+            if words := remedies(result, row):
+                shown["remedy"] = " ".join(words)
     return [*rows, *(_off(off, theme) for off in result.switched_off)]
 
 

@@ -97,7 +97,7 @@ def corridor_part(
             "heating": heating_sentence(heating, result),
             "electrothermal": electrothermal_sentence(electrothermal, result),
         },
-        "ledger": ledger_rows(result, theme),
+        "ledger": ledger_rows(result, theme, advised=options.resting),
         "best": _best(result),
         **({} if rows is None else {"sensitivity": _ranked(result, rows)}),
     }
