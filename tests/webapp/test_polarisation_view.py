@@ -154,6 +154,18 @@ def test_the_map_moves_nothing_but_its_ring(yeast, solved, vary, part):
     assert (ring["x"], ring["y"]) == ([0.05], [300e3])
 
 
+def test_the_map_of_a_mixed_liquid_has_its_own_permittivity(demos, vary):
+    """A buffer kept at one osmolality holds the less sugar the more salt makes it conduct."""
+    design = demos["tumour-cells-sugar-buffer"]
+    particle = design.particles[0]
+    for text in ("10 mS/m", "0.1 S/m"):
+        liquid = vary(design, {"liquid.conductivity": text}).liquid
+        falling = crossover_map(particle, liquid).curves[1].frequency[0]
+        weak = liquid.medium(2.0 * np.pi * np.array([0.99, 1.01]) * falling, np.array(1e-4))
+        factor = particle.polarisation(weak).real
+        assert factor[0] > 0.0 > factor[1], text
+
+
 def test_the_map_follows_the_crossover_of_a_sphere(bead, crossover, solved):
     line = trace_of(part_of(bead, solved), "crossover-map", "bead falls")
     x, y = (unpacked(line[key]).astype(float) for key in ("x", "y"))

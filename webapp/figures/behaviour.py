@@ -47,18 +47,23 @@ class CrossoverMap:
 
 
 def crossover_map(particle: Particle, liquid: Liquid) -> CrossoverMap:
-    """Find the crossovers at all conductivities; the liquid's own only widens their range."""
+    """Find the crossovers at all conductivities; the liquid's own only widens their range.
+
+    A liquid with a recipe keeps the permittivity that it has as mixed for its own conductivity;
+    without one nothing else depends on that, and one map does for all.
+    """
     low, high = _LEAST, _MOST
     while liquid.conductivity < low:
         low /= 10.0
     while liquid.conductivity > high:
         high *= 10.0
-    return _crossover_map(particle, liquid.model_copy(update={"conductivity": high}), low)
+    if liquid.recipe is None:
+        liquid = liquid.model_copy(update={"conductivity": high})
+    return _crossover_map(particle, liquid, low, high)
 
 
 @lru_cache(maxsize=_MOST_KEPT)
-def _crossover_map(particle: Particle, liquid: Liquid, low: float) -> CrossoverMap:
-    """Map up to the conductivity of the liquid."""
-    high = liquid.conductivity
+def _crossover_map(particle: Particle, liquid: Liquid, low: float, high: float) -> CrossoverMap:
+    """Map between two conductivities."""
     conductivity = np.geomspace(low, high, round(np.log10(high / low) * _PER_DECADE) + 1)
     return CrossoverMap(conductivity, crossover_curves(particle, liquid, conductivity))

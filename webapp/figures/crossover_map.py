@@ -36,7 +36,7 @@ _GAP = np.full((2, 1), np.nan)
 def crossover_figure(result: Evaluation, theme: Theme) -> Figure:
     """Draw both branches of each particle, a band of one standard deviation, the point in use.
 
-    Nothing but the ring depends on the drive and on the conductivity.
+    Of a liquid without a recipe nothing but the ring depends on the drive and the conductivity.
     """
     design = result.design
     maps = [crossover_map(particle, design.liquid) for particle in design.particles]
