@@ -185,9 +185,9 @@ def test_voltage_at_which_electrothermal_flow_shows(solved):
     amplitude = PEAK * (10e-6 / at.electrothermal_speed[:, 0]) ** 0.25
     assert np.all((amplitude / 10.0 > 0.5) & (amplitude / 10.0 < 2.0))
     # The electro-osmosis that the program tells for the same drive (10 V) is 42 times faster at
-    # 10 mS/m, while such flow is seen at low frequency alone (from memory). It comes from the edges alone, over the length ℓ along
-    # which current prefers the metal: less than a usual metal's thickness of 100 nm (from memory),
-    # so that a sharp edge and thin layers say nothing there.
+    # 10 mS/m, while such flow is seen at low frequency alone (from memory). It comes from the
+    # edges, over the length ℓ along which current prefers the metal: 38 nm here, less than the
+    # thickness of usual metal, 100 nm (from memory), so that a sharp edge says nothing there.
     assert np.all(np.abs(at.circuit.length[0]) < 100e-9)
 
 
