@@ -4,7 +4,7 @@ import math
 from collections.abc import Iterator
 
 from model.declare import Quantity
-from model.liquid.mixing import MOST_IONS, Blend
+from model.liquid.mixing import MOST_IONS, Blend, mixing
 from model.liquid.reaching import blended, reach
 from model.liquid.recipe import Ingredient, Recipe
 from model.liquid.solutes import SOLUTES
@@ -22,12 +22,12 @@ _MODELLED = f"{MOST_IONS:.0f} mmol/L of ionic strength, the most that is modelle
 _CROWDED = "more sugar than is modelled, some 40 % by weight"
 
 
-def fixed_misfits(recipe: Recipe, temperature: float) -> Iterator[tuple[str, str]]:
+def fixed_misfits(recipe: Recipe) -> Iterator[tuple[str, str]]:
     """Find fixed ingredients that are too much whatever else is in: field and problem.
 
     Fields of all problems are told as in :class:`model.liquid.liquid.Liquid`.
     """
-    if reach(recipe, temperature).mixing.most_salt <= 0.0:
+    if mixing(recipe).most_salt <= 0.0:
         yield "recipe.ingredients", f"hold more than {_MODELLED}"
     if sum(_crowding(item) for item in recipe.ingredients) > MOST_CROWDED:
         yield "recipe.ingredients", f"hold {_CROWDED}"
@@ -41,7 +41,7 @@ def fixed_misfits(recipe: Recipe, temperature: float) -> Iterator[tuple[str, str
 
 def made_by(recipe: Recipe, temperature: float) -> float:
     """Conductivity, S/m, that the recipe's own amount of its salt makes at a temperature, K."""
-    blend = reach(recipe, temperature).mixing.blend(recipe.amount or 0.0)
+    blend = mixing(recipe).blend(recipe.amount or 0.0)
     return float(blend.solution.conductivity(temperature))
 
 
@@ -49,7 +49,7 @@ def amount_misfits(
     recipe: Recipe, temperature: float, stated: float | None, allowed: Quantity
 ) -> Iterator[tuple[str, str]]:
     """Find what is wrong with the amount of salt beside the conductivity that is stated, S/m."""
-    most = reach(recipe, temperature).mixing.most_salt
+    most = mixing(recipe).most_salt
     made = made_by(recipe, temperature)
     low, high = allowed.range()
     place, shown = "recipe.amount", format_si(made, "S/m", 4)

@@ -21,6 +21,8 @@ from model.liquid.solution import PURE
 from model.medium import Medium
 from model.quantity import plain_text
 
+#: Step in which the rise is taken, K.
+_WARMER = 0.1
 #: Relative rise of conductivity with temperature where nothing tells it, 1/K.
 USUAL_SLOPE = 0.02
 _CONDUCTIVITY = Quantity(
@@ -121,7 +123,7 @@ class Liquid(Part):
         recipe = liquid.recipe
         if recipe is None:
             return liquid
-        found = list(fixed_misfits(recipe, liquid.temperature))
+        found = list(fixed_misfits(recipe))
         if not found and recipe.amount is not None:
             stated = None if alone else liquid.conductivity
             found = list(amount_misfits(recipe, liquid.temperature, stated, _CONDUCTIVITY))
@@ -180,8 +182,8 @@ class Liquid(Part):
         """Relative slope d ln σ/dT of the recipe as mixed, 1/K; without one the round value."""
         if self.blend is None:
             return USUAL_SLOPE
-        around = [self.blend.solution.conductivity(self.temperature + step) for step in (0.5, -0.5)]
-        return float(np.log(around[0] / around[1]))
+        warmer = float(self.blend.solution.conductivity(self.temperature + _WARMER))
+        return float(np.log(warmer / self.conductivity)) / _WARMER
 
     @property
     def ions(self) -> Electrolyte:
@@ -199,7 +201,7 @@ class Liquid(Part):
         if self.recipe is None or self.blend is None:
             return simple_salt(conductivity, self.temperature)
         within = reach(self.recipe, self.temperature)
-        ions = within.mixing.blend(within.salt(np.ravel(conductivity))).solution.electrolyte(
+        ions = within.mixing.without_sugar(within.salt(np.ravel(conductivity))).electrolyte(
             self.temperature, float(self.blend.solution.thickness)
         )
         diluted = np.minimum(np.ravel(conductivity) / max(within.least, np.finfo(float).tiny), 1.0)

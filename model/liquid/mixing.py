@@ -1,7 +1,7 @@
 """A recipe as arithmetic: the solution that some amount of its salt gives, with pH and sugar."""
 
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, lru_cache
 
 import numpy as np
 from numpy.typing import ArrayLike
@@ -58,9 +58,7 @@ class Mixing:
     def blend(self, salt: ArrayLike) -> Blend:
         """The recipe with so much of its salt, mol/m³, () or (n,)."""
         amount = np.asarray(salt, dtype=float)
-        mixed = np.add.outer(self._fixed, np.zeros_like(amount))
-        mixed += np.multiply.outer(self._salt, amount)
-        mixed, titrant = self._at_ph(mixed)
+        mixed, titrant = self._at_ph(self._dissolved(amount))
         sugar = np.zeros_like(amount)
         if self.recipe.osmolality is not None:
             index = self.names.index(self.recipe.sugar)
@@ -68,11 +66,19 @@ class Mixing:
             mixed[index] += np.maximum(sugar, 0.0)
         return Blend(Solution(self.names, mixed), amount, sugar, titrant)
 
+    def without_sugar(self, salt: ArrayLike) -> Solution:
+        """Its ions with so much of its salt, mol/m³, () or (n,): no sugar is filled up."""
+        return Solution(self.names, self._at_ph(self._dissolved(np.asarray(salt, dtype=float)))[0])
+
     @cached_property
     def most_salt(self) -> float:
         """Salt with which the ions come to :data:`MOST_IONS`, mol/m³; not positive if without."""
-        without = float(self.blend(0.0).solution.ionic_strength)
+        without = float(self.without_sugar(0.0).ionic_strength)
         return (MOST_IONS - without) / (0.5 * float(columns(self.names).charges ** 2 @ self._salt))
+
+    def _dissolved(self, salt: Real) -> Real:
+        """Salt and fixed ingredients, buffers as they are weighed."""
+        return np.add.outer(self._fixed, np.zeros_like(salt)) + np.multiply.outer(self._salt, salt)
 
     def _at_ph(self, mixed: Real) -> tuple[Real, Real]:
         """Part buffers into acid and base, add H⁺ and OH⁻, and what makes it neutral again."""
@@ -114,6 +120,12 @@ class Mixing:
 
     def _array(self, counts: dict[str, float]) -> Real:
         return np.array([float(counts.get(name, 0.0)) for name in self.names])
+
+
+@lru_cache(maxsize=16)  # a design has one recipe, its pinned ones a few more; pure
+def mixing(recipe: Recipe) -> Mixing:
+    """The arithmetic of a recipe; kept for the few that are in use."""
+    return Mixing(recipe)
 
 
 def _names(recipe: Recipe) -> tuple[str, ...]:

@@ -6,21 +6,21 @@ import numpy as np
 from scipy.interpolate import CubicSpline
 
 from model.arrays import Real
-from model.liquid.mixing import Blend, Mixing
+from model.liquid.mixing import Blend, mixing
 from model.liquid.recipe import Recipe
 
 #: Salt contents at which a recipe is worked out beforehand; in between it is good to 1e-4.
 _NODES = 40
-#: Newton steps from there, fewer where the share by which the last one was off is small: the next
-#: leaves at most a third of it where the sugar runs out, elsewhere a thousandth.
-_STEPS, _NEAR = 12, 1e-6
+#: Newton steps from there, at most, and the share of the conductivity that may be left: mostly one
+#: does, more are needed where the sugar runs out.
+_STEPS, _NEAR = 12, 1e-7
 
 
 class Reach:
     """The conductivities that a recipe reaches at one temperature with more or less of its salt."""
 
     def __init__(self, recipe: Recipe, temperature: float) -> None:
-        self.mixing = Mixing(recipe)
+        self.mixing = mixing(recipe)
         self.temperature = temperature
         # even in √c, as the conductivity bends in it; the first so low that no salt is told from it
         salt = max(self.mixing.most_salt, 1.0) * np.linspace(0.0, 1.0, _NODES) ** 2
@@ -42,7 +42,7 @@ class Reach:
         return np.asarray(gain * self._per_gain(root))
 
     def blend(self, conductivity: float) -> Blend:
-        """The recipe with a conductivity in S/m, to 1e-6; without its salt where it is less."""
+        """The recipe with a conductivity in S/m, to 1e-7; without its salt where it is less."""
         salt = float(self.salt(np.asarray(conductivity)))
         blend = self.mixing.blend(salt)
         if salt == 0.0:
@@ -51,10 +51,10 @@ class Reach:
         slope = float(self._per_gain(root) + 0.5 * root * self._per_gain(root, 1))
         for _ in range(_STEPS):
             error = float(blend.solution.conductivity(self.temperature)) - conductivity
-            salt = max(salt - slope * error, 0.0)
-            blend = self.mixing.blend(salt)
             if abs(error) < _NEAR * conductivity:
                 break
+            salt = max(salt - slope * error, 0.0)
+            blend = self.mixing.blend(salt)
         return blend
 
 

@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 from pydantic import ValidationError
 from scipy.constants import epsilon_0
 
+from model.declare import FROM_PERSON
 from model.errors import DesignError
 from model.liquid import water
 from model.liquid.liquid import Liquid
@@ -105,6 +106,47 @@ def test_a_blend_is_neutral_and_what_was_asked_for(salt, conductivity, ph, buffe
         if key == "HEPES":  # nothing of it is lost as it is parted
             there = dict(zip(solution.names, solution.concentrations, strict=True))
             assert there["HEPES"] + there["HEPES-"] == pytest.approx(each)
+
+
+INGREDIENTS = st.fixed_dictionaries(
+    {
+        "solute": st.sampled_from(sorted(of_kind("salt", "buffer", "sugar"))),
+        "concentration": st.floats(0.0, 3000.0) | st.floats(0.0, 20.0),
+    }
+)
+RECIPES = st.fixed_dictionaries(
+    {
+        "salt": st.sampled_from(SALTS),
+        "sugar": st.sampled_from(SUGARS),
+        "ph": st.floats(4.0, 10.0),
+        "ingredients": st.lists(INGREDIENTS, max_size=4),
+    },
+    optional={"osmolality": st.floats(1.0, 3000.0), "amount": st.floats(0.0, 5000.0)},
+)
+
+
+@PATIENT
+@given(
+    RECIPES,
+    st.floats(-2.0, 4.0).map(lambda power: 10.0**power),
+    st.floats(0.0, 95.0),
+    st.booleans(),
+)
+def test_any_recipe_is_either_had_or_told(recipe, conductivity, celsius, stated):
+    data = {"temperature": celsius, "recipe": recipe}
+    if stated or "amount" not in recipe:
+        data["conductivity"] = conductivity
+    try:
+        liquid = Liquid.model_validate(data, context=FROM_PERSON)
+    except ValidationError:  # told at its field; any other fault fails
+        return
+    found = mixed(liquid)
+    assert all(portion.concentration >= 0.0 for portion in found.portions)
+    for value in (found.osmolality, found.density, found.viscosity, found.relative_permittivity):
+        assert 0.0 < value < np.inf
+    assert 0.005 < liquid.state.conductivity_slope < 0.05
+    if "osmolality" in recipe:
+        assert found.osmolality == pytest.approx(liquid.recipe.osmolality, rel=1e-4, abs=2e-5)
 
 
 def test_more_salt_conducts_more_and_leaves_less_room_for_sugar():
