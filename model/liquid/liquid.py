@@ -204,7 +204,8 @@ class Liquid(Part):
         ions = within.mixing.without_sugar(within.salt(np.ravel(conductivity))).electrolyte(
             self.temperature, float(self.blend.solution.thickness)
         )
-        diluted = np.minimum(np.ravel(conductivity) / max(within.least, np.finfo(float).tiny), 1.0)
+        least = within.least
+        diluted = np.minimum(np.ravel(conductivity), least) / least if least > 0.0 else 1.0
         shape = (len(ions.valences), *np.shape(conductivity))
         return replace(ions, concentrations=(ions.concentrations * diluted).reshape(shape))
 

@@ -36,7 +36,7 @@ class Solute:
         salt, saline (salts in fixed shares), buffer, sugar, or titrant: what sets the pH.
     most
         Most that dissolves at 25 °C or that the models reach, mol/m³; salts are bounded by their
-        ionic strength instead.
+        ionic strength.
     stock
         The usual stock solution, if there is one.
     """
@@ -57,6 +57,8 @@ class Solute:
 
 
 _MOLAR = Stock("1 M", 1000.0)
+#: Most of a buffer, mol/m³: its own ions then come near to where activities hold.
+_BUFFERED = 200.0
 
 #: Phosphate-buffered saline: the common recipe of 137, 2.7, 10 and 1.8 mmol/L. One formula unit is
 #: what a litre of it holds, so that its concentration in mol/L is its strength.
@@ -112,10 +114,16 @@ SOLUTES: Mapping[str, Solute] = MappingProxyType(
         "KH2PO4": Solute(
             "potassium dihydrogen phosphate", (("K+", 1), ("H2PO4-", 1)), "KH2PO4", "salt"
         ),
-        "HEPES": Solute("HEPES", (("HEPES", 1),), "free acid", "buffer", stock=_MOLAR),
-        "Tris": Solute("Tris", (("Tris", 1),), "free base", "buffer", stock=_MOLAR),
+        "HEPES": Solute(
+            "HEPES", (("HEPES", 1),), "free acid", "buffer", most=_BUFFERED, stock=_MOLAR
+        ),
+        "Tris": Solute("Tris", (("Tris", 1),), "free base", "buffer", most=_BUFFERED, stock=_MOLAR),
         "phosphate": Solute(
-            "sodium phosphate buffer", (("Na+", 1), ("H2PO4-", 1)), "NaH2PO4", "buffer"
+            "sodium phosphate buffer",
+            (("Na+", 1), ("H2PO4-", 1)),
+            "NaH2PO4",
+            "buffer",
+            most=_BUFFERED,
         ),
         "sucrose": Solute("sucrose", (("sucrose", 1),), "C12H22O11", "sugar", most=1400.0),
         "dextrose": Solute(

@@ -146,7 +146,7 @@ def test_any_recipe_is_either_had_or_told(recipe, conductivity, celsius, stated)
         assert 0.0 < value < np.inf
     assert 0.005 < liquid.state.conductivity_slope < 0.05
     if "osmolality" in recipe:
-        assert found.osmolality == pytest.approx(liquid.recipe.osmolality, rel=1e-4, abs=2e-5)
+        assert found.osmolality == pytest.approx(liquid.recipe.osmolality, rel=1e-5, abs=2e-5)
 
 
 def test_more_salt_conducts_more_and_leaves_less_room_for_sugar():
