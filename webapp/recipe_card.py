@@ -29,7 +29,7 @@ def recipe_card(liquid: Liquid) -> dict[str, Any] | None:
         "rows": [_row(*cells) for cells in rows],
         "amount": rows[0][1].replace("mol", "mol/L"),
         "properties": _properties(found),
-        "notes": list(found.notes),
+        "notes": _notes(found),
         "text": _text(found, rows),
     }
 
@@ -59,8 +59,13 @@ def _properties(found: Mixed) -> list[tuple[str, str]]:
     ]
 
 
+def _notes(found: Mixed) -> list[str]:
+    """What may go wrong with it, and what can hurt whoever mixes it."""
+    return [*found.notes, *filter(None, [found.caution])]
+
+
 def _text(found: Mixed, rows: list[tuple[str, ...]]) -> str:
     """The card as text to be pasted into a laboratory book: columns parted by tabs."""
     lines = [("Solute", "per litre at 25 °C", "mass", "or stock", "why"), *rows, ("",)]
-    lines += [*_properties(found), *((note,) for note in found.notes)]
+    lines += [*_properties(found), *((note,) for note in _notes(found))]
     return "\n".join("\t".join(line) for line in lines)

@@ -59,9 +59,15 @@ def test_properties_name_their_temperature():
     assert "pH at 25 °C" not in dict(recipe_card(liquid(recipe=Recipe()))["properties"])
 
 
+def test_lye_and_acid_come_with_a_caution():
+    assert any("safety rules" in note for note in recipe_card(liquid())["notes"])
+    assert not any("safety" in note for note in recipe_card(liquid(recipe=Recipe()))["notes"])
+
+
 def test_text_holds_all_of_the_card():
     card = recipe_card(liquid())
     lines = card["text"].splitlines()
+    assert set(card["notes"]) <= set(lines)
     for row in card["rows"]:
         assert any(row["name"] in line and row["mass"] in line for line in lines)
     for name, value in card["properties"]:
