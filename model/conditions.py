@@ -50,6 +50,8 @@ class Conditions:
     frequency: Real
     conductivity: Real
     _kept: dict[Particle, Complex] = field(default_factory=dict, repr=False, compare=False)
+    _speeds: dict[Particle, Real] = field(default_factory=dict, repr=False, compare=False)
+    _flows: dict[float, float] = field(default_factory=dict, repr=False, compare=False)
 
     @cached_property
     def omega(self) -> Real:
@@ -163,10 +165,15 @@ class Conditions:
         return np.asarray(self.force_scale(particle) * pull)
 
     def dielectrophoretic_speed(self, particle: Particle) -> Real:
-        """Largest speed that the force gives at the force height, m/s per V².
+        """Largest speed that the force gives at the force height, m/s per V², computed once.
 
         Each direction with its own wall correction of the drag.
         """
+        if particle not in self._speeds:
+            self._speeds[particle] = self._fastest(particle)
+        return self._speeds[particle]
+
+    def _fastest(self, particle: Particle) -> Real:
         radius = particle.hydrodynamic_radius
         relative = self.wall_distance / radius
         slowed = self.patterns.remembered(("walls", relative), lambda: _slowed(relative))
@@ -273,11 +280,16 @@ class Conditions:
         return np.asarray(2.0 / self.design.chip.terminals * self.admittance)
 
     def flow_speed(self, height: float) -> float:
-        """Speed of the undisturbed flow at a height, m/s, where the force is taken against it.
+        """Speed of the undisturbed flow at a height, m/s, where the force is taken; kept.
 
         In a flat channel at mid-width; in plan at the best place of the line, the parabola
         6s(1 − s) of its mean over the depth.
         """
+        if height not in self._flows:
+            self._flows[height] = self._undisturbed(height)
+        return self._flows[height]
+
+    def _undisturbed(self, height: float) -> float:
         chip, rate = self.design.chip, self.design.flow.rate
         if self.line.through is None:
             sizes = chip.height, chip.channel_width, height

@@ -16,6 +16,7 @@ from model.errors import DesignError, FieldError
 from model.fields.patterns import ChipPatterns
 from model.generator import displayed
 from model.growth import self_consistent
+from model.law import headroom
 from model.limit import Limit
 from model.limits import LIMITS
 from model.particle import Particle
@@ -177,10 +178,10 @@ class Evaluation:
 
     def _row(self, rule: Rule) -> LedgerRow:
         voltage, law = self.rms_voltage, rule.law
-        bound = float(law.bound().reshape(-1)[0])
-        headroom = float(law.headroom(voltage).reshape(-1)[0])
+        bound = law.bound().reshape(-1)[0]
+        room = float(headroom(bound, voltage, law.sense))
         value = float(law.value(voltage).reshape(-1)[0])
-        return LedgerRow(rule, value, law.allowed, bound * PEAK_TO_PEAK, headroom)
+        return LedgerRow(rule, value, law.allowed, float(bound) * PEAK_TO_PEAK, room)
 
     @property
     def inside(self) -> bool:

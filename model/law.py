@@ -86,14 +86,18 @@ class Law:
         # 0/0: no slope and no room. Nothing is asked of a floor, nothing is left of a ceiling.
         return np.where(np.isnan(voltage), 0.0, voltage)
 
-    def headroom(self, rms_voltage: ArrayLike) -> Real:
-        """Factor between the voltage and the bound, at least 1 where the law is kept.
 
-        Bound over voltage for ``most``, voltage over bound for ``least``; infinite where no
-        voltage breaks the law.
-        """
-        voltage, bound = np.asarray(rms_voltage, dtype=float), self.bound()
-        if self.sense == "most":
-            return np.asarray(bound / voltage)
-        with np.errstate(divide="ignore"):
-            return np.asarray(voltage / bound)
+def headroom(bound: Real, rms_voltage: float, sense: Sense) -> Real:
+    """Factor between a voltage and a bound, at least 1 where the law is kept.
+
+    Bound over voltage for ``most``, voltage over bound for ``least``; infinite where no voltage
+    breaks the law.
+
+    >>> bound = np.array([0.0, 2.0, np.inf])
+    >>> headroom(bound, 4.0, "most"), headroom(bound, 4.0, "least")
+    (array([0. , 0.5, inf]), array([inf,  2.,  0.]))
+    """
+    if sense == "most":
+        return np.asarray(bound / rms_voltage)
+    with np.errstate(divide="ignore"):
+        return np.asarray(rms_voltage / bound)

@@ -14,6 +14,7 @@ from model.corridor import Rule, rules
 from model.declare import Quantity, declarations
 from model.design import Drive
 from model.evaluate import TIGHT, Evaluation, LedgerRow
+from model.law import headroom
 from model.liquid.liquid import Liquid
 from model.quantity import DIGITS, format_si
 
@@ -21,7 +22,7 @@ from model.quantity import DIGITS, format_si
 _CONDUCTIVITIES, _BETWEEN = 96, 65
 
 #: Headroom of the rule at values of one knob, all else kept.
-Headroom = Callable[[Real], Real]
+Room = Callable[[Real], Real]
 
 
 def remedies(result: Evaluation, row: LedgerRow) -> tuple[str, ...]:
@@ -80,7 +81,7 @@ def _frequency(result: Evaluation, row: LedgerRow, wanted: float) -> str:
     """The nearest frequencies of the corridor that keep the rule."""
     conductivity = np.array(result.design.liquid.conductivity)
 
-    def headroom(frequency: Real) -> Real:
+    def room(frequency: Real) -> Real:
         at = Conditions(result.design, result.patterns, frequency, conductivity)
         return _headroom(at, row.rule, result.rms_voltage)
 
@@ -90,25 +91,22 @@ def _frequency(result: Evaluation, row: LedgerRow, wanted: float) -> str:
         for one in result.corridor.bounds
         if (one.id, one.subject, one.sense) == _key(row.rule)
     )
-    volts = result.rms_voltage
-    with np.errstate(divide="ignore"):
-        coarse = bound / volts if row.rule.law.sense == "most" else volts / bound
+    kept = headroom(bound, result.rms_voltage, row.rule.law.sense) >= wanted
     own = result.design.drive.frequency
-    return _knob("frequency", "Hz", own, result.frequency, coarse >= wanted, headroom, wanted)
+    return _knob("frequency", "Hz", own, result.frequency, kept, room, wanted)
 
 
 def _conductivity(result: Evaluation, row: LedgerRow, wanted: float) -> str:
     """The nearest conductivities that keep the rule."""
     frequency = result.point.frequency
 
-    def headroom(conductivity: Real) -> Real:
+    def room(conductivity: Real) -> Real:
         at = Conditions(result.design, result.patterns, frequency, conductivity[:, np.newaxis])
         return _headroom(at, row.rule, result.rms_voltage)
 
     tried = _conductivities()
     own = result.design.liquid.conductivity
-    kept = headroom(tried) >= wanted
-    return _knob("conductivity", "S/m", own, tried, kept, headroom, wanted)
+    return _knob("conductivity", "S/m", own, tried, room(tried) >= wanted, room, wanted)
 
 
 def _conductivities() -> Real:
@@ -119,7 +117,8 @@ def _headroom(at: Conditions, rule: Rule, rms_voltage: float) -> Real:
     """Headroom of one rule at other conditions, (n,)."""
     size = max(at.frequency.size, at.conductivity.size)
     (found,) = (one for one in rules(at, rule.id) if _key(one) == _key(rule))
-    return np.broadcast_to(found.law.headroom(rms_voltage).reshape(-1), size)
+    room = headroom(found.law.bound(), rms_voltage, found.law.sense)
+    return np.broadcast_to(room.reshape(-1), size)
 
 
 def _key(rule: Rule) -> tuple[str, str, str]:
@@ -132,7 +131,7 @@ def _knob(
     own: float,
     tried: Real,
     kept: NDArray[np.bool_],
-    headroom: Headroom,
+    room: Room,
     wanted: float,
 ) -> str:
     """Word the nearest values of a knob below and above its own that keep the rule."""
@@ -140,7 +139,7 @@ def _knob(
     for up in (True, False):
         chosen = np.flatnonzero(tried > own if up else tried < own)
         away = chosen if up else chosen[::-1]
-        band = _band(own, tried[away], kept[away], headroom, wanted)
+        band = _band(own, tried[away], kept[away], room, wanted)
         if band is not None:
             ways.append(("Raise" if up else "Lower", _words(band, up, unit)))
     if not ways:
@@ -151,7 +150,7 @@ def _knob(
 
 
 def _band(
-    own: float, tried: Real, kept: NDArray[np.bool_], headroom: Headroom, wanted: float
+    own: float, tried: Real, kept: NDArray[np.bool_], room: Room, wanted: float
 ) -> _Band | None:
     """The nearest band on one side of the present value; `tried` leads away from it."""
     if not kept.any():
@@ -162,7 +161,7 @@ def _band(
     before = own if first == 0 else float(tried[first - 1])
     fine = np.geomspace(before, float(tried[first]), _BETWEEN)
     fine[-1] = tried[first]
-    near = fine[1:][int((headroom(fine[1:]) >= wanted).argmax())]
+    near = fine[1:][int((room(fine[1:]) >= wanted).argmax())]
     return _Band(float(near), float(tried[last]), last == kept.size - 1)
 
 

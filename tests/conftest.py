@@ -16,10 +16,12 @@ from model.design import Design, Drive, Flow
 from model.evaluate import evaluate
 from model.fields.solve import solve_chip
 from model.layouts import LAYOUTS
+from model.limits import LIMITS
 from model.liquid.liquid import Liquid
 from model.particles import PARTICLES
 from model.profile import document, load_profile, parse_design
 from model.quantity import plain_text
+from model.tasks import TASKS
 
 # The same examples in every run, so that a change and not chance decides what passes. To search
 # on with new ones: HYPOTHESIS_PROFILE=search python -m pytest -m "not browser"
@@ -167,24 +169,29 @@ def chip_of(table):
 def random_designs(draw):
     chip = draw(st.sampled_from(sorted(LAYOUTS)).flatmap(random_chips))
     height = chip_of(chip).height
-    count = draw(st.integers(1, 12))
+    count = draw(st.integers(1, 11))
     particles = [draw(random_particle(f"{index} ", 0.25 * height)) for index in range(count)]
     particles[0]["role"] = "collect"
+    kind = draw(st.sampled_from(sorted(TASKS)))
+    if LAYOUTS[chip["layout"]].view == "plan" and kind in ("lift", "deflect"):
+        kind = "hold"  # a plan has no upward force and no bars
+    if kind == "separate":
+        particles += [draw(random_particle(f"{count} ", 0.25 * height)) | {"role": "pass"}]
+    level = plain_text(height * draw(st.floats(0.3, 0.7)), "um")
+    off = draw(st.lists(st.sampled_from(sorted(LIMITS)), max_size=3, unique=True))
+    switches = [{"limit": name, "reason": draw(LINE.filter(bool))} for name in off]
+    limits = draw(table_of(Design.model_fields["limits"].annotation))
     return parse_design(
         {
             "schema": 1,
             "title": draw(LINE),
             "question": draw(LINE),
-            "task": {
-                "kind": "hold",
-                "dielectrophoresis": draw(st.sampled_from(["positive", "negative"])),
-                "working_height": plain_text(height * draw(st.floats(0.3, 0.7)), "um"),
-            },
+            "task": draw(table_of(TASKS[kind], working_height=level)) | {"kind": kind},
             "chip": chip,
             "liquid": draw(table_of(Liquid)),
             "drive": draw(table_of(Drive)),
             "flow": draw(table_of(Flow)),
-            "limits": draw(table_of(Design.model_fields["limits"].annotation)),
+            "limits": {**limits, "off": switches},
             "particle": particles,
         }
     )

@@ -81,8 +81,8 @@ class ElectrodeResponse(Stored):
         share, drop = self._answers(length, self.peaks)
         return share, np.asarray(np.abs(drop).max(axis=0))
 
-    def slips(self, length: Complex) -> tuple[Real, ...]:
-        """−½ ∂|Δ|²/∂x of the interface voltage Δ along electrodes, at the places of the trace.
+    def slips(self, length: Complex, rows: Index | slice = slice(None)) -> tuple[Real, ...]:
+        """−½ ∂|Δ|²/∂x of the interface voltage Δ along electrodes, at `rows` of the trace.
 
         Returns
         -------
@@ -93,9 +93,10 @@ class ElectrodeResponse(Stored):
         drops, slopes = [], []
         for modes in self.components:
             trace = modes.trace
-            found = modes.answers(length, np.vstack([trace.values, trace.slopes]))[1:]
-            drops.append(found[: len(trace.values)])
-            slopes.append(found[len(trace.values) :])
+            values = trace.values[rows]
+            found = modes.answers(length, np.vstack([values, trace.slopes[rows]]))[1:]
+            drops.append(found[: len(values)])
+            slopes.append(found[len(values) :])
         own = -sum((d.conj() * s).real for d, s in zip(drops, slopes, strict=True))
         if len(drops) == 1:
             return (np.asarray(own),)

@@ -4,7 +4,16 @@ import numpy as np
 import pytest
 
 from model.conditions import Conditions
-from model.declare import Choice, Count, Declared, Flag, Quantity, Text, declarations
+from model.declare import (
+    Choice,
+    Count,
+    Declared,
+    Flag,
+    Quantities,
+    Quantity,
+    Text,
+    declarations,
+)
 from model.layout import Layout
 from model.layouts import LAYOUTS
 from model.limit import Limit
@@ -113,11 +122,12 @@ def all_declared():
     from model.design import Design, Drive, Flow
     from model.liquid.liquid import Liquid
     from model.liquid.recipe import Ingredient, Recipe
+    from model.thresholds import SwitchedOff
     from model.walls import Wall
 
     limits = Design.model_fields["limits"].annotation
-    parts = (*PARTS.values(), Design, Drive, Flow, Ingredient, Liquid, Recipe, Wall, limits)
-    for part in parts:
+    parts = (*PARTS.values(), Design, Drive, Flow, Ingredient, Liquid, Recipe, SwitchedOff, Wall)
+    for part in (*parts, limits):
         for key, found in declarations(part):
             info = next(
                 item for name, item in part.model_fields.items() if (item.alias or name) == key
@@ -131,6 +141,11 @@ def test_a_declared_field_can_be_shown_and_its_default_used(found, info):
     assert found.label[:1].isupper()
     assert found.help.endswith(".")
     match found:
+        case Quantities():
+            low, high = found.range()
+            assert low < high
+            assert found.read([found.low] * found.count, True) == (low,) * found.count
+            assert found.read((high,) * found.count, False) == (high,) * found.count
         case Quantity():
             low, high = found.range()
             assert low < high
@@ -187,16 +202,21 @@ CASES = {
 
 
 @pytest.mark.parametrize("case", CASES)
-@pytest.mark.parametrize("name", [*LIMITS, "task"])
+@pytest.mark.parametrize("name", [*LIMITS, *TASKS])
 def test_laws_have_bounds_that_are_numbers(name, case, yeast, vary, patterns):
     design = vary(yeast, CASES[case])
+    if name in TASKS:
+        task = TASKS[name](working_height=design.task.working_height)
+        design = design.model_copy(update={"task": task})
     at = Conditions(
         design, patterns, np.geomspace(1e2, 1e9, 60), np.array([[1e-5], [1e-2], [10.0]])
     )
-    rule = design.task if name == "task" else LIMITS[name]
+    rule = LIMITS.get(name, design.task)
     names = {particle.name for particle in design.particles}
     laws = rule.laws(at)
-    assert name != "task" or len(laws) == len(design.collected)
+    if name in TASKS:
+        least = [law.subject for law in laws if law.sense == "least"]
+        assert least == [particle.name for particle in design.collected]
     for law in laws:
         bound = np.broadcast_to(law.bound(), (3, 60))
         assert not np.isnan(bound).any()
