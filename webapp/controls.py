@@ -28,15 +28,8 @@ from webapp.edits import OPTIONAL, listed
 from webapp.figures.theme import DASHES
 from webapp.recipe_card import recipe_place
 
-#: Fields that live in the operating strip and the header instead; the amount of salt is the
-#: conductivity in other words.
-ELSEWHERE = {
-    "drive.frequency",
-    "drive.voltage",
-    "liquid.conductivity",
-    "liquid.recipe.amount",
-    "title",
-}
+#: Fields that live in the operating strip and the header instead.
+ELSEWHERE = {"drive.frequency", "drive.voltage", "liquid.conductivity", "title"}
 
 #: Longest option, in letters, that a control of half the width shows whole.
 _FITS = 12
