@@ -82,7 +82,8 @@ def test_what_is_not_known_is_said_in_every_view(client, bare, view):
     found = asked(client, bare, values, view)
     assert not found["errors"]
     assert any("not known for this chip" in note for note in found["notes"])
-    assert any("not known for this chip" in words for words in found["sentences"].values())
+    if view != "polarisation":  # which shows neither heat nor flow
+        assert any("not known for this chip" in words for words in found["sentences"].values())
     for words in (str(found["sentences"]), str(found.get("ledger", "")), str(found.get("probe"))):
         assert "nan" not in words.lower()
     errors = asked(client, bare, {**values, "task.working_height": "9 um"}, view)["errors"]
