@@ -11,8 +11,8 @@ from model.arrays import Real
 #: far from its curve a name seems to belong to another.
 _STEPS = (0.75, 1.6, -0.75, -1.6, 2.6, -2.6)
 _COSTS = (0.0, 0.12, 0.01, 0.13, 0.9, 0.91)
-#: Typical plot area in pixels and size of a letter; only proportions matter.
-WIDTH, HEIGHT = 640.0, 370.0
+#: Plot area on a narrow page in pixels and size of a letter; only proportions matter.
+WIDTH, HEIGHT = 500.0, 370.0
 LETTER, LINE = 7.4, 17.0
 
 
