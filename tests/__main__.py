@@ -1,4 +1,8 @@
-"""Every check that a change must pass, in one command: ``python -m tests``."""
+"""Every check that a change must pass, in one command: ``python -m tests``.
+
+``python -m tests long`` runs the few long ones instead, which repeat on larger chips what others
+assert too.
+"""
 
 import os
 import shutil
@@ -16,9 +20,10 @@ CHECKS = (
         "import contracts",
         ["-c", "import sys, importlinter.cli as cli; sys.exit(cli.lint_imports_command())"],
     ),
-    ("tests", [*_PYTEST, "-m", "not browser"]),
+    ("tests", [*_PYTEST, "-m", "not browser and not long"]),
     ("browser tests", [*_PYTEST, "-m", "browser"]),
 )
+LONG = (("long tests", [*_PYTEST, "-m", "long"]),)
 #: Each process on one thread of linear algebra, as a second gains nothing.
 _SETTING = {**os.environ, "OMP_NUM_THREADS": "1", "OPENBLAS_NUM_THREADS": "1"}
 
@@ -35,7 +40,7 @@ def main() -> int:
         )
         return 1
     failed = []
-    for name, arguments in CHECKS:
+    for name, arguments in LONG if sys.argv[1:] == ["long"] else CHECKS:
         print(f"== {name}", flush=True)
         if subprocess.run([sys.executable, *arguments], check=False, env=_SETTING).returncode:
             failed.append(name)

@@ -373,6 +373,13 @@ CHECKED = [
 ]
 
 
+def long_for(*names):
+    """Every layout, those named among the long checks."""
+    return [
+        pytest.param(name, marks=pytest.mark.long) if name in names else name for name in LAYOUTS
+    ]
+
+
 @pytest.mark.parametrize("name", LAYOUTS)
 def test_every_layout_has_an_example(name):
     assert EXAMPLES[name], f"add a chip of the layout {name} to EXAMPLES"
@@ -384,12 +391,12 @@ def test_layout(case, check):
     check(case)
 
 
-@pytest.mark.parametrize("name", LAYOUTS)
+@pytest.mark.parametrize("name", long_for("facing-bars", "four-phase-bars", "four-pole"))
 def test_a_finer_mesh_changes_little(name):
     check_convergence(Case(LAYOUTS[name], EXAMPLES[name][-1]))
 
 
-@pytest.mark.parametrize("name", LAYOUTS)
+@pytest.mark.parametrize("name", long_for("four-phase-bars", "four-pole"))
 def test_patterns_do_not_depend_on_size(name):
     case = Case(LAYOUTS[name], EXAMPLES[name][0])
 
