@@ -82,11 +82,10 @@ class Holding(Task):
         height = format_quantity(self.working_height, "um", 3)
         place = "over one period of the electrodes"
         if at.line.through is not None:
-            place = "along the line through the chip against the flow there"
+            place = "along the line through the chip, against the flow there"
         return tuple(
-            f"{law.subject} needs at least {format_si(law.allowed, 'N')} against the flow, taken "
-            f"{height} up where it is strongest {place}: so much does liquid at {speed} drag "
-            "there on a sphere that is held."
+            f"{law.subject} needs at least {format_si(law.allowed, 'N')}, the drag of {speed} on a "
+            f"held sphere {height} up, where the force is strongest {place}."
             for law in self.laws(at)
             if law.sense == "least"
         )

@@ -129,6 +129,22 @@ def test_flow_over_bars_against_a_fourier_series(yeast, patterns, length, height
     assert np.abs(flow - expected).max() < 1e-2 * size
 
 
+def test_a_few_places_tell_as_much_as_all(patterns):
+    """The forms fitted at all places, as they are orthonormal there, give the same speeds."""
+    response, forms = patterns.response, patterns.slips[0].forms
+    rates = response.components[0].rates
+    sizes = np.geomspace(1e-2 / rates.max(), 1e2 / rates.min(), 90)
+    length = (sizes[:, None] * np.exp(-0.5j * np.pi * np.array([0.0, 0.5, 1.0]))).ravel()
+    line = patterns.slips[0].line(13e-6)
+    everywhere = (forms.slips * forms.weights) @ response.slips(length)[0]
+    few = patterns.slips[0].amounts(response, length)
+    fastest = [
+        np.linalg.norm(np.tensordot(line, amounts, axes=(0, 0)), axis=0).max(axis=0)
+        for amounts in (everywhere, few)
+    ]
+    assert np.abs(fastest[0] - fastest[1]).max() < 5e-4 * fastest[0].max()
+
+
 def test_speed_of_a_design_peaks_where_the_layers_charge(yeast, patterns):
     """Slowly the layers screen the field, fast they have no time to charge."""
     frequency = np.geomspace(1, 1e8, 161)

@@ -9,6 +9,7 @@ import pytest
 
 from model.evaluate import evaluate
 from model.limits import LIMITS
+from model.tasks import TASKS
 from model.voltage import PEAK_TO_PEAK
 from webapp.figures.corridor import corridor_figure, corridor_sentence, voltage_range
 from webapp.figures.force import force_figure, force_sentence, nice_ceiling
@@ -350,3 +351,45 @@ def test_ledger_rows_follow_the_ledger(result, theme):
         assert row["source"]
         if found.rule.law.power and found.headroom < 1.0:
             assert not row["headroom"].startswith("1.00")
+
+
+def test_limits_that_are_off_stand_at_the_end_of_the_ledger(yeast, patterns, vary, theme):
+    off = [
+        {"limit": "electrothermal_ratio", "reason": "stirring is wanted here"},
+        {"limit": "contrast", "reason": "of no use for holding"},
+    ]
+    result = evaluate(vary(yeast, {"limits.off": off}), patterns)
+    rows = ledger_rows(result, theme)
+    assert [row["state"] for row in rows[-2:]] == ["off", "off"]
+    assert all(row["state"] != "off" for row in rows[:-2])
+    first, second = rows[-2:]
+    assert first["why"] == "Switched off: stirring is wanted here"
+    assert first["allowed"] == "at most 0.3 if it counted"
+    assert second["value"] == "nothing to check here"
+    assert len({row["key"] for row in rows}) == len(rows)
+    assert set(first) == set(second) == set(rows[0])
+
+
+@pytest.mark.parametrize("kind", TASKS)
+def test_every_task_can_be_drawn(yeast, patterns, theme, kind):
+    task = TASKS[kind](working_height=yeast.task.working_height)
+    result = evaluate(yeast.model_copy(update={"task": task}), patterns, points=60)
+    check_figures(result, theme)
+    sentence = force_sentence(result)
+    assert sentence.lower().startswith(task.force_name)
+    for found in result.particles:
+        assert any(way in sentence for way in task.directions)
+        assert found.particle.name in sentence
+
+
+def test_the_floor_is_named_after_what_sets_it(yeast, patterns, vary):
+    for rate, label in (("0 uL/min", "trap against thermal motion"), ("3 uL/min", "hold against")):
+        design = vary(yeast, {"flow.rate": rate, "limits.thermal_noise": 1e4})
+        result = evaluate(design, patterns)
+        (names,) = [
+            trace["text"]
+            for trace in corridor_figure(result, THEMES["light"])["data"]
+            if trace.get("name") == "labels"
+        ]
+        (floor,) = [name for name in names if name.startswith("floor: ")]
+        assert floor.startswith(f"floor: {label}")
