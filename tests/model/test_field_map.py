@@ -76,15 +76,18 @@ def part(yeast, patterns):
 def test_a_map_of_a_chip_gives_the_corridor_of_the_chip(own, whole):
     """To 2 %; the ceiling, set by the field at an edge, to 5 %, what goes with V⁴ to 20 %.
 
-    Where the electrodes are is not told by a map, so that it says nothing of double layers.
+    Where the electrodes are is not told by a map, so that it says nothing of double layers and of
+    what flows there, and of gaps only what the profile states.
     """
     assert whole.floor_pp == pytest.approx(own.floor_pp, rel=0.02)
     assert whole.ceiling_pp == pytest.approx(own.ceiling_pp, rel=0.05)
     assert whole.binding.rule.id == own.binding.rule.id
     values = {row.rule.name: row.value for row in whole.ledger}
     untold = ("double_layer_voltage", "electro_osmotic_ratio")
-    known = [row for row in own.ledger if row.rule.id not in untold]
-    assert set(values) == {row.rule.name for row in known}
+    told = [row for row in own.ledger if row.rule.id not in untold]
+    assert set(values) == {row.rule.name for row in told}
+    # what walls carry goes with the field right on their faces, which no map's points resolve
+    known = [row for row in told if row.rule.id not in ("particle_size", "wall_admittance")]
     assert any("double layers and films are not known" in note for note in notes(whole))
     for row in known:
         loose = row.rule.id in ("electrothermal_ratio", "membrane_voltage")
