@@ -206,6 +206,11 @@ class Evaluation:
         """Most voltage that breaks no limit at this frequency, peak to peak."""
         return min(self._bounds("most"), default=np.inf)
 
+    @property
+    def has_corridor(self) -> bool:
+        """Whether some voltage does the task and breaks no limit at this frequency."""
+        return self.floor_pp <= self.ceiling_pp and self.floor_pp < np.inf
+
     @cached_property
     def corridor(self) -> Corridor:
         """Floor and ceilings over all frequencies."""

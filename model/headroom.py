@@ -76,21 +76,19 @@ def headroom_map(
         Hz, (n_frequency,), and S/m, (n_conductivity,).
     """
     found = corridor(Conditions(design, patterns, frequency, conductivity[:, None]))
-    places = {
-        sense: [k for k, bound in enumerate(found.bounds) if bound.sense == sense]
+    senses = [bound.sense for bound in found.bounds]
+    # with all limits off there is no ceiling, and any rule stands for the one that never binds
+    least, most = (
+        np.array([k for k, one in enumerate(senses) if one == sense] or [0])
         for sense in ("least", "most")
-    }
-    stacks = {
-        sense: np.stack([found.bounds[k].rms_voltage for k in chosen])
-        for sense, chosen in places.items()
-    }
+    )
     return HeadroomMap(
         frequency,
         conductivity,
         found.floor,
         found.ceiling,
-        np.asarray(places["least"])[stacks["least"].argmax(axis=0)],
-        np.asarray(places["most"])[stacks["most"].argmin(axis=0)],
+        least[found.binding_floor()],
+        most[found.binding_ceiling()],
         tuple(Binder(bound.id, bound.label, bound.subject) for bound in found.bounds),
     )
 

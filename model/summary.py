@@ -277,7 +277,7 @@ def _table(head: tuple[str, ...], rows: list[tuple[str, ...]]) -> list[str]:
 
 def _corridor(result: Evaluation) -> str:
     floor, ceiling = format_volts(result.floor_pp), format_volts(result.ceiling_pp)
-    if result.floor_pp > result.ceiling_pp:
+    if not result.has_corridor:
         return f"no corridor here: the floor is {floor}, the lowest ceiling {ceiling} peak to peak"
     return f"corridor here: {floor} to {ceiling} peak to peak"
 

@@ -359,6 +359,11 @@ def test_everything_off_leaves_the_task(yeast, patterns, vary):
     assert result.inside
     assert check_object(result)["ceiling_Vpp"] is None
     assert "beyond any voltage" in check_text(result)
+    wrong = {"limits.off": off, "task.dielectrophoresis": "negative"}
+    never = evaluate(vary(yeast, wrong), patterns)
+    assert not never.has_corridor
+    assert not never.inside
+    assert "no corridor here" in check_text(never)
 
 
 WRONG = {

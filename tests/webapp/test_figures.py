@@ -393,3 +393,8 @@ def test_the_floor_is_named_after_what_sets_it(yeast, patterns, vary):
         ]
         (floor,) = [name for name in names if name.startswith("floor: ")]
         assert floor.startswith(f"floor: {label}")
+
+
+def test_with_every_limit_off_all_is_still_drawn(yeast, patterns, vary, theme):
+    off = [{"limit": name, "reason": "tried"} for name in LIMITS]
+    check_figures(evaluate(vary(yeast, {"limits.off": off}), patterns, points=60), theme)

@@ -68,7 +68,7 @@ def corridor_figure(result: Evaluation, theme: Theme) -> Figure:
 def corridor_sentence(result: Evaluation) -> str:
     """Say what the corridor shows now, in one sentence."""
     corridor = result.corridor
-    open_at = corridor.floor <= corridor.ceiling
+    open_at = (corridor.floor <= corridor.ceiling) & np.isfinite(corridor.floor)
     last = corridor.frequency.size
     if not open_at.any():
         return "No frequency has a corridor: everywhere the floor lies above the lowest ceiling."
@@ -79,7 +79,8 @@ def corridor_sentence(result: Evaluation) -> str:
         f"{'' if stop < last else ' (highest shown)'}"
         for start, stop in _runs(open_at)
     ]
-    room = np.where(open_at, corridor.ceiling / np.maximum(corridor.floor, 1e-9), 0.0)
+    least = np.where(open_at, np.maximum(corridor.floor, 1e-9), np.inf)
+    room = np.where(open_at, corridor.ceiling, 0.0) / least
     best = int(np.argmax(room))
     widest = format_si(float(corridor.frequency[best]), "Hz")
     more = f" and in {len(spans) - 3} more bands" if len(spans) > 3 else ""
@@ -92,7 +93,7 @@ def corridor_sentence(result: Evaluation) -> str:
 def _here(result: Evaluation) -> str:
     """Say how far the corridor reaches at the present frequency."""
     frequency = format_si(result.design.drive.frequency, "Hz")
-    if result.floor_pp > result.ceiling_pp:
+    if not result.has_corridor:
         return f"at {frequency} there is none"
     low, high = format_volts(result.floor_pp), format_volts(result.ceiling_pp)
     return f"at {frequency} it reaches from {low} to {high} peak to peak"
