@@ -1,4 +1,7 @@
-"""From a moved knob to drawn figures in Chromium, while a hand drags for three seconds."""
+"""From a moved knob to drawn figures in Chromium, while a hand drags for three seconds.
+
+Beside it, in the same run, a page of ordinary callbacks with the same figures.
+"""
 
 import math
 import shutil
@@ -8,10 +11,17 @@ import threading
 import time
 from pathlib import Path
 
-from playwright.sync_api import Page, sync_playwright
+from dash import Dash
+from flask import Flask
+from flask_caching import Cache
+from playwright.sync_api import Browser, Page, sync_playwright
 from waitress.server import create_server
 
+from model.profile import load_profile
+from tests.benchmarks.plain_page import DRAG, FIGURES, plain_page
 from webapp.app import Settings, make_app
+from webapp.cache import ChipCache, settings
+from webapp.services import DEMO_PROFILES, FIRST_PROFILE
 
 DRAG_SECONDS = 3.0
 _LISTEN = """() => {
@@ -43,31 +53,68 @@ def drag(page: Page, path: str) -> list[float]:
     return sorted(page.evaluate("() => window.times"))
 
 
+def told(times: list[float]) -> tuple[float, float]:
+    """Median and 95th percentile."""
+    return statistics.median(times), times[min(len(times) - 1, math.ceil(0.95 * len(times)) - 1)]
+
+
+def served(app: Dash) -> str:
+    """Serve an app for as long as this process lives, and give its address."""
+    server = create_server(app.server, host="127.0.0.1", port=0, threads=8)
+    threading.Thread(target=server.run, daemon=True).start()
+    return f"http://127.0.0.1:{server.effective_port}/"
+
+
 def main() -> None:
-    """Print p50 and p95 for each knob."""
+    """Print p50 and p95 for each knob, and those of the plain page."""
     path = next(filter(None, map(shutil.which, ("chromium", "chromium-browser", "google-chrome"))))
-    with tempfile.TemporaryDirectory() as folder:
-        app = make_app(Settings(cache_folder=Path(folder)))
-        server = create_server(app.server, host="127.0.0.1", port=0, threads=8)
-        threading.Thread(target=server.run, daemon=True).start()
-        with sync_playwright() as playwright:
-            flags = ["--no-sandbox", "--disable-gpu", "--disable-background-networking"]
-            browser = playwright.chromium.launch(executable_path=path, args=flags)
-            page = browser.new_page(viewport={"width": 1440, "height": 900})
-            page.goto(f"http://127.0.0.1:{server.effective_port}/")
-            while not page.evaluate("() => Boolean(window.slackwater?.shown)"):
-                page.wait_for_timeout(50)
-            page.wait_for_timeout(1500)
-            page.evaluate(_LISTEN)
-            for knob in ("drive.frequency", "drive.voltage", "liquid.conductivity"):
-                times = drag(page, knob)
-                late = times[min(len(times) - 1, math.ceil(0.95 * len(times)) - 1)]
-                print(
-                    f"{knob:22} p50 {statistics.median(times):6.1f} ms   p95 {late:6.1f} ms   "
-                    f"{len(times)} updates in {DRAG_SECONDS:.0f} s"
-                )
-            browser.close()
-        server.close()
+    with tempfile.TemporaryDirectory() as folder, sync_playwright() as playwright:
+        flags = ["--no-sandbox", "--disable-gpu", "--disable-background-networking"]
+        browser = playwright.chromium.launch(executable_path=path, args=flags)
+        page = browser.new_page(viewport={"width": 1440, "height": 900})
+        page.goto(served(make_app(Settings(cache_folder=Path(folder)))))
+        while not page.evaluate("() => Boolean(window.slackwater?.shown)"):
+            page.wait_for_timeout(50)
+        page.wait_for_timeout(1500)
+        page.evaluate(_LISTEN)
+        ours = {}
+        for knob in ("drive.frequency", "drive.voltage", "liquid.conductivity"):
+            times = drag(page, knob)
+            ours[knob] = told(times)
+            _print(knob, times)
+        page.close()
+        plain = _plain(browser, Path(folder))
+        _print("plain page, voltage", plain)
+        half, late = (
+            one / other for one, other in zip(told(plain), ours["drive.voltage"], strict=True)
+        )
+        print(f"plain page over ours: p50 {half:.1f}, p95 {late:.1f}")
+        browser.close()
+
+
+def _plain(browser: Browser, folder: Path) -> list[float]:
+    """Times of the plain page, dragged for as long."""
+    design = load_profile(DEMO_PROFILES / f"{FIRST_PROFILE}.toml")
+    flask = Flask("plain")
+    chips = ChipCache(Cache(flask, config=settings(folder)), folder)
+    chips.patterns(design)
+    page = browser.new_page(viewport={"width": 1440, "height": 900})
+    page.goto(served(plain_page(design, chips)))
+    page.wait_for_function(
+        f"() => document.querySelectorAll('.js-plotly-plot').length === {len(FIGURES)}"
+    )
+    page.wait_for_timeout(2500)
+    times = page.evaluate(DRAG, [FIGURES, DRAG_SECONDS, 5.0, 15.0])
+    page.close()
+    return sorted(times)
+
+
+def _print(name: str, times: list[float]) -> None:
+    half, late = told(times)
+    print(
+        f"{name:22} p50 {half:6.1f} ms   p95 {late:6.1f} ms   "
+        f"{len(times)} updates in {DRAG_SECONDS:.0f} s"
+    )
 
 
 if __name__ == "__main__":

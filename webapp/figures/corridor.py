@@ -16,6 +16,7 @@ from webapp.figures.labels import HEIGHT, WIDTH, Label, Wish, place_labels
 from webapp.figures.theme import (
     Figure,
     Theme,
+    colour_key,
     layout,
     limit_colour,
     log_axis,
@@ -139,7 +140,7 @@ def _ceiling(x: dict[str, str], volts: Real, bound: Bound, theme: Theme) -> dict
     return {
         **_edge(x, numbers(volts)),
         "name": plain(bound.name),
-        "line": _line(limit_colour(theme, bound.id), 1.2, dash="dash"),
+        "line": _line(limit_colour(theme, colour_key(bound.id, bound.sense)), 1.2, dash="dash"),
         "hoverinfo": "all",
         "hovertemplate": f"{plain(bound.name)}<br>"
         "at most %{y:.3~g} V at %{x:.3~s}Hz<extra></extra>",
@@ -157,7 +158,7 @@ def _binding(
             numbers(np.concatenate([stub_y, volts])),
         ),
         "name": f"binding {plain(bound.name)}",
-        "line": _line(limit_colour(theme, bound.id), 3.5),
+        "line": _line(limit_colour(theme, colour_key(bound.id, bound.sense)), 3.5),
     }
 
 
@@ -188,12 +189,12 @@ def _labels(
     ]
     binds, idle = [], []
     for index, bound in enumerate(corridor.ceilings):
-        height = heights[index + 1]
+        height, key = heights[index + 1], colour_key(bound.id, bound.sense)
         seen = (height > 0.0) & (height < 1.0)
         lowest = _slices(seen & (binding == index))
-        binds += [Wish(bound.label, bound.id, x[run], height[run]) for run in lowest]
+        binds += [Wish(bound.label, key, x[run], height[run]) for run in lowest]
         if not lowest:
-            idle += [Wish(bound.label, bound.id, x[run], height[run]) for run in _longest(seen)]
+            idle += [Wish(bound.label, key, x[run], height[run]) for run in _longest(seen)]
     # What binds is named first; a limit of many particles is not named again for each.
     for wish in sorted(binds, key=_span, reverse=True):
         if _span(wish) > _WORTH_A_NAME or wish.key not in {other.key for other in wishes}:

@@ -5,7 +5,7 @@ from typing import Any
 from model.evaluate import Evaluation, LedgerRow, SwitchedOffLimit
 from model.remedies import remedies
 from model.verdict import MOST_VOLTAGE, format_value, format_volts, row_headroom, row_value
-from webapp.figures.theme import Theme, limit_colour
+from webapp.figures.theme import Theme, colour_key, limit_colour
 
 
 def ledger_rows(result: Evaluation, theme: Theme, *, advised: bool = False) -> list[dict[str, Any]]:
@@ -35,7 +35,7 @@ def _row(row: LedgerRow, theme: Theme) -> dict[str, Any]:
         "headroom": row_headroom(row),
         "fill": _fill(row.headroom),
         "state": row.state,
-        "colour": limit_colour(theme, row.rule.id),
+        "colour": limit_colour(theme, colour_key(row.rule.id, row.rule.law.sense)),
         "why": row.rule.words.why,
         "remedy": row.rule.words.remedy,
         "source": row.rule.words.source,

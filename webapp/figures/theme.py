@@ -19,6 +19,8 @@ from model.quantity import format_si
 
 Figure = dict[str, Any]
 
+#: Stands for the ceiling that a task sets itself, where colours are asked for.
+TASK_CEILING = "task ceiling"
 #: The highest shade of a packed map, and what stands for no value.
 MOST_SHADE, GAP = 254, 255
 
@@ -98,12 +100,18 @@ _DRAWN = [name for name, limit in LIMITS.items() if not limit.condition]
 DASHES = ("solid", "dash", "dot", "dashdot", "longdash", "longdashdot")
 
 
+def colour_key(rule: str, sense: str) -> str:
+    """What a floor or ceiling is called when its colour is asked for."""
+    return rule if rule in LIMITS or sense == "least" else TASK_CEILING
+
+
 def limit_colour(theme: Theme, limit: str) -> str:
     """Colour of a limit, the same everywhere; the accent for the task's own floor.
 
-    Conditions that no voltage changes draw no curve and share the quiet colour.
+    Conditions that no voltage changes draw no curve and share the quiet colour with the ceiling
+    of a task that has one.
     """
-    if limit not in LIMITS:
+    if limit not in {*LIMITS, TASK_CEILING}:
         return theme.accent
     if limit not in _DRAWN:
         return theme.quiet
