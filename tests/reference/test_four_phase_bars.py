@@ -114,7 +114,7 @@ def test_self_complementary_bars_have_a_known_admittance(phases):
     assert solved(phases).cell_factor == pytest.approx(expected, rel=3e-5)
 
 
-@pytest.mark.parametrize("phases", PHASES)
+@pytest.mark.parametrize("phases", ["four", pytest.param("three", marks=pytest.mark.long)])
 def test_a_wave_against_the_flow_is_the_mirror_image(phases):
     x, y = np.linspace(-51, 60, 12) * UM, 5 * UM
     there, back = solved(phases), solved(phases, "against-flow")

@@ -1,10 +1,11 @@
 """Polarisation factor against closed forms, an independent linear solve, and Mie scattering."""
 
+import json
+
 import mpmath
 import numpy as np
 import pytest
 from scipy.integrate import quad
-from treams.coeffs import mie
 
 from model.crossovers import find_crossovers
 from model.layers import Core, Layer
@@ -15,6 +16,13 @@ from model.particles.solid_sphere import SolidSphere
 from model.polarisation import ThinShell, clausius_mossotti, complex_permittivity
 from model.polarisation import coat as coat_along
 from model.polarisation import seal as seal_along
+from tests.reference.layered_spheres import FILE, MEDIUM
+
+
+def sphere_of(row):
+    """Name of a row of the file."""
+    return f"{len(row['radii']) - 1} layers {row['frequency']:g} Hz"
+
 
 VACUUM = 8.8541878128e-12  # CODATA 2018, with which the printed values below were made
 
@@ -217,49 +225,22 @@ def test_mie_series_in_many_digits(frequency, thickness):
     assert clausius_mossotti(core, medium) == pytest.approx(plain, rel=1e-12)
 
 
-def scattered(radii, permittivities, medium):
-    """K of a sphere in layers from its first electric coefficient, by the library treams.
-
-    exp(−iωt) there; taken at small sizes and extrapolated to none, as it differs from the
-    electrostatic limit by the second and all higher powers of the size. Source: D. Beutel et al.
-    2024 Comput. Phys. Commun. 297:109076; radii outward, permittivities of core and layers.
-    """
-    index = np.conj(np.array([*permittivities, medium]) / medium)
-    ones = np.ones(index.size)
-    sizes = np.array([0.06, 0.04, 0.03, 0.02, 0.01])
-    found = []
-    for x in sizes:
-        both = mie(1, np.asarray(radii) / radii[-1] * x, index, ones, 0 * ones)
-        found.append(np.conj(-1.5j * (both[0, 0] + both[0, 1]) / x**3))
-    return np.linalg.solve((sizes[:, None] / sizes[0]) ** [0, 2, 3, 4, 5], found)[0]
-
-
-@pytest.mark.parametrize("frequency", [1e4, 1e6, 3e7, 1e9])
-@pytest.mark.parametrize("layers", [0, 1, 2, 4, 7])
-def test_any_number_of_layers_against_a_scattering_library(layers, frequency):
-    draw = np.random.default_rng(layers)
-    radii = np.cumsum(1.0 + 2.0 * draw.random(layers + 1)) * 1e-6
-    relative = draw.uniform(2.0, 90.0, layers + 1)
-    conductivity = 10.0 ** draw.uniform(-3.0, 0.0, layers + 1)
-    parts = [
-        material(one, other, frequency) for one, other in zip(relative, conductivity, strict=True)
+@pytest.mark.parametrize("row", json.loads(FILE.read_text()), ids=sphere_of)
+def test_any_number_of_layers_against_a_scattering_library(row):
+    # An electromagnetic solution, extrapolated to no size; see tests/reference/layered_spheres.py.
+    core, *layers = [
+        {"relative_permittivity": one, "conductivity": other}
+        for one, other in zip(row["relative_permittivity"], row["conductivity"], strict=True)
     ]
+    for layer, thickness in zip(layers, np.diff(row["radii"]), strict=True):
+        layer["thickness"] = thickness
     particle = ShelledSphere.model_construct(
-        radius=radii[-1],
-        core=Core(relative_permittivity=relative[0], conductivity=conductivity[0]),
-        layers=tuple(
-            Layer(
-                thickness=thickness,
-                relative_permittivity=one,
-                conductivity=other,
-            )
-            for thickness, one, other in zip(
-                np.diff(radii), relative[1:], conductivity[1:], strict=True
-            )
-        ),
+        radius=row["radii"][-1],
+        core=Core(**core),
+        layers=tuple(Layer(**layer) for layer in layers),
     )
-    expected = scattered(radii, parts, material(78.5, 0.03, frequency))
-    found = particle.polarisation(water(0.03, frequency))
+    expected = complex(*row["factor"])
+    found = particle.polarisation(water(MEDIUM[1], row["frequency"]))
     assert found == pytest.approx(expected, abs=2e-8)
 
 
