@@ -16,29 +16,31 @@ from webapp.views.corridor import corridor_part
 
 #: Figures of the home view.
 FIGURES = ("corridor", "headroom", "force", "heating", "electrothermal")
-#: Moves the knob for a time; each figure carries the knob's value, by which its age is told.
-DRAG = """([names, seconds, low, high]) => new Promise((done) => {
+#: Moves the knob `count` times, every `pause` ms, and gives the ms from each move that was drawn to
+#: its figures; each figure carries the knob's value, by which its age is told. With the moves of a
+#: drag the page shows nothing until most of the answers have come.
+MOVE = """([names, count, pause, low, high]) => new Promise((done) => {
   const asked = new Map(), seen = new Map(), times = [];
-  const start = performance.now();
-  for (const name of names) {
-    document.querySelector("#" + name + " .js-plotly-plot").on("plotly_afterplot", () => {
-      const value = document.querySelector("#" + name + " .js-plotly-plot").layout.meta;
-      seen.set(name, value);
-      if (names.every((other) => seen.get(other) === value) && asked.has(value)) {
-        times.push(performance.now() - asked.get(value));
-        asked.delete(value);
-      }
-    });
-  }
-  const step = () => {
-    const age = (performance.now() - start) / 1000;
-    if (age > seconds) return setTimeout(() => done(times), 4000);
-    const value = low + (high - low) * (0.5 + 0.5 * Math.sin(5 * age)) + 1e-9 * asked.size;
+  const plot = (name) => document.querySelector("#" + name + " .js-plotly-plot");
+  const drawn = (name) => {
+    const value = plot(name).layout.meta;
+    seen.set(name, value);
+    if (asked.has(value) && names.every((other) => seen.get(other) === value)) {
+      times.push(performance.now() - asked.get(value));
+      if (value === last) done(times);
+    }
+  };
+  for (const name of names) plot(name).on("plotly_afterplot", () => drawn(name));
+  let last = NaN, step = 0;
+  const move = () => {
+    step += 1;
+    const value = Number((low + (high - low) * step / count).toFixed(6));
+    if (step === count) last = value;
     asked.set(value, performance.now());
     window.dash_clientside.set_props("knob", { value });
-    setTimeout(step, 16);
+    if (step < count) setTimeout(move, pause);
   };
-  step();
+  move();
 })"""
 
 
