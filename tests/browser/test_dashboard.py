@@ -310,6 +310,19 @@ def test_click_in_the_corridor_moves_the_operating_point(page):
     assert float(frequency.split()[0]) == pytest.approx(3.16, rel=0.03)
 
 
+def test_best_point_and_the_map_move_the_knobs(page):
+    before = verdict(page)
+    page.get_by_role("button", name="Best point here").click()
+    settled(page)
+    assert "1.3" in verdict(page)
+    assert verdict(page) != before
+    box = page.locator("#figure-headroom").bounding_box()
+    page.mouse.click(box["x"] + 0.5 * box["width"], box["y"] + 0.55 * box["height"])
+    settled(page)
+    assert float(slider(page, "liquid.conductivity").input_value()) < -2.0
+    until(page, "() => document.querySelectorAll('#sensitivity li').length > 3")
+
+
 def test_appearance_is_kept_and_figures_follow(page):
     page.get_by_label("Dark").click(force=True)
     settled(page)

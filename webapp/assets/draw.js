@@ -19,8 +19,21 @@
   const GAP = 255; // of a map
   let resting = 0;
   const drawn = {};
+  const measured = {};
   page.figures = drawn;
   page.caption = "";
+
+  /* Sizes of all figures, read at once before anything of an answer is written: to read one after a
+     change makes the browser lay the page out again. */
+  page.measure = function () {
+    for (const name of Object.keys(drawn)) {
+      measured[name] = sizeOf(document.getElementById("figure-" + name));
+    }
+  };
+
+  function sizeOf(place) {
+    return place.clientWidth + "×" + place.clientHeight;
+  }
 
   page.draw = function (name, figure) {
     const place = document.getElementById("figure-" + name);
@@ -29,7 +42,7 @@
     const data = figure.data.map((trace, index) => unpack(trace, kept && kept.data[index]));
     const layout = JSON.stringify(figure.layout, withoutPictures);
     const shape = JSON.stringify(data, withoutNumbers);
-    const size = place.clientWidth + "×" + place.clientHeight;
+    const size = measured[name];
     const now = { data, layout, shape, parts: null, sketched: false, size, images: figure.layout.images };
     drawn[name] = now;
     const alike =
@@ -44,7 +57,8 @@
       clearTimeout(resting);
       resting = setTimeout(fullOne, RESTS);
     } else {
-      if (kept && kept.size !== size) window.Plotly.purge(place); // it would keep the old size
+      now.size = sizeOf(place); // the answer itself may have changed it
+      if (kept && kept.size !== now.size) window.Plotly.purge(place); // it would keep the old size
       full(place, now);
     }
   };

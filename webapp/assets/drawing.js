@@ -12,14 +12,16 @@
   const HIGHEST = 190;
   let shown = "";
 
-  page.drawing = function (found) {
+  /* `width` of its place if it is known, as reading it after a change costs a layout. */
+  page.drawing = function (found, width) {
     const place = document.getElementById("chip-drawing");
     if (!place) return;
-    const text = JSON.stringify(found) + place.clientWidth;
+    if (width === undefined) width = place.clientWidth;
+    const text = JSON.stringify(found) + width;
     if (text === shown && place.firstChild) return;
-    if (!place.clientWidth) return; // folded away
+    if (!width) return; // folded away
     shown = text;
-    place.replaceChildren(picture(found, place.clientWidth));
+    place.replaceChildren(picture(found, width));
   };
 
   function picture(found, width) {

@@ -12,6 +12,7 @@
   let travelling = false;
   let leaving = false; // whether the next address is another design's, opened over this one
   let visits = 0;
+  let chipWidth = 0; // of the chip's drawing, before an answer is written
   let last = null; // the last good answer
 
   /* ---- opening ---- */
@@ -85,6 +86,9 @@
 
   page.answered = function (answer, since, view) {
     const good = Object.keys(answer.errors).length === 0;
+    const sketch = byId("chip-drawing");
+    chipWidth = sketch ? sketch.clientWidth : 0;
+    page.measure();
     mark(answer.errors);
     document.body.classList.toggle("stale", !good);
     byId("stale-label").hidden = good;
@@ -147,7 +151,7 @@
       const label = byId("particle-name-" + index);
       if (label) label.previousElementSibling.style.color = answer.colours[index];
     });
-    page.drawing(answer.drawing);
+    page.drawing(answer.drawing, chipWidth);
     page.recipe(answer.liquid);
     tidy(answer.texts);
     items("notes", answer.notes);
