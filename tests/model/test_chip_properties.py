@@ -163,7 +163,10 @@ def admittances(functions, system, ports):
     return np.array(currents)
 
 
-@EVERY
+@pytest.mark.parametrize(
+    "name",
+    [pytest.param(one, marks=pytest.mark.long) if one == "four-pole" else one for one in SOLVED],
+)
 def test_no_pattern_of_any_chip_depends_on_its_size(name):
     @few(1)
     @given(cases(name), st.floats(0.3, 3.0))

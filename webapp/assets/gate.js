@@ -73,7 +73,10 @@
     gate.number += 1;
     waiting = true;
     const since = asked;
-    const busy = setTimeout(() => document.body.classList.add("busy"), BUSY_AFTER);
+    // What a resting hand gets besides changes nothing that is shown, so that nothing is greyed.
+    const besides = options.resting;
+    const greys = () => besides || document.body.classList.add("busy");
+    const busy = setTimeout(greys, BUSY_AFTER);
     let answer = null;
     try {
       answer = await ask(view, gate.body());
