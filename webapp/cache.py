@@ -22,7 +22,7 @@ from model.design import Design
 from model.fields.patterns import ChipPatterns
 from model.fields.solve import solve_chip
 from model.files import Files, no_files
-from model.profile import document
+from model.profile import part_document
 from model.version import VERSION
 
 #: Solved chips are kept this long, seconds.
@@ -119,5 +119,5 @@ _SOLVER = _solver_digest()
 
 def chip_key(design: Design) -> str:
     """Key of a chip solve: everything that it depends on and the code that makes it, hashed."""
-    parts = [VERSION, _SOLVER, document(design)["chip"], design.liquid.heat_conductivity]
+    parts = [VERSION, _SOLVER, part_document(design.chip), design.liquid.heat_conductivity]
     return hashlib.sha256(json.dumps(parts, sort_keys=True).encode()).hexdigest()

@@ -12,7 +12,7 @@ from model.evaluate import Evaluation
 from model.quantity import format_si
 from model.verdict import format_volts
 from model.voltage import PEAK_TO_PEAK
-from webapp.figures.labels import HEIGHT, WIDTH, Label, Wish, place_labels
+from webapp.figures.labels import HEIGHT, WIDTH, Label, Wish, label_trace, place_labels
 from webapp.figures.theme import (
     Figure,
     Theme,
@@ -31,8 +31,6 @@ from webapp.figures.theme import (
 _WORTH_A_NAME = 0.15
 #: Points on the operating mark's ring in pixels, many enough that no name covers it.
 _RING = 8.0 * np.array([np.cos(np.arange(40) * np.pi / 20), np.sin(np.arange(40) * np.pi / 20)])
-#: Text of an empty slot: a word joiner, which is drawn as nothing.
-_NOTHING = "\u2060"
 #: Values far off the axis are drawn this many times beyond its end, never as gaps.
 _BEYOND = 30.0
 
@@ -222,28 +220,16 @@ def _span(wish: Wish) -> float:
 
 
 def _label_trace(labels: list[Label], result: Evaluation, theme: Theme) -> dict[str, Any]:
-    """Names as one trace with a slot for each that may ever stand there, so that they can move."""
-    low, high = voltage_range(result)
+    """Names with a slot for each that may ever stand there."""
     frequency = result.corridor.frequency
-    first, last = float(frequency[0]), float(frequency[-1])
-    spare = [Label(_NOTHING, "", 0.0, 0.0)] * (2 * len(result.corridor.bounds) - len(labels))
-    slots = [*labels, *spare]
-    return {
-        "type": "scatter",
-        "mode": "text",
-        "x": [first * (last / first) ** label.x for label in slots],
-        "y": [low * (high / low) ** label.y for label in slots],
-        "text": [label.text for label in slots],
-        "textposition": "middle center",
-        "textfont": {
-            "size": 13,
-            "color": [limit_colour(theme, label.key) for label in slots],
-            "shadow": ", ".join([f"0 0 3px {theme.paper}"] * 4),  # keeps lines off the letters
-        },
-        "hoverinfo": "skip",
-        "cliponaxis": False,
-        "name": "labels",
-    }
+    return label_trace(
+        labels,
+        2 * len(result.corridor.bounds),
+        (float(frequency[0]), float(frequency[-1])),
+        voltage_range(result),
+        lambda key: limit_colour(theme, key),
+        theme,
+    )
 
 
 def _fraction(values: Real, low: float, high: float) -> Real:

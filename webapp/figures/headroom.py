@@ -1,8 +1,5 @@
 """Headroom over frequency and conductivity at the present voltage, by what binds."""
 
-from dataclasses import dataclass
-from typing import Any
-
 import numpy as np
 from numpy.typing import NDArray
 from scipy.ndimage import distance_transform_edt
@@ -13,6 +10,7 @@ from model.headroom import HeadroomMap, remembered_map
 from model.limits import LIMITS
 from model.quantity import format_si
 from model.verdict import format_headroom
+from webapp.figures.labels import Label, label_trace
 from webapp.figures.picture import colour_parts, picture
 from webapp.figures.theme import Figure, Theme, layout, limit_colour, log_axis, mark
 
@@ -31,18 +29,6 @@ _COARSE = 3
 _ROOM = 3.0
 #: Half the width of a letter as a share of the axis, on a narrow page.
 _LETTER = 0.0085
-#: Text of an empty slot: a word joiner, which is drawn as nothing.
-_NOTHING = "\u2060"
-
-
-@dataclass(frozen=True)
-class _Name:
-    """Name of a region and its place, as shares of the axes."""
-
-    text: str
-    key: str
-    x: float
-    y: float
 
 
 def map_of(result: Evaluation) -> HeadroomMap:
@@ -81,7 +67,14 @@ def headroom_figure(found: HeadroomMap, result: Evaluation, theme: Theme) -> Fig
     slots = 2 + len({bound.id for bound in found.bounds})
     return {
         "data": [
-            _name_trace(names, slots, (low, high), theme),
+            label_trace(
+                names,
+                slots,
+                (low, high),
+                (LOWEST, HIGHEST),
+                lambda key: _colour(key, theme) if key else theme.text,
+                theme,
+            ),
             mark(theme, design.drive.frequency, design.liquid.conductivity),
         ],
         "layout": layout(
@@ -134,7 +127,7 @@ def _colour(key: str, theme: Theme) -> str:
     return limit_colour(theme, key) if key in LIMITS else theme.quiet
 
 
-def _names(found: HeadroomMap, headroom: Real, binding: NDArray[np.intp]) -> list[_Name]:
+def _names(found: HeadroomMap, headroom: Real, binding: NDArray[np.intp]) -> list[Label]:
     """A name for the inside and for each limit, where its region has most room."""
     kinds = {bound.id: bound.label for bound in found.bounds}
     order = list(kinds)
@@ -150,29 +143,5 @@ def _names(found: HeadroomMap, headroom: Real, binding: NDArray[np.intp]) -> lis
         text = kinds.get(key, "corridor")
         half = _LETTER * len(text)
         x = min(max((column + 0.5) * _COARSE / COLUMNS, half), 1.0 - half)  # within the axes
-        names.append(_Name(text, key, x, (row + 0.5) * _COARSE / ROWS))
+        names.append(Label(text, key, x, (row + 0.5) * _COARSE / ROWS))
     return names
-
-
-def _name_trace(
-    names: list[_Name], slots: int, ends: tuple[float, float], theme: Theme
-) -> dict[str, Any]:
-    """Names as one trace of so many slots, so that they can move."""
-    full = [*names, *[_Name(_NOTHING, "", 0.0, 0.0)] * (slots - len(names))]
-    low, high = ends
-    return {
-        "type": "scatter",
-        "mode": "text",
-        "x": [low * (high / low) ** name.x for name in full],
-        "y": [LOWEST * (HIGHEST / LOWEST) ** name.y for name in full],
-        "text": [name.text for name in full],
-        "textposition": "middle center",
-        "textfont": {
-            "size": 13,
-            "color": [_colour(name.key, theme) if name.key else theme.text for name in full],
-            "shadow": ", ".join([f"0 0 3px {theme.paper}"] * 4),
-        },
-        "hoverinfo": "skip",
-        "cliponaxis": False,
-        "name": "regions",
-    }

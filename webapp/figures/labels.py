@@ -1,11 +1,13 @@
 """Places names on curves so that they cover neither one another nor, where it can be, a line."""
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
 from model.arrays import Real
+from webapp.figures.theme import Theme
 
 #: Heights above the curve, in lines, at which a name may stand, and what it costs to stand there:
 #: far from its curve a name seems to belong to another.
@@ -14,6 +16,8 @@ _COSTS = (0.0, 0.12, 0.01, 0.13, 0.9, 0.91)
 #: Plot area on a narrow page in pixels and size of a letter; only proportions matter.
 WIDTH, HEIGHT = 500.0, 370.0
 LETTER, LINE = 7.4, 17.0
+#: Text of an empty slot: a word joiner, which is drawn as nothing.
+_NOTHING = "\u2060"
 
 
 @dataclass(frozen=True)
@@ -39,6 +43,47 @@ class Label:
     key: str
     x: float
     y: float
+
+
+def label_trace(
+    labels: Sequence[Label],
+    slots: int,
+    x_ends: tuple[float, float],
+    y_ends: tuple[float, float],
+    colour: Callable[[str], str],
+    theme: Theme,
+) -> dict[str, Any]:
+    """Names as one trace of so many slots, the spare ones empty, so that they can move.
+
+    Parameters
+    ----------
+    labels, slots
+        What is named now, and how many names there may ever be.
+    x_ends, y_ends
+        Ends of the logarithmic axes.
+    colour
+        Colour of a name by its key.
+    theme
+        Whose paper keeps lines off the letters.
+    """
+    full = [*labels, *[Label(_NOTHING, "", 0.0, 0.0)] * (slots - len(labels))]
+    (left, right), (low, high) = x_ends, y_ends
+    return {
+        "type": "scatter",
+        "mode": "text",
+        "x": [left * (right / left) ** label.x for label in full],
+        "y": [low * (high / low) ** label.y for label in full],
+        "text": [label.text for label in full],
+        "textposition": "middle center",
+        "textfont": {
+            "size": 13,
+            "color": [colour(label.key) for label in full],
+            "shadow": ", ".join([f"0 0 3px {theme.paper}"] * 4),
+        },
+        "hoverinfo": "skip",
+        "cliponaxis": False,
+        "name": "labels",
+    }
 
 
 def place_labels(wishes: Sequence[Wish], lines: Sequence[tuple[Real, Real]]) -> list[Label]:
